@@ -1,0 +1,25 @@
+package emit
+
+// Light is what an emitter sends along each crossing of a block; every slice
+// has one entry a crossing.
+type Light struct {
+	Lit       []bool    // the crossing lies on the emitter
+	Opaque    []bool    // the path ends there
+	Intensity []float64 // as the observer receives it
+	G         []float64 // redshift factor ν_obs/ν_em
+	Mu        []float64 // |cos| of the emission angle in the gas frame
+}
+
+// Resize makes room for n crossings, all unlit, keeping the storage it has.
+func (l *Light) Resize(n int) {
+	if cap(l.Lit) < n {
+		*l = Light{
+			Lit: make([]bool, n), Opaque: make([]bool, n),
+			Intensity: make([]float64, n), G: make([]float64, n), Mu: make([]float64, n),
+		}
+	}
+	l.Lit, l.Opaque = l.Lit[:n], l.Opaque[:n]
+	l.Intensity, l.G, l.Mu = l.Intensity[:n], l.G[:n], l.Mu[:n]
+	clear(l.Lit)
+	clear(l.Opaque)
+}

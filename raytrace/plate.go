@@ -1,0 +1,50 @@
+package raytrace
+
+import "math"
+
+// Layer names one quantity of a plate.
+type Layer int
+
+// The layers of a plate, one of each per image order.
+const (
+	Intensity Layer = iota // as received, relative to that emitted at r = 1 M
+	Redshift               // g = ν_obs/ν_em
+	Radius                 // r, M
+	Azimuth                // φ, radians
+	Delay                  // t_obs - t_em - r*(r_obs), M
+	Mu                     // |cos| of the emission angle in the gas frame
+	layerCount
+)
+
+// Plate is the traced and shaded image.
+type Plate struct {
+	Columns, Rows, Orders int
+	Total                 []float32 // intensity summed over orders, Rows·Columns, row 0 at the bottom
+	layers                [][]float32
+	Paths                 int     // light paths traced
+	WorstBound            float64 // largest relative bound on r of any crossing shown
+}
+
+// newPlate returns a plate on which nothing shines yet.
+func newPlate(columns, rows, orders int) *Plate {
+	size := columns * rows
+	p := &Plate{Columns: columns, Rows: rows, Orders: orders, Total: make([]float32, size)}
+	nothing := float32(math.NaN())
+	for k := range orders * int(layerCount) {
+		layer := make([]float32, size)
+		if Layer(k%int(layerCount)) != Intensity {
+			for i := range layer {
+				layer[i] = nothing
+			}
+		}
+		p.layers = append(p.layers, layer)
+	}
+	return p
+}
+
+// Layer returns the values of one quantity for one image order, with
+// Rows·Columns entries, row 0 at the bottom. Where the order has no crossing
+// intensity is 0 and every other layer NaN.
+func (p *Plate) Layer(l Layer, order int) []float32 {
+	return p.layers[order*int(layerCount)+int(l)]
+}

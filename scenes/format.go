@@ -1,0 +1,174 @@
+package scenes
+
+import (
+	"bytes"
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+	"text/tabwriter"
+)
+
+// Format returns a complete text of the scene, every default written out.
+// Parsing it gives an Equal scene; numbers come back to the last bit.
+func Format(s Scene) []byte {
+	var b bytes.Buffer
+	w := writer{tabwriter.NewWriter(&b, 0, 0, 1, ' ', 0)}
+	w.key("schema", strconv.Itoa(schema))
+	w.key("title", quote(s.Title))
+
+	w.header("[object]")
+	w.key("kind", quote(s.Object.Kind))
+	w.measure("mass", s.Object.Mass, "Msun")
+	w.measure("distance", s.Object.Distance, "Mpc", "kpc", "pc")
+	w.measure("theta_g", s.Object.ThetaG, "uas")
+	w.key("redshift", tomlNumber(s.Object.Redshift))
+
+	o := s.Observer
+	w.header("[observer]")
+	if math.IsInf(o.Radius, 1) {
+		w.key("radius", quote("infinity"))
+	} else {
+		w.quantity("radius", o.Radius, "M")
+	}
+	w.quantity("inclination", o.Inclination, "deg")
+	w.quantity("azimuth", o.Azimuth, "deg")
+	w.key("motion", quote(o.Motion))
+	w.quantity("position_angle", o.PositionAngle, "deg")
+
+	f := s.Field
+	extent := "M"
+	if f.Projection == "perspective" {
+		extent = "deg"
+	}
+	w.header("[field]")
+	w.key("projection", quote(f.Projection))
+	if f.AutoWidth {
+		w.key("width", quote("auto"))
+	} else {
+		w.quantity("width", f.Width, extent)
+	}
+	w.key("pixels", fmt.Sprintf("[%d, %d]", f.Pixels[0], f.Pixels[1]))
+	w.list("center", []string{formatQuantity(f.Center[0], 0, extent), formatQuantity(f.Center[1], 0, extent)})
+	if len(f.Frequency) > 0 {
+		var items []string
+		for _, nu := range f.Frequency {
+			items = append(items, formatQuantity(nu, 0, "GHz", "Hz"))
+		}
+		w.list("frequency", items)
+	}
+
+	for _, e := range s.Emitters {
+		w.emitter(e)
+	}
+
+	if s.Telescope.GivenBeam {
+		beam := s.Telescope.Beam
+		w.header("[telescope]")
+		w.list("beam", []string{formatQuantity(beam[0], 0, "uas"), formatQuantity(beam[1], 0, "uas"), formatQuantity(beam[2], 0, "deg")})
+	}
+
+	if m := s.Measured; m.RingDiameter.Given || m.Estimator != "" {
+		w.header("[measured]")
+		w.measure("ring_diameter", m.RingDiameter, "uas")
+		if m.Estimator != "" {
+			w.key("estimator", quote(m.Estimator))
+		}
+	}
+
+	w.header("[trace]")
+	w.key("tolerance", tomlNumber(s.Trace.Tolerance))
+	w.key("max_order", strconv.Itoa(s.Trace.MaxOrder))
+	w.key("flux_tolerance", tomlNumber(s.Trace.FluxTolerance))
+	w.list("effects", allEffects)
+	w.Flush()
+	return b.Bytes()
+}
+
+// writer writes keys of one table with their equal signs in one column.
+type writer struct{ *tabwriter.Writer }
+
+// header begins a table.
+func (w writer) header(name string) { fmt.Fprintf(w, "\n%s\n", name) }
+
+// key writes a key whose value is TOML already; TOML on one line holds no tab
+// that would move the column.
+func (w writer) key(name, toml string) { fmt.Fprintf(w, "%s\t= %s\n", name, toml) }
+
+// quantity writes a number with a unit.
+func (w writer) quantity(name string, x float64, unitName string) {
+	w.key(name, quote(formatQuantity(x, 0, unitName)))
+}
+
+// measure writes a measure in the unit that makes it shortest, or nothing
+// when it is not given.
+func (w writer) measure(name string, m Measure, unitNames ...string) {
+	if m.Given {
+		w.key(name, quote(formatQuantity(m.Value, m.Sigma, unitNames...)))
+	}
+}
+
+// list writes a list of text.
+func (w writer) list(name string, items []string) {
+	var all []string
+	for _, item := range items {
+		all = append(all, quote(item))
+	}
+	w.key(name, "["+strings.Join(all, ", ")+"]")
+}
+
+func (w writer) emitter(e Emitter) {
+	w.header("[[emitter]]")
+	w.key("kind", quote(e.Kind))
+	if e.Inner.Name != "" {
+		w.key("inner", quote(e.Inner.Name))
+	} else {
+		w.quantity("inner", e.Inner.Radius, "M")
+	}
+	w.quantity("outer", e.Outer, "M")
+	w.key("sense", quote(pick(e.Clockwise, "clockwise", "counter-clockwise")))
+	w.key("gas", quote(e.Gas))
+	w.key("profile", quote(e.Profile))
+	w.key("index", tomlNumber(e.Index))
+	w.key("light", quote(e.Light))
+	w.key("spectral_index", tomlNumber(e.SpectralIndex))
+	w.key("optical_depth", quote(pick(e.Thick, "thick", "thin")))
+	w.key("emission_angle", quote("isotropic"))
+}
+
+// pick returns yes or no.
+func pick(is bool, yes, no string) string {
+	if is {
+		return yes
+	}
+	return no
+}
+
+// tomlNumber writes a number so that TOML does not take a large one for a
+// whole number out of its range.
+func tomlNumber(x float64) string {
+	text := formatNumber(x)
+	if !strings.ContainsAny(text, ".e") && math.Abs(x) >= 1<<53 {
+		text += ".0"
+	}
+	return text
+}
+
+// formatQuantity writes x, which is in the base unit, and its error in the
+// shortest of the units that gives it back exactly. The last unit must be a
+// base unit.
+func formatQuantity(x, sigma float64, unitNames ...string) string {
+	best := ""
+	for _, name := range unitNames {
+		u, _ := findUnit(name)
+		text := formatNumber(x/u.factor) + " " + name
+		if sigma != 0 {
+			text = formatNumber(x/u.factor) + " +- " + formatNumber(sigma/u.factor) + " " + name
+		}
+		exact := x/u.factor*u.factor == x && sigma/u.factor*u.factor == sigma
+		if exact && (best == "" || len(text) < len(best)) {
+			best = text
+		}
+	}
+	return best
+}

@@ -1,0 +1,77 @@
+package scenes
+
+import (
+	"bytes"
+	"errors"
+	"testing"
+)
+
+// FuzzParse: a text is refused with an *Error, or its scene comes back from
+// Format, and the document holds the text to the byte.
+func FuzzParse(f *testing.F) {
+	for _, info := range BuiltIn() {
+		d, err := Load(info.Name)
+		if err != nil {
+			f.Fatal(err)
+		}
+		f.Add(d.Text())
+		f.Add(Format(d.Scene()))
+	}
+	for _, c := range refusals {
+		f.Add([]byte(top + c.text))
+	}
+	f.Fuzz(func(t *testing.T, text []byte) {
+		first, err := Parse("fuzz.toml", text)
+		if err != nil {
+			var e *Error
+			if !errors.As(err, &e) || e.Error() == "" {
+				t.Errorf("error %v of type %T", err, err)
+			}
+			return
+		}
+		if !bytes.Equal(first.Text(), text) {
+			t.Error("the text has changed")
+		}
+		again, err := Parse("again.toml", Format(first.Scene()))
+		if err != nil || !again.Scene().Equal(first.Scene()) {
+			t.Errorf("round trip: %v\n%s", err, Format(first.Scene()))
+		}
+	})
+}
+
+// FuzzSet: a change is refused and leaves the document as it was, or the
+// document's scene is the one of its new text.
+func FuzzSet(f *testing.F) {
+	for _, info := range BuiltIn() {
+		d, err := Load(info.Name)
+		if err != nil {
+			f.Fatal(err)
+		}
+		for _, k := range Keys() {
+			f.Add(d.Text(), k.Path(), k.Default)
+		}
+	}
+	f.Add([]byte("schema = 1\nobserver = {}\nemitter = [{}, {outer = 9}]"), "emitter.2.inner", "horizon")
+	f.Add([]byte("schema = 1\r\nobserver.radius = 50"), "observer.inclination", "75deg")
+	f.Fuzz(func(t *testing.T, text []byte, path, value string) {
+		d, err := Parse("fuzz.toml", text)
+		if err != nil {
+			return
+		}
+		before := d.Scene()
+		if err := d.Set(path, value); err != nil {
+			var e *Error
+			if !errors.As(err, &e) || e.Setting != path {
+				t.Errorf("error %v of type %T", err, err)
+			}
+			if !bytes.Equal(d.Text(), text) || !d.Scene().Equal(before) {
+				t.Errorf("a refused change has changed the document: %v", err)
+			}
+			return
+		}
+		again, err := Parse("again.toml", d.Text())
+		if err != nil || !again.Scene().Equal(d.Scene()) {
+			t.Errorf("after the change: %v\n%s", err, d.Text())
+		}
+	})
+}

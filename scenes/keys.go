@@ -1,0 +1,234 @@
+package scenes
+
+import (
+	"slices"
+	"strconv"
+)
+
+// Type is what a key's value must be.
+type Type uint8
+
+const (
+	Text         Type = iota // any text
+	Choice                   // one of Choices
+	ChoiceList               // a list of Choices
+	Number                   // a number without a unit
+	Integer                  // a whole number
+	IntegerList              // a list of Count whole numbers
+	Quantity                 // text with a unit, or a bare number in Unit
+	QuantityList             // a list of Count quantities; Count 0: one, or a list of any length
+)
+
+// Key is one key of the scene file. The table of keys drives the checks, the
+// defaults, the reference and the desk's tooltips.
+type Key struct {
+	Section  string   // table it stands in; "" for the top level
+	Name     string   // as written; case matters
+	Type     Type     // what the value must be
+	Count    int      // lists: how many items; 0 means any number up to 1000
+	Unit     string   // unit of a bare number; "" without unit
+	Units    []string // units that are accepted
+	Words    []string // words that may stand instead of a quantity
+	Choices  []string // Choice and ChoiceList: the words carried out
+	Range    Range    // of the number, in M, deg, uas, Msun, pc, Hz or without unit
+	Error    bool     // "+- error" may follow the number
+	Required bool     // a file without it is refused
+	Default  string   // as written in a file; "" when the key may stay away without one
+	Text     string   // what it is, one line
+	Why      string   // said when the value is out of Range; may be ""
+
+	// What the scene file knows and this version does not carry out:
+	Later        bool     // the key itself
+	LaterChoices []string // further choices
+	LaterForm    string   // further forms of the value, in words
+	OnlyZero     bool     // numbers other than 0
+
+	laterKinds []kind // TOML kinds of LaterForm
+}
+
+// Path returns the key as --set takes it, "observer.inclination".
+func (k Key) Path() string { return address{section: k.Section, key: k.Name}.String() }
+
+// section is one table of the scene file.
+type section struct {
+	name  string
+	text  string
+	many  bool // [[name]], from none to maxEmitters
+	later bool
+}
+
+// maxItems bounds lists of any length. Taste: a plate is made for each
+// frequency.
+const maxItems = 1000
+
+// maxEmitters bounds the number of emitters. Method: crossings number their
+// surface in one byte, and 64 leaves room.
+const maxEmitters = 64
+
+// sections in the order of the reference and of Format.
+var sections = []section{
+	{name: "", text: "top of the file"},
+	{name: "object", text: "the compact object at the centre"},
+	{name: "observer", text: "where the picture is taken from"},
+	{name: "field", text: "the part of the sky that is imaged"},
+	{name: "emitter", text: "what shines; once for each emitter, at most " + strconv.Itoa(maxEmitters) + "; without any the image is empty", many: true},
+	{name: "telescope", text: "the instrument that the image is compared with"},
+	{name: "measured", text: "what was observed"},
+	{name: "time", text: "times of a light curve or a movie", later: true},
+	{name: "trace", text: "the numerics"},
+	{name: "figure", text: "figures for a paper", many: true, later: true},
+}
+
+// allEffects are the effects of trace.effects; leaving any out comes later.
+var allEffects = []string{"bending", "gravity", "motion"}
+
+// keyTable is the one table of keys, by section.
+var keyTable = slices.Concat(topKeys, objectKeys, observerKeys, fieldKeys, emitterKeys, telescopeKeys, measuredKeys, timeKeys, traceKeys)
+
+var topKeys = []Key{
+	{Name: "schema", Type: Integer, Range: between(1, 1), Required: true, Text: "version of the scene file"},
+	{Name: "title", Type: Text, Default: `""`, Text: "title of the scene"},
+}
+
+var objectKeys = []Key{
+	{Section: "object", Name: "kind", Type: Choice, Choices: []string{"black-hole"}, LaterChoices: []string{"star", "shell"},
+		Default: `"black-hole"`, Text: "kind of object"},
+	{Section: "object", Name: "charge", Type: Quantity, Unit: "M", Units: lengthUnits, Range: inside(-1, 1), OnlyZero: true,
+		Default: `"0 M"`, Text: "charge Q of a black hole, |Q| < M", Why: "beyond it there is no horizon"},
+	{Section: "object", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Later: true,
+		Text: "radius of a star or shell"},
+	{Section: "object", Name: "interior", Type: Choice, Choices: []string{"opaque", "uniform"}, Later: true,
+		Text: "interior of a star"},
+	{Section: "object", Name: "mass", Type: Quantity, Unit: "Msun", Units: massUnits, Range: above(0), Error: true,
+		Text: "mass; with it km and s may be used, with the distance also uas"},
+	{Section: "object", Name: "distance", Type: Quantity, Unit: "kpc", Units: distanceUnits, Range: above(0), Error: true,
+		Text: "angular-diameter distance"},
+	{Section: "object", Name: "redshift", Type: Number, Range: atLeast(0), OnlyZero: true,
+		Default: `0`, Text: "cosmological redshift"},
+	{Section: "object", Name: "theta_g", Type: Quantity, Unit: "uas", Units: skyUnits, Range: above(0), Error: true,
+		Text: "the angle GM/(c² D), instead of mass and distance"},
+}
+
+var observerKeys = []Key{
+	{Section: "observer", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"infinity"}, Range: above(2),
+		Default: `"infinity"`, Text: "circumferential radius of the observer", Why: "the observer must be outside the horizon"},
+	{Section: "observer", Name: "inclination", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(0, 180),
+		Default: `"60 deg"`, Text: "angle between the disk axis and the direction to the observer"},
+	{Section: "observer", Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360),
+		Default: `"0 deg"`, Text: "azimuth of the observer in the disk plane"},
+	{Section: "observer", Name: "motion", Type: Choice, Choices: []string{"static"}, LaterChoices: []string{"orbit", "infall"},
+		Default: `"static"`, Text: "motion of the observer"},
+	{Section: "observer", Name: "position_angle", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360),
+		Default: `"0 deg"`, Text: "position angle of the disk axis on the sky, from north through east"},
+}
+
+var fieldKeys = []Key{
+	{Section: "field", Name: "projection", Type: Choice, Choices: []string{"parallel", "perspective"}, LaterChoices: []string{"all-sky"},
+		Default: `"parallel"`, Text: "parallel: impact parameters alpha, beta; perspective: angles at the observer"},
+	{Section: "field", Name: "width", Type: Quantity, Unit: "M", Units: fieldUnits, Words: []string{"auto"}, Range: above(0),
+		Default: `"auto"`, Text: "width of the field; auto: everything that shines plus 5 %; perspective: an angle, bare numbers in deg, below 180 deg"},
+	{Section: "field", Name: "pixels", Type: IntegerList, Count: 2, Range: atLeast(1),
+		Default: `[800, 800]`, Text: "columns and rows"},
+	{Section: "field", Name: "center", Type: QuantityList, Count: 2, Unit: "M", Units: fieldUnits, Range: anyNumber,
+		Default: `["0 M", "0 M"]`, Text: "centre of the field, right and up; perspective: angles, bare numbers in deg, within 90 deg"},
+	{Section: "field", Name: "frequency", Type: QuantityList, Unit: "GHz", Units: frequencyUnits, Range: above(0),
+		Text: "observed frequency or photon energy, one or a list"},
+}
+
+var emitterKeys = []Key{
+	{Section: "emitter", Name: "kind", Type: Choice, Choices: []string{"disk"}, LaterChoices: []string{"spot", "surface", "sky"},
+		Default: `"disk"`, Text: "kind of emitter"},
+	{Section: "emitter", Name: "inner", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"isco", "horizon"}, Range: atLeast(2),
+		Default: `"isco"`, Text: "inner rim of the disk; isco is 6 M, horizon 2 M", Why: "the disk must end outside the horizon"},
+	{Section: "emitter", Name: "outer", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2),
+		Default: `"20 M"`, Text: "outer rim of the disk", Why: "the disk must end outside the horizon"},
+	{Section: "emitter", Name: "sense", Type: Choice, Choices: []string{"counter-clockwise", "clockwise"},
+		Default: `"counter-clockwise"`, Text: "sense in which the gas turns about the disk axis"},
+	{Section: "emitter", Name: "gas", Type: Choice, Choices: []string{"circular"}, LaterChoices: []string{"static"},
+		Default: `"circular"`, Text: "motion of the gas; circular: plunging inside the isco"},
+	{Section: "emitter", Name: "profile", Type: Choice, Choices: []string{"power"}, LaterChoices: []string{"novikov-thorne", "table"},
+		Default: `"power"`, Text: "emissivity with radius; power: (r/M)^-index in the gas frame"},
+	{Section: "emitter", Name: "index", Type: Number, Range: between(-20, 20), LaterForm: "a list", laterKinds: []kind{kindList},
+		Default: `3`, Text: "index of a power profile"},
+	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(2), Later: true,
+		Text: "radii between the indices of a broken power profile"},
+	{Section: "emitter", Name: "table", Type: Text, Later: true, Text: "CSV file of a table profile: r [M], value"},
+	{Section: "emitter", Name: "total_flux", Type: Quantity, Unit: "Jy", Units: fluxUnits, Range: above(0), Later: true,
+		Text: "flux at the first frequency that the emitter is scaled to"},
+	{Section: "emitter", Name: "luminosity", Type: Quantity, Unit: "Edd", Units: luminosityUnits, Range: above(0), Later: true,
+		Text: "luminosity of a novikov-thorne disk"},
+	{Section: "emitter", Name: "accretion_rate", Type: Quantity, Unit: "Msun/yr", Units: accretionUnits, Range: above(0), Later: true,
+		Text: "accretion rate of a novikov-thorne disk, instead of its luminosity"},
+	{Section: "emitter", Name: "colour_correction", Type: Number, Range: above(0), Later: true,
+		Text: "colour over effective temperature of a blackbody"},
+	{Section: "emitter", Name: "light", Type: Choice, Choices: []string{"bolometric", "monochromatic"}, LaterChoices: []string{"line", "blackbody"},
+		Default: `"bolometric"`, Text: "what is added up: all frequencies, one, a line, a blackbody"},
+	{Section: "emitter", Name: "spectral_index", Type: Number, Range: between(-10, 10),
+		Default: `0`, Text: "monochromatic: I_nu ~ nu^spectral_index"},
+	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Later: true,
+		Text: "energy of a line in the gas frame"},
+	{Section: "emitter", Name: "optical_depth", Type: Choice, Choices: []string{"thin", "thick"},
+		LaterForm: "a number at normal incidence", laterKinds: []kind{kindInteger, kindFloat},
+		Default: `"thin"`, Text: "thin: all crossings add up; thick: the first one ends the path"},
+	{Section: "emitter", Name: "emission_angle", Type: Choice, Choices: []string{"isotropic"}, LaterChoices: []string{"darkened", "brightened"},
+		Default: `"isotropic"`, Text: "how the intensity depends on the direction in the gas frame"},
+	{Section: "emitter", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Later: true, Text: "spot: radius"},
+	{Section: "emitter", Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360), Later: true, Text: "spot: azimuth at t = 0"},
+	{Section: "emitter", Name: "size", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Later: true, Text: "spot: proper Gaussian sigma"},
+	{Section: "emitter", Name: "contrast", Type: Number, Range: above(0), Later: true, Text: "spot: contrast"},
+	{Section: "emitter", Name: "temperature", Type: Quantity, Unit: "K", Units: []string{"K", "eV", "keV"}, Range: above(0), Later: true, Text: "surface: temperature"},
+	{Section: "emitter", Name: "period", Type: Quantity, Unit: "s", Units: timeUnits, Range: above(0), Later: true, Text: "surface: period of rotation"},
+	{Section: "emitter", Name: "caps", Type: Text, Later: true, Text: "surface: hot caps, a list of {colatitude, azimuth, size, temperature}"},
+	{Section: "emitter", Name: "image", Type: Text, Later: true, Text: "sky: image file"},
+	{Section: "emitter", Name: "pattern", Type: Choice, Choices: []string{"stars", "grid"}, Later: true, Text: "sky: drawn pattern"},
+	{Section: "emitter", Name: "seed", Type: Integer, Range: atLeast(0), Later: true, Text: "sky: seed of the stars"},
+}
+
+var telescopeKeys = []Key{
+	{Section: "telescope", Name: "beam", Type: QuantityList, Count: 3, Unit: "uas", Units: beamUnits, Range: anyNumber,
+		Text: "beam: FWHM major and minor in uas, position angle in deg"},
+	{Section: "telescope", Name: "uv", Type: Text, Later: true, Text: "CSV file of baselines: u, v [Glambda]"},
+	{Section: "telescope", Name: "resolution", Type: Quantity, Unit: "eV", Units: frequencyUnits, Range: above(0), Later: true, Text: "spectral FWHM"},
+}
+
+var measuredKeys = []Key{
+	{Section: "measured", Name: "ring_diameter", Type: Quantity, Unit: "uas", Units: skyUnits, Range: above(0), Error: true,
+		Text: "diameter of the observed ring"},
+	{Section: "measured", Name: "estimator", Type: Choice, Choices: []string{"ridge", "flux-weighted", "annulus-fit"},
+		Text: "how the ring diameter was read off the data"},
+}
+
+var timeKeys = []Key{
+	{Section: "time", Name: "start", Type: Quantity, Unit: "M", Units: timeUnits, Range: anyNumber, Later: true, Text: "first time"},
+	{Section: "time", Name: "end", Type: Quantity, Unit: "M", Units: timeUnits, Range: anyNumber, Later: true, Text: "last time; also in orbits"},
+	{Section: "time", Name: "step", Type: Quantity, Unit: "M", Units: timeUnits, Range: above(0), Later: true, Text: "time step; also in orbits"},
+}
+
+var traceKeys = []Key{
+	{Section: "trace", Name: "tolerance", Type: Number, Range: between(1e-13, 1e-3), Default: `1e-9`, Text: "relative tolerance of each path"},
+	{Section: "trace", Name: "max_order", Type: Integer, Range: between(0, 9), Default: `2`, Text: "highest image order"},
+	{Section: "trace", Name: "flux_tolerance", Type: Number, Range: between(1e-9, 0.1), Default: `1e-4`, Text: "relative tolerance of fluxes"},
+	{Section: "trace", Name: "effects", Type: ChoiceList, Choices: allEffects, LaterForm: "leaving any of them out",
+		Default: `["bending", "gravity", "motion"]`, Text: "what light and gas are subject to"},
+}
+
+// Keys returns every key of the scene file, in the order of the reference.
+func Keys() []Key { return slices.Clone(keyTable) }
+
+// findKey returns the key of that section and name; case matters.
+func findKey(section, name string) (Key, bool) {
+	at := slices.IndexFunc(keyTable, func(k Key) bool { return k.Section == section && k.Name == name })
+	if at < 0 {
+		return Key{}, false
+	}
+	return keyTable[at], true
+}
+
+// findSection returns the section of that name.
+func findSection(name string) (section, bool) {
+	at := slices.IndexFunc(sections, func(s section) bool { return s.name == name })
+	if at < 0 {
+		return section{}, false
+	}
+	return sections[at], true
+}

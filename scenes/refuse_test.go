@@ -1,0 +1,233 @@
+package scenes
+
+import (
+	"errors"
+	"strings"
+	"testing"
+)
+
+// top is what every complete test scene begins with: lines 1 and 2.
+const top = "schema = 1\n# a comment\n"
+
+// refusals: text from line 3 on, unless it is the whole file. Column counts
+// characters; 0:0 means that the text holds no place.
+var refusals = []struct {
+	name         string
+	text         string // after top
+	line, column int
+	key          string
+	says         []string // parts of the message
+}{
+	// unknown
+	{"case of a key", "[[emitter]]\nInner = 3", 4, 1, "emitter.Inner", []string{"unknown key", "nearest known: inner"}},
+	{"misspelt key", "[observer]\ninclnation = 3", 4, 1, "observer.inclnation", []string{"nearest known: inclination"}},
+	{"key of another table", "[object]\ninclination = 3", 4, 1, "object.inclination", []string{"nearest known: observer.inclination"}},
+	{"unknown table", "[objekt]\nmass = 3", 3, 2, "objekt", []string{"unknown table", "nearest known: object"}},
+	{"case of a table", "  [Object]", 3, 4, "Object", []string{"unknown table", "nearest known: object"}},
+	{"unknown top key", "titel = \"x\"", 3, 1, "titel", []string{"unknown key", "nearest known: title"}},
+	{"unknown dotted", "object.colour = 1", 3, 8, "object.colour", []string{"unknown key"}},
+	{"unknown inline", "object = { kind = \"black-hole\", hue = 1 }", 3, 33, "object.hue", []string{"unknown key"}},
+	{"deeper table", "[observer.more]\nx = 1", 3, 11, "observer.more", []string{"unknown key"}},
+	{"second emitter", "[[emitter]]\n[[emitter]]\noutr = 1", 5, 1, "emitter.2.outr", []string{"nearest known: outer"}},
+	{"first in the text", "[observer]\nradius = true\n[objekt]", 4, 10, "observer.radius", []string{"wrong type"}},
+
+	// tables
+	{"single emitter", "[emitter]\nouter = 9", 3, 2, "emitter", []string{"[[emitter]]"}},
+	{"several objects", "[[object]]", 3, 3, "object", []string{"[object]"}},
+	{"table as value", "object = 3", 3, 10, "object", []string{"wrong type", "a table"}},
+	{"value as table", "[title]", 3, 2, "title", []string{"wrong type, a table"}},
+	{"too many emitters", strings.Repeat("[[emitter]]\n", 65), 67, 3, "emitter.65", []string{"too many emitters", "64"}},
+
+	// types
+	{"text for a number", "[trace]\ntolerance = \"small\"", 4, 13, "trace.tolerance", []string{"wrong type, text", `found "small"`, "1e-13 to 0.001"}},
+	{"float for an integer", "[trace]\nmax_order = 2.0", 4, 13, "trace.max_order", []string{"wrong type, a number"}},
+	{"number for text", "title = 3", 3, 9, "title", []string{"wrong type, a whole number"}},
+	{"bool for a quantity", "[observer]\ninclination = true", 4, 15, "observer.inclination", []string{"wrong type, true or false"}},
+	{"date", "[observer]\ninclination = 2020-01-01", 4, 15, "observer.inclination", []string{"wrong type, a date"}},
+	{"list for a quantity", "[observer]\ninclination = [3]", 4, 15, "observer.inclination", []string{"wrong type, a list"}},
+	{"table for a quantity", "[observer]\ninclination = {}", 4, 15, "observer.inclination", []string{"wrong type, a table"}},
+	{"number for a list", "[field]\npixels = 800", 4, 10, "field.pixels", []string{"a list of 2 whole numbers"}},
+	{"list too long", "[field]\npixels = [1, 2, 3]", 4, 10, "field.pixels", []string{"a list of 2 whole numbers"}},
+	{"empty list", "[field]\nfrequency = []", 4, 13, "field.frequency", []string{"a list of 0 items"}},
+	{"too many items", "[field]\nfrequency = [" + strings.Repeat("1,", 1001) + "]", 4, 13, "field.frequency", []string{"a list of 1001 items", "up to 1000"}},
+	{"number in a list of tables", "emitter = [{}, 3]", 3, 16, "emitter", []string{"wrong type, a whole number", "a table"}},
+	{"unknown nested", "[observer]\na.b.c = 1", 4, 1, "observer.a", []string{"unknown key"}},
+	{"text for a list of words", "[trace]\neffects = \"motion\"", 4, 11, "trace.effects", []string{"wrong type, text"}},
+	{"unknown word", "[trace]\neffects = [\"moton\"]", 4, 12, "trace.effects", []string{"unknown choice"}},
+	{"overflowing error", "[object]\ndistance = \"1 +- 1e305 Mpc\"", 4, 12, "object.distance", []string{"not a finite error"}},
+	{"beyond a whole number", "trace.max_order = 99999999999999999999", 3, 19, "", []string{"not TOML"}},
+	{"item of a list", "[field]\npixels = [8, \"x\"]", 4, 14, "field.pixels", []string{"wrong type, text"}},
+	{"item of words", "[trace]\neffects = [\"motion\", 3]", 4, 22, "trace.effects", []string{"wrong type"}},
+	{"number for a choice", "[observer]\nmotion = 3", 4, 10, "observer.motion", []string{"wrong type"}},
+	{"unknown choice", "[[emitter]]\nsense = \"left\"", 4, 9, "emitter.sense", []string{"counter-clockwise or clockwise"}},
+	{"after µ", "title = \"µ\" # µ\n[field]\ncenter = [ \"1 M\", \"µ\" ]", 5, 19, "field.center", []string{"not a number with a unit"}},
+
+	// units
+	{"wrong unit", "[observer]\ninclination = \"60 km\"", 4, 15, "observer.inclination", []string{"the unit km does not fit", "units deg rad"}},
+	{"unknown unit", "[observer]\ninclination = \"60 Deg\"", 4, 15, "observer.inclination", []string{`unknown unit "Deg"`}},
+	{"no unit", "[observer]\ninclination = \"60\"", 4, 15, "observer.inclination", []string{"without a unit"}},
+	{"empty", "[observer]\ninclination = \"\"", 4, 15, "observer.inclination", []string{"not a number with a unit"}},
+	{"error not allowed", "[observer]\ninclination = \"60 +- 1 deg\"", 4, 15, "observer.inclination", []string{"an error is not allowed"}},
+	{"negative error", "[object]\nmass = \"6 +- -1 Msun\"", 4, 8, "object.mass", []string{"no error after +-"}},
+	{"km without mass", "[[emitter]]\nouter = \"60 km\"", 4, 9, "emitter.outer", []string{"km needs object.mass"}},
+	{"s without mass", "[[emitter]]\nouter = \"60 s\"", 4, 9, "emitter.outer", []string{"s needs object.mass"}},
+	{"uas without scale", "[field]\nwidth = \"60 µas\"", 4, 9, "field.width", []string{"object.mass and object.distance, or object.theta_g"}},
+	{"uas without distance", "[object]\nmass = 1e9\n[field]\nwidth = \"60 μas\"", 6, 9, "field.width", []string{"object.distance is missing"}},
+	{"uas without mass", "[object]\ndistance = 9\n[field]\nwidth = \"60 uas\"", 6, 9, "field.width", []string{"object.mass is missing"}},
+	{"beam without scale", "[telescope]\nbeam = [20, 20, 0]", 4, 8, "telescope.beam", []string{"uas needs"}},
+	{"ring without scale", "[measured]\nring_diameter = 40", 4, 17, "measured.ring_diameter", []string{"uas needs"}},
+	{"uas from nearby", "[object]\ntheta_g = 3\n[observer]\nradius = 100\n[field]\nwidth = \"60 uas\"", 8, 9, "field.width", []string{"needs the observer at infinity"}},
+	{"deg on a parallel field", "[field]\nwidth = \"60 deg\"", 4, 9, "field.width", []string{"needs a perspective field"}},
+	{"M on a perspective field", "[observer]\nradius = 10\n[field]\nprojection = \"perspective\"\nwidth = \"60 M\"", 7, 9, "field.width", []string{"needs a parallel field"}},
+	{"beam angle", "[object]\ntheta_g = 3\n[telescope]\nbeam = [20, 20, \"3 uas\"]", 6, 17, "telescope.beam", []string{"does not fit"}},
+
+	// not finite
+	{"nan", "[observer]\nradius = nan", 4, 10, "observer.radius", []string{"not a finite number", "found nan"}},
+	{"-inf", "[[emitter]]\nindex = -inf", 4, 9, "emitter.index", []string{"not a finite number"}},
+	{"inf", "[observer]\nradius = inf", 4, 10, "observer.radius", []string{"not a finite number", `"infinity"`}},
+	{"nan M", "[observer]\nradius = \"nan M\"", 4, 10, "observer.radius", []string{"not a finite number"}},
+	{"+Inf M", "[[emitter]]\nouter = \"+Inf M\"", 4, 9, "emitter.outer", []string{"not a finite number"}},
+	{"infinite rim", "[[emitter]]\nouter = \"infinity\"", 4, 9, "emitter.outer", []string{"not a finite number"}},
+	{"nan error", "[object]\nmass = \"1 +- nan Msun\"", 4, 8, "object.mass", []string{"not a finite number"}},
+	{"overflowing text", "[[emitter]]\nouter = \"1e999 M\"", 4, 9, "emitter.outer", []string{"not a finite number"}},
+	{"overflowing unit", "[[emitter]]\nouter = \"1e308 rs\"", 4, 9, "emitter.outer", []string{"not a finite number of M"}},
+
+	// ranges
+	{"inside the horizon", "[observer]\nradius = \"1.9 M\"", 4, 10, "observer.radius", []string{"outside the horizon", `found "1.9 M"`, "more than 2 M"}},
+	{"on the horizon", "[observer]\nradius = 2", 4, 10, "observer.radius", []string{"outside the horizon"}},
+	{"on the photon sphere", "[observer]\nradius = \"1.5 rs\"", 4, 10, "observer.radius", []string{"more than 3 M"}},
+	{"perspective from infinity", "[field]\nprojection = \"perspective\"", 4, 14, "field.projection", []string{"finite radius"}},
+	{"inclination", "[observer]\ninclination = \"180.5 deg\"", 4, 15, "observer.inclination", []string{"0 to 180 deg"}},
+	{"negative mass", "[object]\nmass = -1", 4, 8, "object.mass", []string{"more than 0"}},
+	{"zero distance", "[object]\ndistance = 0", 4, 12, "object.distance", []string{"more than 0"}},
+	{"no pixels", "[field]\npixels = [10, 0]", 4, 15, "field.pixels", []string{"1 or more"}},
+	{"memory", "[field]\npixels = [1000000, 1000000]", 4, 10, "field.pixels", []string{"69.12 TiB", "76 bytes", "4 GiB"}},
+	{"much memory", "[field]\npixels = [9223372036854775807, 9223372036854775807]", 4, 10, "field.pixels", []string{"TiB"}},
+	{"memory by order", "[field]\npixels = [8000, 8000]\n[trace]\nmax_order = 9", 4, 10, "field.pixels", []string{"14.54 GiB", "244 bytes"}},
+	{"width", "[field]\nwidth = 0", 4, 9, "field.width", []string{"more than 0 M"}},
+	{"perspective width", "[observer]\nradius = 10\n[field]\nprojection = \"perspective\"\nwidth = 180", 7, 9, "field.width", []string{"between 0 and 180 deg"}},
+	{"frequency", "[field]\nfrequency = [230, 0]", 4, 19, "field.frequency", []string{"more than 0"}},
+	{"order of rims", "[[emitter]]\ninner = 20\nouter = 20", 4, 9, "emitter.inner", []string{"less than the outer radius of 20 M"}},
+	{"outer inside the default", "[[emitter]]\nouter = 5", 4, 9, "emitter.outer", []string{"more than the inner radius of 6 M"}},
+	{"rim inside the horizon", "[[emitter]]\ninner = \"1.9 M\"", 4, 9, "emitter.inner", []string{"2 M or more"}},
+	{"minor beam", "[object]\ntheta_g = 3\n[telescope]\nbeam = [20, 21, 0]", 6, 13, "telescope.beam", []string{"minor"}},
+	{"max_order", "[trace]\nmax_order = 10", 4, 13, "trace.max_order", []string{"0 to 9"}},
+	{"tolerance", "[trace]\ntolerance = 1e-14", 4, 13, "trace.tolerance", []string{"1e-13 to 0.001"}},
+	{"charge", "[object]\ncharge = 1", 4, 10, "object.charge", []string{"between -1 and 1 M"}},
+	{"theta_g and mass", "[object]\nmass = 1e9\ntheta_g = 3", 5, 11, "object.theta_g", []string{"together with mass or distance"}},
+	{"theta_g and distance", "[object]\ntheta_g = 3\ndistance = 3", 4, 11, "object.theta_g", []string{"together with mass or distance"}},
+	{"effect twice", "[trace]\neffects = [\"motion\", \"motion\", \"gravity\"]", 4, 11, "trace.effects", []string{"named twice: motion"}},
+
+	// TOML
+	{"syntax", "[observer]\nradius = ", 4, 9, "", []string{"not TOML"}},
+	{"open text", "title = \"x", 3, 10, "", []string{"not TOML"}},
+	{"duplicate key", "[observer]\nradius = 9\nradius = 8", 5, 1, "radius", []string{"already defined"}},
+	{"duplicate table", "[observer]\n[observer]", 4, 2, "observer", []string{"already exists"}},
+	{"invalid UTF-8", "title = \"µ\xff\"", 3, 11, "", []string{"not UTF-8"}},
+	{"NUL", "title = \"a\x00\"", 3, 11, "", []string{"NUL"}},
+
+	// not in this version
+	{"star", "[object]\nkind = \"star\"", 4, 8, "object.kind", []string{"not in this version"}},
+	{"shell", "[object]\nkind = \"shell\"", 4, 8, "object.kind", []string{"not in this version"}},
+	{"charged", "[object]\ncharge = \"0.5 M\"", 4, 10, "object.charge", []string{"not in this version"}},
+	{"object radius", "[object]\nradius = 4", 4, 1, "object.radius", []string{"not in this version"}},
+	{"interior", "[object]\ninterior = \"opaque\"", 4, 1, "object.interior", []string{"not in this version"}},
+	{"redshift", "[object]\nredshift = 0.1", 4, 12, "object.redshift", []string{"not in this version"}},
+	{"orbit", "[observer]\nmotion = \"orbit\"", 4, 10, "observer.motion", []string{"not in this version"}},
+	{"infall", "[observer]\nmotion = \"infall\"", 4, 10, "observer.motion", []string{"not in this version"}},
+	{"all-sky", "[field]\nprojection = \"all-sky\"", 4, 14, "field.projection", []string{"not in this version"}},
+	{"spot", "[[emitter]]\nkind = \"spot\"", 4, 8, "emitter.kind", []string{"not in this version"}},
+	{"surface", "[[emitter]]\nkind = \"surface\"", 4, 8, "emitter.kind", []string{"not in this version"}},
+	{"sky", "[[emitter]]\nkind = \"sky\"", 4, 8, "emitter.kind", []string{"not in this version"}},
+	{"static gas", "[[emitter]]\ngas = \"static\"", 4, 7, "emitter.gas", []string{"not in this version"}},
+	{"novikov-thorne", "[[emitter]]\nprofile = \"novikov-thorne\"", 4, 11, "emitter.profile", []string{"not in this version"}},
+	{"table profile", "[[emitter]]\nprofile = \"table\"", 4, 11, "emitter.profile", []string{"not in this version"}},
+	{"index list", "[[emitter]]\nindex = [6, 3]", 4, 9, "emitter.index", []string{"not in this version"}},
+	{"breaks", "[[emitter]]\nbreaks = [\"10 M\"]", 4, 1, "emitter.breaks", []string{"not in this version"}},
+	{"total_flux", "[[emitter]]\ntotal_flux = \"0.6 Jy\"", 4, 1, "emitter.total_flux", []string{"not in this version"}},
+	{"luminosity", "[[emitter]]\nluminosity = \"0.1 Edd\"", 4, 1, "emitter.luminosity", []string{"not in this version"}},
+	{"accretion_rate", "[[emitter]]\naccretion_rate = 1", 4, 1, "emitter.accretion_rate", []string{"not in this version"}},
+	{"colour_correction", "[[emitter]]\ncolour_correction = 1.7", 4, 1, "emitter.colour_correction", []string{"not in this version"}},
+	{"line", "[[emitter]]\nlight = \"line\"", 4, 9, "emitter.light", []string{"not in this version"}},
+	{"blackbody", "[[emitter]]\nlight = \"blackbody\"", 4, 9, "emitter.light", []string{"not in this version"}},
+	{"rest", "[[emitter]]\nrest = \"6.4 keV\"", 4, 1, "emitter.rest", []string{"not in this version"}},
+	{"optical depth", "[[emitter]]\noptical_depth = 0.5", 4, 17, "emitter.optical_depth", []string{"not in this version"}},
+	{"emission angle", "[[emitter]]\nemission_angle = \"darkened\"", 4, 18, "emitter.emission_angle", []string{"not in this version"}},
+	{"effects", "[trace]\neffects = [\"motion\", \"gravity\"]", 4, 11, "trace.effects", []string{"not in this version"}},
+	{"uv", "[telescope]\nuv = \"uv.csv\"", 4, 1, "telescope.uv", []string{"not in this version"}},
+	{"resolution", "[telescope]\nresolution = \"5 eV\"", 4, 1, "telescope.resolution", []string{"not in this version"}},
+	{"time", "[time]\nstart = 0", 3, 2, "time", []string{"not in this version"}},
+	{"figure", "[[figure]]", 3, 3, "figure", []string{"not in this version"}},
+}
+
+func TestRefusals(t *testing.T) {
+	for _, c := range refusals {
+		t.Run(c.name, func(t *testing.T) {
+			checkRefusal(t, top+c.text, c.line, c.column, c.key, c.says)
+		})
+	}
+}
+
+func TestSchemaRefusals(t *testing.T) {
+	for _, c := range []struct {
+		name, text   string
+		line, column int
+		says         string
+	}{
+		{"empty file", "", 0, 0, "missing"},
+		{"missing", "title = \"x\"\n", 0, 0, "missing"},
+		{"in a table", "[object]\nschema = 1\n", 0, 0, "missing"},
+		{"other version", "title = \"x\"\nschema = 2\n[novel]\n", 2, 10, "found 2"},
+		{"text", "schema = \"1\"\n", 1, 10, `found "1"`},
+		{"float", "schema = 1.0\n", 1, 10, "found 1.0"},
+	} {
+		t.Run(c.name, func(t *testing.T) {
+			checkRefusal(t, c.text, c.line, c.column, "schema", []string{c.says, "schema = 1"})
+		})
+	}
+}
+
+// checkRefusal expects a text to be refused at a place for a reason.
+func checkRefusal(t *testing.T, text string, line, column int, key string, says []string) {
+	t.Helper()
+	_, err := Parse("test.toml", []byte(text))
+	var e *Error
+	if !errors.As(err, &e) {
+		t.Fatalf("error %v, want an *Error", err)
+	}
+	if e.Line != line || e.Column != column || e.Key != key {
+		t.Errorf("refused at %d:%d for %q, want %d:%d for %q\n%v", e.Line, e.Column, e.Key, line, column, key, err)
+	}
+	for _, part := range says {
+		if !strings.Contains(err.Error(), part) {
+			t.Errorf("message lacks %q:\n%v", part, err)
+		}
+	}
+	if later := strings.Contains(err.Error(), notInVersion); later != e.Later {
+		t.Errorf("Later is %v:\n%v", e.Later, err)
+	}
+}
+
+func TestErrorMessage(t *testing.T) {
+	_, err := Parse("disk.toml", []byte("schema = 1\n[observer]\n\tradius = \"1.9 M\" # near\n"))
+	const want = `disk.toml:3:11: observer.radius: out of range: the observer must be outside the horizon; ` +
+		`found "1.9 M"; allowed: "infinity" or more than 2 M
+     radius = "1.9 M" # near
+              ^`
+	if err == nil || err.Error() != want {
+		t.Errorf("message\n%v\nwant\n%s", err, want)
+	}
+}
+
+func TestExcerptOfLongLine(t *testing.T) {
+	text := top + "title = \"" + strings.Repeat("x", 5000) + "\x01" + strings.Repeat("y", 5000) + "\""
+	_, err := Parse("long.toml", []byte(text))
+	var e *Error
+	if !errors.As(err, &e) {
+		t.Fatalf("error %v, want an *Error", err)
+	}
+	line, caret, _ := strings.Cut(e.Excerpt, "\n")
+	if at := []rune(line); len(at) > excerptWidth+4 || at[strings.Index(caret, "^")] != '·' {
+		t.Errorf("excerpt\n%s", e.Excerpt)
+	}
+}

@@ -1,0 +1,190 @@
+package scenes
+
+import (
+	"bytes"
+	"math"
+	"strings"
+	"testing"
+)
+
+// near fails when got is not within tol of want; NaN fails.
+func near(t *testing.T, what string, got, want, tol float64) {
+	t.Helper()
+	if !(math.Abs(got-want) <= tol) {
+		t.Errorf("%s = %.17g, want %.17g ± %g", what, got, want, tol)
+	}
+}
+
+// Gravitational radii as angles: GM/(c² D) computed from IAU 2015 Resolutions
+// B2 and B3. Masses and distances: EHT 2019, ApJL 875, L1 and L6; GRAVITY
+// 2022, A&A 657, L12; Do et al. 2019.
+var angularScales = []struct {
+	mass, distance string
+	thetaG         float64 // uas, to the digits given
+}{
+	{"6.5e9 Msun", "16.8 Mpc", 3.8189933},
+	{"4.297e6 Msun", "8277 pc", 5.1243315},
+	{"3.975e6 Msun", "7.959 kpc", 4.9297335},
+}
+
+func TestThetaG(t *testing.T) {
+	for _, c := range angularScales {
+		d := parse(t, "schema = 1\n[object]\nmass = \""+c.mass+"\"\ndistance = \""+c.distance+"\"\n")
+		got, ok := d.Scene().ThetaG()
+		if !ok {
+			t.Errorf("%s at %s has no theta_g", c.mass, c.distance)
+		}
+		near(t, c.mass+" theta_g", got, c.thetaG, 0.5e-7)
+	}
+}
+
+func TestScaleOfOneSun(t *testing.T) {
+	s := parse(t, "schema = 1\n[object]\nmass = 1\n").Scene()
+	metres, ok := s.MetresPerM()
+	seconds, ok2 := s.SecondsPerM()
+	if !ok || !ok2 {
+		t.Error("a mass gives no scale")
+	}
+	// GMsun/c² and GMsun/c³, computed from IAU 2015 Resolution B3 and the SI.
+	near(t, "metres", metres, 1476.62503805012, 1e-11)
+	near(t, "seconds", seconds, 4.92549094764127e-6, 1e-20)
+	if _, ok := s.ThetaG(); ok {
+		t.Error("theta_g without a distance")
+	}
+	if _, ok := (Scene{}).MetresPerM(); ok {
+		t.Error("metres without a mass")
+	}
+	if _, ok := (Scene{}).SecondsPerM(); ok {
+		t.Error("seconds without a mass")
+	}
+}
+
+func TestUnits(t *testing.T) {
+	const scaled = "[object]\nmass = 1\ndistance = \"1 pc\"\n"
+	mPerAngle := 1476.62503805012 / 3.0856775814913673e16 * 180 / math.Pi * 3600e6 // uas in one M; pc: IAU 2015 B2
+	outer := func(s Scene) float64 { return s.Emitters[0].Outer }
+	frequency := func(s Scene) float64 { return s.Field.Frequency[0] }
+	for _, c := range []struct {
+		text string
+		get  func(Scene) float64
+		want float64
+	}{
+		{"[[emitter]]\nouter = 30", outer, 30},
+		{"[[emitter]]\nouter = \"30M\"", outer, 30},
+		{"[[emitter]]\nouter = \"+3.0E1 rg\"", outer, 30},
+		{"[[emitter]]\nouter = \"15 rs\"", outer, 30},
+		{"[[emitter]]\nouter = 0x1F", outer, 31},
+		{"[[emitter]]\nouter = 1_000.5", outer, 1000.5},
+		{scaled + "[[emitter]]\nouter = \"14.7662503805012 km\"", outer, 10},
+		{scaled + "[[emitter]]\nouter = \"4.92549094764127e-5 s\"", outer, 10},
+		{scaled + "[[emitter]]\nouter = \"0.1 µas\"", outer, 0.1 / mPerAngle},
+		{scaled + "[[emitter]]\nouter = \"0.0001 mas\"", outer, 0.1 / mPerAngle},
+		{"[object]\ntheta_g = \"2 μas\"\n[[emitter]]\nouter = \"40 uas\"", outer, 20},
+		{"[observer]\ninclination = \"0.5 rad\"", func(s Scene) float64 { return s.Observer.Inclination }, 90 / math.Pi},
+		{"[object]\ndistance = 8.2", func(s Scene) float64 { return s.Object.Distance.Value }, 8200},
+		{"[object]\ndistance = \"14 ± 2 Mpc\"", func(s Scene) float64 { return s.Object.Distance.Sigma }, 2e6},
+		{"[object]\nmass = \"4.1e6+-0.1e6Msun\"", func(s Scene) float64 { return s.Object.Mass.Sigma }, 1e5},
+		{"[field]\nfrequency = 230", frequency, 230e9},
+		{"[field]\nfrequency = [\"1 THz\", \"1 MHz\"]", frequency, 1e12},
+		{"[field]\nfrequency = \"1eV\"", frequency, 2.417989242084e14}, // CODATA 2018, e/h
+		{"[field]\nfrequency = \"6.4 keV\"", frequency, 6400 * 2.417989242084e14},
+		{"[observer]\nradius = 9\n[field]\nprojection = \"perspective\"\nwidth = 40", func(s Scene) float64 { return s.Field.Width }, 40},
+		{"[observer]\nradius = 9\n[field]\nprojection = \"perspective\"\nwidth = \"36 mas\"", func(s Scene) float64 { return s.Field.Width }, 1e-5},
+		{"[object]\ntheta_g = 2\n[field]\nwidth = \"150 uas\"", func(s Scene) float64 { return s.Field.Width }, 75},
+		{"[object]\ntheta_g = 2\n[telescope]\nbeam = [\"1 mas\", 20, \"1 rad\"]", func(s Scene) float64 { return s.Telescope.Beam[2] }, 180 / math.Pi},
+	} {
+		near(t, c.text, c.get(parse(t, top+c.text).Scene()), c.want, 1e-12*c.want)
+	}
+}
+
+// TestDefaults pins what an almost empty file means.
+func TestDefaults(t *testing.T) {
+	s := parse(t, "schema = 1\n[[emitter]]\n").Scene()
+	want := Scene{
+		Object:   Object{Kind: "black-hole"},
+		Observer: Observer{Radius: math.Inf(1), Inclination: 60, Motion: "static"},
+		Field:    Field{Projection: "parallel", AutoWidth: true, Pixels: [2]int{800, 800}},
+		Emitters: []Emitter{{Kind: "disk", Inner: Rim{"isco", 6}, Outer: 20, Gas: "circular", Profile: "power", Index: 3, Light: "bolometric"}},
+		Trace:    Trace{Tolerance: 1e-9, MaxOrder: 2, FluxTolerance: 1e-4},
+	}
+	if !s.Equal(want) {
+		t.Errorf("defaults %+v, want %+v", s, want)
+	}
+	if notes := s.Notes(); notes != nil {
+		t.Errorf("notes %q", notes)
+	}
+	if notes := parse(t, "schema = 1").Scene().Notes(); len(notes) != 1 {
+		t.Errorf("an empty image gives notes %q", notes)
+	}
+}
+
+func TestFormatComesBack(t *testing.T) {
+	for _, text := range []string{
+		"",
+		"title = \"tab\\t, quote \\\", slash \\\\, µ, \\u0000 \\u007f\"",
+		"[object]\nmass = \"4.1e6 +- 0.1e6 Msun\"\ndistance = \"8178.3 +- 13.1 pc\"\n[measured]\nring_diameter = \"51.8 ± 2.3 µas\"\nestimator = \"ridge\"",
+		"[object]\ntheta_g = \"3.8 +- 0.4 uas\"\n[telescope]\nbeam = [0.3e2, \"20.1 uas\", \"0.1 rad\"]",
+		"[observer]\nradius = 3.0000000000000004\ninclination = \"1 rad\"\nazimuth = -0.1\n[field]\nwidth = 0.1\ncenter = [1e-300, -7]\npixels = [3, 1]",
+		"[observer]\nradius = 2.5\n[field]\nprojection = \"perspective\"\nwidth = \"0.3 rad\"\ncenter = [\"1 uas\", 3]",
+		"[field]\nfrequency = [\"6.4 keV\", 230, \"1 Hz\", 1e-300]",
+		"[[emitter]]\ninner = 2.1\nouter = \"1e300 M\"\nsense = \"clockwise\"\nindex = -0.1\n[[emitter]]\nlight = \"monochromatic\"\nspectral_index = -0.7\noptical_depth = \"thick\"",
+		"[trace]\ntolerance = 1e-13\nmax_order = 0\nflux_tolerance = 0.01",
+	} {
+		first := parse(t, top+text)
+		formatted := Format(first.Scene())
+		again := parse(t, string(formatted))
+		if !again.Scene().Equal(first.Scene()) {
+			t.Errorf("%q does not come back from\n%s", text, formatted)
+		}
+		if !bytes.Equal(Format(again.Scene()), formatted) {
+			t.Errorf("%q is formatted in two ways", text)
+		}
+	}
+}
+
+func TestSceneIsACopy(t *testing.T) {
+	d := parse(t, "schema = 1\n[field]\nfrequency = 230\n[[emitter]]\n")
+	s := d.Scene()
+	s.Emitters[0].Outer, s.Field.Frequency[0] = 1, 1
+	d.Text()[0] = 'x'
+	if d.Scene().Equal(s) || d.Text()[0] != 's' {
+		t.Error("the document has been changed from outside")
+	}
+}
+
+// TestKeyTable holds the table against what its own fields promise.
+func TestKeyTable(t *testing.T) {
+	seen := map[string]bool{}
+	for _, k := range Keys() {
+		if seen[k.Path()] || k.Text == "" {
+			t.Errorf("%s is there twice or without text", k.Path())
+		}
+		seen[k.Path()] = true
+		if _, ok := findSection(k.Section); !ok {
+			t.Errorf("%s has no section", k.Path())
+		}
+		for _, name := range k.Units {
+			if u, ok := findUnit(name); !ok || u.name != name {
+				t.Errorf("%s accepts the unknown unit %s", k.Path(), name)
+			}
+		}
+		if _, ok := findUnit(k.Unit); !ok && k.Unit != "" {
+			t.Errorf("%s has the unknown unit %s", k.Path(), k.Unit)
+		}
+	}
+	if len(seen) != len(keyTable) || len(seen) < 50 {
+		t.Errorf("%d keys", len(seen))
+	}
+}
+
+func TestFormatKeysNamesEveryKey(t *testing.T) {
+	var b strings.Builder
+	if err := FormatKeys(&b); err != nil {
+		t.Fatal(err)
+	}
+	for _, k := range keyTable {
+		if !strings.Contains(b.String(), "\n  "+k.Name+" ") {
+			t.Errorf("the reference lacks %s", k.Path())
+		}
+	}
+}
