@@ -1,47 +1,101 @@
 package geodesic
 
-import "math"
+import (
+	"math"
+	"math/cmplx"
+)
 
-// Radii of circular timelike orbits, M. Source: Bardeen, Press & Teukolsky,
-// ApJ 178, 347 (1972), from memory.
+// Radii of circular timelike orbits in the Schwarzschild exterior, M.
+// Source: Bardeen, Press & Teukolsky, ApJ 178, 347 (1972), from memory.
 const (
 	ISCO          = 6.0 // innermost stable circular orbit
 	MarginalBound = 4.0 // innermost bound one
 )
 
-// CircularEnergy returns the specific energy of circular motion at r > 3 M.
-func CircularEnergy(r float64) float64 { return (1 - 2/r) / math.Sqrt(1-3/r) }
-
-// CircularMomentum returns the specific angular momentum, in M, of circular
-// motion at r > 3 M.
-func CircularMomentum(r float64) float64 { return math.Sqrt(r) / math.Sqrt(1-3/r) }
-
-// AngularVelocity returns Ω = dφ/dt of circular motion at r, in 1/M.
-func AngularVelocity(r float64) float64 { return 1 / (r * math.Sqrt(r)) }
-
-// Gas is the four-velocity of disk gas: circular outside the ISCO, and
-// inside it the plunge that keeps the ISCO's energy and momentum
-// (Cunningham, ApJ 202, 788 (1975), from memory).
-type Gas struct {
-	UT, UR, UPhi float64 // dt/dτ, dr/dτ, dφ/dτ for counter-clockwise gas
+// ISCO returns the radius of the innermost stable circular orbit of the
+// exterior, M: the largest root of r³ - 6r² + 9Q²r - 4Q⁴ = 0 (standard
+// result for Reissner–Nordström, from memory); 6 without charge.
+func (s *Round) ISCO() float64 {
+	q2 := s.charge2
+	if q2 == 0 {
+		return ISCO
+	}
+	// depressed by r = 2 + v: v³ - 3p v - q = 0, whose largest root is the
+	// real part of 2 Re (z^(1/3)), Cardano's
+	p := 4 - 3*q2
+	q := 16 - 18*q2 + 4*q2*q2
+	z := complex(q/2, 0) + cmplx.Sqrt(complex(q*q/4-p*p*p, 0))
+	root := cmplx.Pow(z, 1./3)
+	return 2 + real(root) + p*real(1/root)
 }
 
-// GasAt returns the velocity of the gas at radius r > 2, M.
-func GasAt(r float64) Gas {
-	if r >= ISCO {
-		ut := 1 / math.Sqrt(1-3/r)
-		return Gas{UT: ut, UPhi: ut * AngularVelocity(r)}
+// CircularEnergy returns the specific energy of circular motion at r beyond
+// the photon sphere, M; (1-2/r)/√(1-3/r) without charge.
+func (s *Round) CircularEnergy(r float64) float64 {
+	u := 1 / r
+	return s.lapse2(u) * s.circularUT(u)
+}
+
+// CircularMomentum returns the specific angular momentum, M, of circular
+// motion at r; √r/√(1-3/r) without charge.
+func (s *Round) CircularMomentum(r float64) float64 {
+	return r * r * s.AngularVelocity(r) * s.circularUT(1/r)
+}
+
+// AngularVelocity returns Ω = dφ/dt of circular motion at r, 1/M: r^(-3/2)
+// without charge.
+func (s *Round) AngularVelocity(r float64) float64 {
+	return math.Sqrt(1-s.charge2/r) / (r * math.Sqrt(r))
+}
+
+// circularUT is dt/dτ = 1/√(1 - 3u + 2Q²u²) of circular motion.
+func (s *Round) circularUT(u float64) float64 {
+	return 1 / math.Sqrt(1-u*(3-2*s.charge2*u))
+}
+
+// Gas says how the gas of a disk moves about an object.
+type Gas struct {
+	object           *Round
+	still            bool
+	isco             float64
+	energy, momentum float64 // of the ISCO
+}
+
+// CircularGas is gas on circular geodesics, and inside the ISCO on the plunge
+// that keeps the ISCO's energy and momentum (Cunningham, ApJ 202, 788
+// (1975), from memory).
+func (s *Round) CircularGas() Gas {
+	r := s.ISCO()
+	return Gas{object: s, isco: r, energy: s.CircularEnergy(r), momentum: s.CircularMomentum(r)}
+}
+
+// StaticGas is gas at rest.
+func (s *Round) StaticGas() Gas { return Gas{object: s, still: true} }
+
+// Velocity is a four-velocity in the disk plane.
+type Velocity struct {
+	UT, UR, UPhi float64 // dt/dτ, dr/dτ, dφ/dτ of counter-clockwise gas
+}
+
+// At returns the gas's velocity at radius r, M, outside any horizon.
+func (g Gas) At(r float64) Velocity {
+	s := g.object
+	switch {
+	case g.still:
+		return Velocity{UT: 1 / s.Lapse(r)}
+	case r >= g.isco:
+		ut := s.circularUT(1 / r)
+		return Velocity{UT: ut, UPhi: ut * s.AngularVelocity(r)}
 	}
-	const (
-		energy   = 0.942809041582063380 // √(8/9)
-		momentum = 3.464101615137754587 // 2√3, M
-	)
-	fall := 6/r - 1
-	return Gas{
-		UT:   energy / (1 - 2/r),
-		UR:   -fall * math.Sqrt(fall) / 3,
-		UPhi: momentum / (r * r),
+	a := s.lapse2(1 / r)
+	v := Velocity{UT: g.energy / a, UPhi: g.momentum / (r * r)}
+	if s.charge2 == 0 { // the closed form keeps its digits next to the ISCO
+		fall := ISCO/r - 1
+		v.UR = -fall * math.Sqrt(fall) / 3
+		return v
 	}
+	v.UR = -math.Sqrt(max(g.energy*g.energy-a*(1+v.UPhi*g.momentum), 0))
+	return v
 }
 
 // RedshiftFactor returns g = ν_obs/ν_em of light that leaves the gas at r
@@ -49,11 +103,12 @@ func GasAt(r float64) Gas {
 // the light as it leaves (> 0 outward); sense is +1 for counter-clockwise
 // gas, -1 for clockwise.
 //
-// ν_em/E = u^t - λ u^φ - u_r k^r with u_r = u^r/(1-2/r).
-func (v Gas) RedshiftFactor(r, gObs, lambda, kr, sense float64) float64 {
+// ν_em/E = u^t - λ u^φ - u_r k^r with u_r = u^r/A.
+func (g Gas) RedshiftFactor(r, gObs, lambda, kr, sense float64) float64 {
+	v := g.At(r)
 	emitted := v.UT - sense*lambda*v.UPhi
 	if v.UR != 0 {
-		emitted -= kr * v.UR / (1 - 2/r)
+		emitted -= kr * v.UR / g.object.lapse2(1/r)
 	}
 	return gObs / emitted
 }

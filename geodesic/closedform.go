@@ -11,9 +11,6 @@ import (
 // sin a = b_c √(1-2/r)/r. Source: Synge, MNRAS 131, 463 (1966), from memory.
 const CriticalImpact = 5.196152422706632
 
-// PhotonSphere is the radius of the circular light orbit, M.
-const PhotonSphere = 3.0
-
 // CriticalDistance returns x = b/b_c - 1 with b taken as exact, to full
 // relative precision also where b and b_c agree in all digits.
 func CriticalDistance(b float64) float64 {
@@ -261,18 +258,4 @@ func Deflection(b float64) float64 {
 func DeflectionAtPeriapsis(r0 float64) float64 {
 	o := NewClosedOrbitFromPeriapsis(r0)
 	return 2*o.Sweep(0, o.u2) - math.Pi
-}
-
-// SweptToEnd returns the fate and the angle swept by the path p in closed
-// form, the judge of Trace.
-func SweptToEnd(p Path) (Fate, float64) {
-	if p.Impact < radial {
-		return Captured, 0
-	}
-	uObs := 1 / p.ObserverRadius
-	o := NewClosedOrbit(p.Impact)
-	if o.scattering && uObs < 1./3 {
-		return Escaped, 2 * o.Sweep(min(uObs, o.u2), o.u2)
-	}
-	return Captured, o.Sweep(uObs, 0.5)
 }

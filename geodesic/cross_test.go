@@ -11,7 +11,7 @@ import (
 // most of them near the critical curve.
 func block(t *testing.T, rng *rand.Rand, o Observer, plan Plan, want Want, n int) (Rays, Crossings) {
 	t.Helper()
-	tracer, err := Schwarzschild{}.Tracer(o, plan)
+	tracer, err := schwarzschild.Tracer(o, plan)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -26,7 +26,7 @@ func block(t *testing.T, rng *rand.Rand, o Observer, plan Plan, want Want, n int
 	}
 	var rays Rays
 	var at Crossings
-	if err := (Schwarzschild{}).Aim(o, true, dirs, &rays); err != nil {
+	if err := schwarzschild.Aim(o, true, dirs, &rays); err != nil {
 		t.Fatal(err)
 	}
 	tracer.Cross(&rays, want, &at)
@@ -43,10 +43,10 @@ func TestCrossingsAgainstClosedForm(t *testing.T) {
 		for _, inclination := range []float64{0, 20, 60, 85, 89, 90, 163, 180} {
 			for _, radius := range []float64{6, 12, 1000, math.Inf(1)} {
 				o := Observer{Radius: radius, InclinationDeg: inclination}
-				rays, at := block(t, rng, o, Plan{tolerance, 2}, Want{}, 200)
+				rays, at := block(t, rng, o, Plan{Tolerance: tolerance, MaxOrder: 2, Plane: true}, Want{}, 200)
 				sinI, cosI := sinCosDeg(inclination)
 				for k := range rays.Lambda {
-					if rays.SignR[k] == 0 {
+					if !rays.Seen[k] {
 						continue
 					}
 					closed := NewClosedOrbit(rays.Impact(k))
@@ -96,7 +96,7 @@ func TestCrossingsAgainstClosedForm(t *testing.T) {
 func TestDelayAndSlope(t *testing.T) {
 	rng := rand.New(rand.NewPCG(11, 12))
 	o := Observer{Radius: 50, InclinationDeg: 70}
-	rays, at := block(t, rng, o, Plan{1e-11, 2}, Want{Delay: true, DrDb: true}, 2000)
+	rays, at := block(t, rng, o, Plan{Tolerance: 1e-11, MaxOrder: 2, Plane: true}, Want{Delay: true, Slope: true}, 2000)
 	sinI, cosI := sinCosDeg(70)
 	compared := 0
 	for k := range rays.Lambda {
@@ -109,7 +109,7 @@ func TestDelayAndSlope(t *testing.T) {
 			if !(math.Abs(slope) < 1e5) || at.R[j] > 50 || d < 1e-8 {
 				continue
 			}
-			near(t, fmt.Sprintf("dr/db at b = %.17g, order %d", b, at.Order[j]), at.DrDb[j]/slope, 1, 1e-5)
+			near(t, fmt.Sprintf("dr/db at b = %.17g, order %d", b, at.Order[j]), at.Slope[j]/slope, 1, 1e-5)
 			compared++
 		}
 	}
@@ -117,7 +117,7 @@ func TestDelayAndSlope(t *testing.T) {
 		t.Fatalf("compared %d slopes", compared)
 	}
 	// the face-on ring at 6 M: delays and echoes
-	tracer, err := Schwarzschild{}.Tracer(Observer{Radius: math.Inf(1)}, Plan{1e-12, 3})
+	tracer, err := schwarzschild.Tracer(Observer{Radius: math.Inf(1)}, Plan{Tolerance: 1e-12, MaxOrder: 3, Plane: true})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -126,7 +126,7 @@ func TestDelayAndSlope(t *testing.T) {
 		b := RimImpact(0, math.Pi/2+float64(n)*math.Pi, 6)
 		var r Rays
 		var c Crossings
-		if err := (Schwarzschild{}).Aim(Observer{Radius: math.Inf(1)}, true, []Direction{{Alpha: b}}, &r); err != nil {
+		if err := schwarzschild.Aim(Observer{Radius: math.Inf(1)}, true, []Direction{{Alpha: b}}, &r); err != nil {
 			t.Fatal(err)
 		}
 		tracer.Cross(&r, Want{Delay: true}, &c)
@@ -173,7 +173,7 @@ func TestSyngeAngle(t *testing.T) {
 		for _, side := range []float64{-1, 1} {
 			sin, cos := math.Sincos((c.deg + side*1e-9) * math.Pi / 180)
 			var r Rays
-			if err := (Schwarzschild{}).Aim(o, false, []Direction{{Alpha: sin, Ahead: cos}}, &r); err != nil {
+			if err := schwarzschild.Aim(o, false, []Direction{{Alpha: sin, Ahead: cos}}, &r); err != nil {
 				t.Fatal(err)
 			}
 			s, err := Trace(Path{ObserverRadius: c.r, Impact: r.Impact(0), Tolerance: 1e-12})
@@ -191,7 +191,7 @@ func TestSyngeAngle(t *testing.T) {
 // some of them turn round and fall in.
 func TestOutwardStarts(t *testing.T) {
 	o := Observer{Radius: 2.5, InclinationDeg: 40}
-	tracer, err := Schwarzschild{}.Tracer(o, Plan{1e-11, 2})
+	tracer, err := schwarzschild.Tracer(o, Plan{Tolerance: 1e-11, MaxOrder: 2, Plane: true})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -201,7 +201,7 @@ func TestOutwardStarts(t *testing.T) {
 		sin, cos := math.Sincos(deg * math.Pi / 180)
 		var r Rays
 		var c Crossings
-		if err := (Schwarzschild{}).Aim(o, false, []Direction{{Alpha: 0.6 * sin, Beta: -0.8 * sin, Ahead: cos}}, &r); err != nil {
+		if err := schwarzschild.Aim(o, false, []Direction{{Alpha: 0.6 * sin, Beta: -0.8 * sin, Ahead: cos}}, &r); err != nil {
 			t.Fatal(err)
 		}
 		tracer.Cross(&r, Want{Delay: true}, &c)
@@ -224,18 +224,18 @@ func TestAimRefusals(t *testing.T) {
 		{Radius: 1.9}, {Radius: math.NaN()}, {Radius: 10, InclinationDeg: -1}, {Radius: 10, InclinationDeg: 181},
 		{Radius: 10, InclinationDeg: math.NaN()}, {Radius: 3},
 	} {
-		if err := (Schwarzschild{}).Aim(o, true, dirs, &r); err == nil {
+		if err := schwarzschild.Aim(o, true, dirs, &r); err == nil {
 			t.Errorf("%+v is accepted", o)
 		}
 	}
-	if err := (Schwarzschild{}).Aim(Observer{Radius: math.Inf(1)}, false, dirs, &r); err == nil {
+	if err := schwarzschild.Aim(Observer{Radius: math.Inf(1)}, false, dirs, &r); err == nil {
 		t.Error("an angular field at infinity is accepted")
 	}
 }
 
 func TestCrossAllocatesNothing(t *testing.T) {
 	o := Observer{Radius: 1000, InclinationDeg: 75}
-	tracer, err := Schwarzschild{}.Tracer(o, Plan{1e-9, 2})
+	tracer, err := schwarzschild.Tracer(o, Plan{Tolerance: 1e-9, MaxOrder: 2, Plane: true})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -246,10 +246,10 @@ func TestCrossAllocatesNothing(t *testing.T) {
 	var r Rays
 	var c Crossings
 	if n := testing.AllocsPerRun(5, func() {
-		if err := (Schwarzschild{}).Aim(o, true, dirs, &r); err != nil {
+		if err := schwarzschild.Aim(o, true, dirs, &r); err != nil {
 			t.Fatal(err)
 		}
-		tracer.Cross(&r, Want{Delay: true, DrDb: true}, &c)
+		tracer.Cross(&r, Want{Delay: true, Slope: true}, &c)
 	}); n != 0 {
 		t.Errorf("a block allocates %v times, want 0", n)
 	}
@@ -257,7 +257,7 @@ func TestCrossAllocatesNothing(t *testing.T) {
 
 func BenchmarkCross(b *testing.B) {
 	o := Observer{Radius: 1000, InclinationDeg: 75}
-	tracer, err := Schwarzschild{}.Tracer(o, Plan{1e-9, 2})
+	tracer, err := schwarzschild.Tracer(o, Plan{Tolerance: 1e-9, MaxOrder: 2, Plane: true})
 	if err != nil {
 		b.Fatal(err)
 	}
@@ -268,7 +268,7 @@ func BenchmarkCross(b *testing.B) {
 	}
 	var r Rays
 	var c Crossings
-	if err := (Schwarzschild{}).Aim(o, true, dirs, &r); err != nil {
+	if err := schwarzschild.Aim(o, true, dirs, &r); err != nil {
 		b.Fatal(err)
 	}
 	for b.Loop() {

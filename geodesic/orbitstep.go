@@ -1,22 +1,21 @@
 package geodesic
 
-import "math"
-
 // orbit is the state of one path in its plane, u = 1/r against the swept
 // angle ψ, and the stages of the step just taken. Two riders use the same
 // stages without steering them: the regularised time and the slope ∂/∂b at
 // fixed ψ.
 type orbit struct {
 	b      float64 // impact parameter
+	curve  float64 // 2Q², the charge's share of the bending
 	psi, h float64 // start of the last step, its length
 	u, w   float64 // at the end of the last step; w = du/dψ
 	u0, w0 float64 // at its start
 	us     [7]float64
 	ws     [7]float64 // du/dψ at the stages
 	fs     [7]float64 // dw/dψ at the stages
-	time   float64    // ∫ b/(1 ± b w) dψ, see delayRider
+	time   float64    // delay + leg · r*(r), see rideTime
 	time0  float64
-	leg    float64    // +1: time holds Δt + r*(r) - …; -1: Δt - r*(r) + …
+	leg    float64    // the sign of w at the start of the step
 	ts     [7]float64 // dtime/dψ at the stages
 	p, q   float64    // ∂u/∂b and ∂w/∂b at fixed ψ
 	p0, q0 float64
@@ -59,28 +58,32 @@ const (
 	d7  = 69997945. / 29380423
 )
 
-// bend is u″ in the Schwarzschild exterior (Darwin 1959).
-func bend(u float64) float64 { return u * (3*u - 1) }
+// bend is u″ = -u + 3u² - 2Q² u³ in the exterior (Darwin 1959; with charge,
+// Chandrasekhar 1983, section 40), curve = 2Q².
+func bend(u, curve float64) float64 { return u * (u*(3-curve*u) - 1) }
+
+// tide is ∂u″/∂u = -1 + 6u - 6Q² u².
+func tide(u, curve float64) float64 { return u*(6-3*curve*u) - 1 }
 
 // try takes a step of length h from the end of the last one and returns the
 // embedded estimates of the local error of u and w. The orbit's stages and
 // end state are those of the trial; retry with another h or call accept.
 func (o *orbit) try(h float64) (errU, errW float64) {
-	u, w := o.u0, o.w0
+	u, w, curve := o.u0, o.w0, o.curve
 	o.h = h
-	w1, f1 := w, bend(u)
+	w1, f1 := w, bend(u, curve)
 	u2, w2 := u+h*(a21*w1), w+h*(a21*f1)
-	f2 := bend(u2)
+	f2 := bend(u2, curve)
 	u3, w3 := u+h*(a31*w1+a32*w2), w+h*(a31*f1+a32*f2)
-	f3 := bend(u3)
+	f3 := bend(u3, curve)
 	u4, w4 := u+h*(a41*w1+a42*w2+a43*w3), w+h*(a41*f1+a42*f2+a43*f3)
-	f4 := bend(u4)
+	f4 := bend(u4, curve)
 	u5, w5 := u+h*(a51*w1+a52*w2+a53*w3+a54*w4), w+h*(a51*f1+a52*f2+a53*f3+a54*f4)
-	f5 := bend(u5)
+	f5 := bend(u5, curve)
 	u6, w6 := u+h*(a61*w1+a62*w2+a63*w3+a64*w4+a65*w5), w+h*(a61*f1+a62*f2+a63*f3+a64*f4+a65*f5)
-	f6 := bend(u6)
+	f6 := bend(u6, curve)
 	u7, w7 := u+h*(a71*w1+a73*w3+a74*w4+a75*w5+a76*w6), w+h*(a71*f1+a73*f3+a74*f4+a75*f5+a76*f6)
-	f7 := bend(u7)
+	f7 := bend(u7, curve)
 	o.us = [7]float64{u, u2, u3, u4, u5, u6, u7}
 	o.ws = [7]float64{w1, w2, w3, w4, w5, w6, w7}
 	o.fs = [7]float64{f1, f2, f3, f4, f5, f6, f7}
@@ -99,17 +102,17 @@ func (o *orbit) accept() {
 }
 
 // rideTime carries the regularised time over the trial step. On a leg with
-// w > 0 the time is Δt + r*(r) - r*(r_obs), of which
-// d/dψ = (1/b - w)/(u² f) = b/(1 + b w)
-// stays finite at infinity and at the horizon; with w < 0 it is
-// Δt - r*(r) + r*(r_obs), d/dψ = b/(1 - b w).
-func (o *orbit) rideTime() {
+// w > 0 it is the delay plus r*(r), of which
+// d/dψ = (1/b - w)/(u² A) = b/(1 + b w)
+// stays finite at infinity and at the horizon; with w < 0 it is the delay
+// less r*(r), d/dψ = b/(1 - b w).
+func (o *orbit) rideTime(s *Round) {
 	leg := 1.0
 	if o.w0 < 0 {
 		leg = -1
 	}
 	if leg != o.leg { // here u is far from both ends: the path is at its turning point
-		o.time0 += 2 * o.leg * -tortoise(o.u0)
+		o.time0 -= 2 * o.leg * s.tortoise(o.u0)
 		o.leg = leg
 	}
 	bl := o.b * leg
@@ -121,23 +124,23 @@ func (o *orbit) rideTime() {
 }
 
 // rideSlope carries ∂u/∂b and ∂w/∂b at fixed ψ over the trial step:
-// p′ = q, q′ = (6u - 1) p.
+// p′ = q, q′ = (∂u″/∂u) p.
 func (o *orbit) rideSlope() {
-	h, p, q := o.h, o.p0, o.q0
-	q1, s1 := q, (6*o.us[0]-1)*p
-	q2, s2 := q+h*(a21*s1), (6*o.us[1]-1)*(p+h*(a21*q1))
-	q3, s3 := q+h*(a31*s1+a32*s2), (6*o.us[2]-1)*(p+h*(a31*q1+a32*q2))
-	q4, s4 := q+h*(a41*s1+a42*s2+a43*s3), (6*o.us[3]-1)*(p+h*(a41*q1+a42*q2+a43*q3))
-	q5, s5 := q+h*(a51*s1+a52*s2+a53*s3+a54*s4), (6*o.us[4]-1)*(p+h*(a51*q1+a52*q2+a53*q3+a54*q4))
-	q6, s6 := q+h*(a61*s1+a62*s2+a63*s3+a64*s4+a65*s5), (6*o.us[5]-1)*(p+h*(a61*q1+a62*q2+a63*q3+a64*q4+a65*q5))
+	h, p, q, curve := o.h, o.p0, o.q0, o.curve
+	q1, s1 := q, tide(o.us[0], curve)*p
+	q2, s2 := q+h*(a21*s1), tide(o.us[1], curve)*(p+h*(a21*q1))
+	q3, s3 := q+h*(a31*s1+a32*s2), tide(o.us[2], curve)*(p+h*(a31*q1+a32*q2))
+	q4, s4 := q+h*(a41*s1+a42*s2+a43*s3), tide(o.us[3], curve)*(p+h*(a41*q1+a42*q2+a43*q3))
+	q5, s5 := q+h*(a51*s1+a52*s2+a53*s3+a54*s4), tide(o.us[4], curve)*(p+h*(a51*q1+a52*q2+a53*q3+a54*q4))
+	q6, s6 := q+h*(a61*s1+a62*s2+a63*s3+a64*s4+a65*s5), tide(o.us[5], curve)*(p+h*(a61*q1+a62*q2+a63*q3+a64*q4+a65*q5))
 	o.p = p + h*(a71*q1+a73*q3+a74*q4+a75*q5+a76*q6)
 	o.q = q + h*(a71*s1+a73*s3+a74*s4+a75*s5+a76*s6)
 }
 
-// glideSlope is rideSlope with the coefficient 6u - 1 frozen at its mean over
+// glideSlope is rideSlope with the coefficient ∂u″/∂u frozen at its mean over
 // the step, right to about a percent: enough for a bound.
 func (o *orbit) glideSlope() {
-	mean := 3*(o.u0+o.u) - 1
+	mean := (tide(o.u0, o.curve) + tide(o.u, o.curve)) / 2
 	z := mean * o.h * o.h
 	even := 1 + z*(1./2+z*(1./24)) // cosh √z
 	odd := o.h * (1 + z*(1./6+z*(1./120)))
@@ -167,10 +170,5 @@ func (o *orbit) timeAt(theta float64) float64 {
 }
 
 func (o *orbit) slopeAt(theta float64) float64 {
-	return quintic(theta, o.h, o.p0, o.p, o.q0, o.q, (6*o.u0-1)*o.p0, (6*o.u-1)*o.p)
-}
-
-// tortoise returns r* = r + 2 ln(r/2 - 1) at u = 1/r in (0, 1/2).
-func tortoise(u float64) float64 {
-	return 1/u + 2*math.Log((0.5-u)/u)
+	return quintic(theta, o.h, o.p0, o.p, o.q0, o.q, tide(o.u0, o.curve)*o.p0, tide(o.u, o.curve)*o.p)
 }

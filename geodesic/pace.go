@@ -55,9 +55,14 @@ func newPace(tolerance float64) pace {
 func (c *pace) start(b float64) {
 	c.perU = 1 / (c.tolerance * min(1/b, plungeScale))
 	c.perW = b / c.tolerance
+	c.spent, c.accepted, c.tried = 0, 0, 0
+	c.restart(b)
+}
+
+// restart begins a further leg of the same path.
+func (c *pace) restart(b float64) {
 	c.h = min(c.first, firstShare*b)
 	c.logPrev = logCalm
-	c.spent, c.accepted, c.tried = 0, 0, 0
 }
 
 // judge says whether a trial of length h with these error estimates stands,

@@ -13,7 +13,7 @@ const (
 	Captured  Fate = iota // reached the horizon
 	Escaped               // back at the observer's radius, or at infinity
 	OnSurface             // met the star's opaque surface
-	Trapped               // circles for ever
+	Trapped               // goes round within a shell's light ring for ever
 )
 
 // String returns the word that files and verbs use.
@@ -21,10 +21,12 @@ func (f Fate) String() string {
 	return [...]string{"captured", "escaped", "surface", "trapped"}[f]
 }
 
-// Path asks for one light path, followed backwards from an observer until it
-// is back at the observer's radius or at the horizon.
+// Path asks for one light path, followed backwards from an observer at rest,
+// inward first, until it is back at the observer's radius or ends before. A
+// path that starts within a shell, where the observer's radius says little,
+// is followed to infinity.
 type Path struct {
-	ObserverRadius float64 // M, > 2; +Inf at infinity
+	ObserverRadius float64 // M; +Inf at infinity
 	Impact         float64 // b, M, >= 0
 	Tolerance      float64 // relative, in [MinTolerance, MaxTolerance]
 }
@@ -39,51 +41,108 @@ type Story struct {
 	FateByClosedForm bool
 	Swept            float64 // radians, from the observer to the end
 	Deflection       float64 // radians; NaN unless escaped and the observer is at infinity
-	Closest          float64 // smallest r on the path, M; the horizon's if captured
-	TravelTime       float64 // M; NaN if captured; from infinity less r*(r_obs) at both ends
+	Closest          float64 // smallest r on the path, M; the edge's if it ends there
+	TravelTime       float64 // M; NaN unless escaped or on a surface; less r* at every end that is at infinity
 	Steps            int     // accepted
 	Evaluations      int     // of the right-hand side
 	Bound            float64 // on Swept, radians
-	ClosedFormSwept  float64 // radians
+	ClosedFormSwept  float64 // radians; NaN where there is no closed form (a charged hole)
 }
 
-// Trace integrates one path in the Schwarzschild exterior. It fails if no
-// such path leaves the observer inward, Impact above r/√(1-2/r), or if
-// ObserverRadius or Tolerance are out of range.
-func Trace(p Path) (Story, error) {
-	if err := p.check(); err != nil {
+// Trace integrates one path in the Schwarzschild exterior of a hole; see
+// Round.Trace.
+func Trace(p Path) (Story, error) { return schwarzschild.Trace(p) }
+
+// Trace integrates one path. It fails if no such path leaves the observer
+// inward, Impact above r/√A, or if ObserverRadius or Tolerance are out of
+// range.
+func (s *Round) Trace(p Path) (Story, error) {
+	if err := s.checkPath(p); err != nil {
 		return Story{}, err
 	}
-	s := Story{Closest: HorizonRadius, TravelTime: math.NaN(), Deflection: math.NaN()}
-	closedFate, closedSwept := SweptToEnd(p)
-	s.ClosedFormSwept = closedSwept
-	if p.Impact < radial {
-		s.Fate = Captured
-		return s, nil
-	}
-	var o orbit
-	c := newPace(p.Tolerance)
-	if err := o.follow(&c, p, &s); err != nil {
+	t, err := s.newTracer(Observer{Radius: p.ObserverRadius}, Plan{Tolerance: p.Tolerance})
+	if err != nil {
 		return Story{}, err
 	}
-	if s.Fate != closedFate || c.local() >= math.Abs(CriticalDistance(p.Impact)) {
-		s.FateByClosedForm = true
-		s.Fate, s.Swept = closedFate, closedSwept
-		s.Bound = closedFormBound(p.Impact)
-		s.TravelTime = math.NaN()
+	t.limit = math.Inf(1)
+	t.target = math.Inf(1)
+	t.want.Delay = true
+	closedFate, closedSwept := s.SweptToEnd(p)
+	story := Story{
+		Fate: closedFate, ClosedFormSwept: closedSwept,
+		Closest: s.Edge(), TravelTime: math.NaN(), Deflection: math.NaN(),
 	}
-	if s.Fate == Escaped {
-		closed := NewClosedOrbit(p.Impact)
-		if s.FateByClosedForm {
-			s.Closest = closed.Periapsis()
+	switch {
+	case closedFate == Trapped: // it would go round for ever; nothing to integrate
+		story.FateByClosedForm = true
+		story.Swept, story.Closest = math.Inf(1), p.Impact*s.inside.Lapse(p.ObserverRadius)
+		return story, nil
+	case p.Impact < radial && s.inside == nil:
+		return story, nil
+	}
+	uStop := t.uObs
+	if t.within {
+		uStop = 0
+	}
+	b := max(p.Impact, radial)
+	end := t.follow(b, s.inwardKR(p), uStop)
+	story.Steps, story.Evaluations = t.pace.accepted, 6*t.pace.tried+1
+	if end == lost {
+		return Story{}, fmt.Errorf("geodesic: b = %v M from r = %v M: %w after %d", p.Impact, p.ObserverRadius, ErrSteps, maxSteps)
+	}
+	t.settle(end, uStop, &story)
+	if math.IsNaN(closedSwept) {
+		return story, nil
+	}
+	decided := s.end != Captured || t.pace.local() < math.Abs(s.criticalDistance(p.Impact))
+	if story.Fate != closedFate || !decided {
+		story.FateByClosedForm = true
+		story.Fate, story.Swept = closedFate, closedSwept
+		story.Bound = closedFormBound(p.Impact)
+		story.TravelTime, story.Closest = math.NaN(), s.Edge()
+		if closedFate == Escaped {
+			story.Closest = Periapsis(p.Impact)
 		}
-		if math.IsInf(p.ObserverRadius, 1) {
-			s.Deflection = s.Swept - math.Pi
-		}
+	}
+	if story.Fate == Escaped && uStop == 0 && !t.within {
+		story.Deflection = story.Swept - math.Pi
+	}
+	return story, nil
+}
+
+// settle reads the story off the orbit at its end.
+func (t *roundTracer) settle(end ending, uStop float64, story *Story) {
+	s, o := t.spacetime, &t.orbit
+	if end == atEdge {
+		story.Fate = s.end
+		t.finish(s.edge)
 	} else {
-		s.Closest, s.TravelTime = HorizonRadius, math.NaN()
+		story.Fate = Escaped
+		story.Closest = t.closest
+		t.finish(uStop)
 	}
-	return s, nil
+	story.Swept = o.psi
+	story.Bound = t.angleBound()
+	delay := o.time0 // regular at infinity: less r* on the way out
+	if o.u0 > 0 {
+		delay -= o.leg * s.tortoise(o.u0)
+	}
+	if t.uObs > 0 { // delay is Δt - r*(r_obs)
+		delay += s.Tortoise(t.observer.Radius)
+	}
+	if story.Fate != Captured {
+		story.TravelTime = delay
+	}
+}
+
+// inwardKR is k^r/E of the light of p at its observer.
+func (s *Round) inwardKR(p Path) float64 {
+	if s.inside != nil && p.ObserverRadius*s.edge < 1 {
+		r := max(p.ObserverRadius, centreRadius)
+		return max(p.Impact, radial) * s.speedWithin(max(p.Impact, radial), r)
+	}
+	u := 1 / p.ObserverRadius
+	return math.Sqrt(max(1-p.Impact*p.Impact*u*u*s.lapse2(u), 0))
 }
 
 // closedFormBound is what SweptToEnd promises, radians.
@@ -91,92 +150,51 @@ func closedFormBound(b float64) float64 {
 	return 1e-12 + roundoff/math.Abs(CriticalDistance(b))
 }
 
-func (p Path) check() error {
-	if err := (Observer{Radius: p.ObserverRadius}).check(); err != nil {
+func (s *Round) checkPath(p Path) error {
+	if err := s.Check(Observer{Radius: p.ObserverRadius}); err != nil {
 		return err
 	}
-	if reach := p.ObserverRadius / Lapse(p.ObserverRadius); !(p.Impact >= 0 && p.Impact <= reach) || math.IsInf(p.Impact, 1) {
+	reach := p.ObserverRadius / s.Lapse(p.ObserverRadius)
+	if !(p.Impact >= 0 && p.Impact <= reach) || math.IsInf(p.Impact, 1) {
 		return fmt.Errorf("geodesic: impact parameter %v M: %w: at r = %v M it must lie in [0, %.6g] M",
 			p.Impact, ErrImpact, p.ObserverRadius, reach)
-	}
-	if !(p.Tolerance >= MinTolerance && p.Tolerance <= MaxTolerance) {
-		return fmt.Errorf("geodesic: tolerance %v: %w", p.Tolerance, ErrTolerance)
 	}
 	return nil
 }
 
-// follow integrates to the end of the path and fills in what integration
-// alone can tell.
-func (o *orbit) follow(c *pace, p Path, s *Story) error {
+// SweptToEnd returns the fate and the angle swept by the path p in closed
+// form, the judge of Trace: elliptic integrals in the exterior, elementary
+// functions within a shell or a uniform star. For a charged hole there is no
+// closed form here: NaN, with the fate by the critical impact parameter.
+func (s *Round) SweptToEnd(p Path) (Fate, float64) {
 	uObs := 1 / p.ObserverRadius
-	o.launch(uObs, p.Impact, false)
-	c.start(p.Impact)
-	for range maxSteps {
-		h := c.h
-		errU, errW := o.try(h)
-		if !c.judge(h, errU, errW) {
-			continue
+	b := p.Impact
+	if s.charge2 > 0 {
+		if b > s.CriticalImpact() && uObs < 1/s.PhotonSphere() {
+			return Escaped, math.NaN()
 		}
-		if o.w0 > 0 && o.w <= 0 { // the turning point lies in this step
-			theta := o.locate(func(theta float64) float64 { return o.wAt(theta) })
-			s.Closest = 1 / o.uAt(theta)
-		}
-		in, out := o.u >= 0.5, o.w < 0 && o.u <= uObs
-		if in || out {
-			end := uObs
-			s.Fate = Escaped
-			if in {
-				s.Fate, end = Captured, 0.5
-			}
-			o.finish(end)
-			o.rideSlope()
-			o.rideTime()
-			s.Steps, s.Evaluations = c.accepted, 6*c.tried+1+6
-			// a last correction along the orbit: the retaken step ends within
-			// the dense output's error of the event
-			rest := (end - o.u) / o.w
-			s.Swept = o.psi + o.h + rest
-			s.Bound = c.global(o.b, o.w, o.p) / math.Abs(o.w)
-			if s.Fate == Escaped {
-				s.TravelTime = o.travelTime(end)
-			}
-			return nil
-		}
-		o.rideSlope()
-		o.rideTime()
-		o.accept()
+		return Captured, math.NaN()
 	}
-	return fmt.Errorf("geodesic: b = %v M from r = %v M: %w after %d", p.Impact, p.ObserverRadius, ErrSteps, maxSteps)
-}
-
-// travelTime returns Δt at the end of an escaped path, back at uEnd = 1/r_obs,
-// or Δt - 2 r*(r_obs) where that is at infinity.
-func (o *orbit) travelTime(uEnd float64) float64 {
-	if uEnd == 0 {
-		return o.time // Δt - r*(r_obs) - r*(r), both radii at infinity
-	}
-	return o.time + 2*tortoise(uEnd)
-}
-
-// finish retakes the trial step so that it ends where the dense output
-// reaches u = end.
-func (o *orbit) finish(end float64) {
-	theta := o.locate(func(theta float64) float64 { return o.uAt(theta) - end })
-	o.try(o.h * theta)
-}
-
-// locate finds the zero of a dense-output function that changes sign within
-// the trial step, by bisection to the last bit; it is called once a path.
-func (o *orbit) locate(f func(theta float64) float64) float64 {
-	lo, hi := 0.0, 1.0
-	below := f(hi) < 0
-	for range 60 {
-		mid := (lo + hi) / 2
-		if (f(mid) < 0) == below {
-			hi = mid
-		} else {
-			lo = mid
+	if b < radial {
+		if s.inside != nil {
+			return Escaped, math.Pi
 		}
+		return s.end, 0
 	}
-	return hi
+	o := NewClosedOrbit(b)
+	if within := uObs > s.edge; within {
+		if o.scattering && s.edge > 1./3 {
+			return Trapped, math.Inf(1)
+		}
+		r := max(p.ObserverRadius, centreRadius)
+		return Escaped, s.inside.Phase(b, r, s.speedWithin(b, r)) +
+			s.inside.HalfSweep(b, s.edgeSpeed(b)) + o.Sweep(0, s.edge)
+	}
+	if o.scattering && uObs < 1./3 && o.u2 <= s.edge { // turns outside the edge
+		return Escaped, 2 * o.Sweep(min(uObs, o.u2), o.u2)
+	}
+	if s.inside == nil {
+		return s.end, o.Sweep(uObs, s.edge)
+	}
+	return Escaped, 2 * (o.Sweep(uObs, s.edge) + s.inside.HalfSweep(b, s.edgeSpeed(b)))
 }

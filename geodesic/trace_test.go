@@ -31,7 +31,7 @@ func TestTraceTolerance(t *testing.T) {
 	for _, radius := range promised {
 		for range 2500 {
 			p := Path{ObserverRadius: radius, Impact: randomNearCritical(rng), Tolerance: 1e-10}
-			if p.check() != nil {
+			if schwarzschild.checkPath(p) != nil {
 				continue // wider than this observer sees
 			}
 			s, err := Trace(p)
@@ -65,7 +65,7 @@ func TestBoundsCover(t *testing.T) {
 		paths, wide := 0, 0
 		for range 4000 {
 			p := Path{ObserverRadius: promised[rng.IntN(4)], Impact: randomNearCritical(rng), Tolerance: tolerance}
-			if p.check() != nil {
+			if schwarzschild.checkPath(p) != nil {
 				continue
 			}
 			s, err := Trace(p)
@@ -125,9 +125,8 @@ func TestConservationAndReversal(t *testing.T) {
 		if math.Abs(CriticalDistance(b)) < 1e-3 || b < 0.1 {
 			continue
 		}
-		var o orbit
+		o := launched(1e-3, b)
 		c := newPace(tolerance)
-		o.launch(1e-3, b, false)
 		c.start(b)
 		for o.psi < 2.5 && o.u0 < 0.45 && (o.w0 > 0 || o.u0 > 2e-3) {
 			if !c.judge(c.h, first(o.try(c.h)), second(o.try(c.h))) {

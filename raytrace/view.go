@@ -21,11 +21,12 @@ type View struct {
 // NewView prepares a scene. The scene must have passed the checks of
 // package scenes; what this version cannot trace is an error.
 func NewView(s scenes.Scene) (*View, error) {
-	if s.Object.Kind != "black-hole" {
-		return nil, fmt.Errorf("raytrace: object of kind %q cannot be traced in this version", s.Object.Kind)
+	object, err := newObject(s.Object)
+	if err != nil {
+		return nil, fmt.Errorf("raytrace: %w", err)
 	}
 	v := &View{
-		Spacetime: geodesic.Schwarzschild{},
+		Spacetime: object,
 		Observer: geodesic.Observer{
 			Radius:         s.Observer.Radius,
 			InclinationDeg: s.Observer.Inclination,
@@ -38,7 +39,7 @@ func NewView(s scenes.Scene) (*View, error) {
 			Columns:  s.Field.Pixels[0],
 			Rows:     s.Field.Pixels[1],
 		},
-		Plan: geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
+		Plan: geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder, Plane: true},
 	}
 	if !v.Field.Parallel {
 		const deg = math.Pi / 180
@@ -47,7 +48,7 @@ func NewView(s scenes.Scene) (*View, error) {
 	}
 	var disks []*emit.Disk
 	for i, e := range s.Emitters {
-		d, err := newDisk(e)
+		d, err := newDisk(e, object)
 		if err != nil {
 			return nil, fmt.Errorf("raytrace: emitter %d: %w", i+1, err)
 		}
@@ -60,11 +61,25 @@ func NewView(s scenes.Scene) (*View, error) {
 	return v, nil
 }
 
-func newDisk(e scenes.Emitter) (*emit.Disk, error) {
+// newObject is the one line a kind of object takes here.
+func newObject(o scenes.Object) (*geodesic.Round, error) {
+	switch o.Kind {
+	case "black-hole":
+		return geodesic.NewHole(o.Charge)
+	case "star":
+		return geodesic.NewStar(o.Radius, o.Interior == "uniform")
+	case "shell":
+		return geodesic.NewShell(o.Radius)
+	}
+	return nil, fmt.Errorf("object of kind %q cannot be traced in this version", o.Kind)
+}
+
+func newDisk(e scenes.Emitter, object *geodesic.Round) (*emit.Disk, error) {
 	if e.Kind != "disk" {
 		return nil, fmt.Errorf("kind %q cannot be traced in this version", e.Kind)
 	}
 	d := &emit.Disk{
+		Gas:   object.CircularGas(),
 		Inner: e.Inner.Radius, Outer: e.Outer,
 		Index: e.Index, Clockwise: e.Clockwise, Thick: e.Thick,
 	}

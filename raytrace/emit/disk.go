@@ -9,6 +9,7 @@ import (
 // Disk is a geometrically thin disk in the equatorial plane, seen from both
 // faces, whose gas-frame intensity is (r/M)^-Index.
 type Disk struct {
+	Gas          geodesic.Gas
 	Inner, Outer float64 // rims, M
 	Index        float64
 	Clockwise    bool // the gas turns clockwise about N
@@ -31,7 +32,7 @@ func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, light *Light) 
 			if at.Surface[j] != geodesic.Plane || r < d.Inner || r > d.Outer {
 				continue
 			}
-			g := geodesic.GasAt(r).RedshiftFactor(r, rays.GObs[k], rays.Lambda[k], at.KR[j], sense)
+			g := d.Gas.RedshiftFactor(r, rays.GObs[k], rays.Lambda[k], at.KR[j], sense)
 			light.Lit[j] = true
 			light.Opaque[j] = d.Thick
 			light.G[j] = g
