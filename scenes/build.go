@@ -1,7 +1,6 @@
 package scenes
 
 import (
-	"fmt"
 	"math"
 	"slices"
 	"sync"
@@ -45,15 +44,20 @@ var defaults = sync.OnceValue(func() map[address]reading {
 		if k.Default == "" {
 			continue
 		}
-		v, ok := parseValue(k.Default)
-		r, wrong := read(k, v)
-		if !ok || wrong != nil {
-			panic("scenes: bad default of " + k.Path())
-		}
-		all[address{section: k.Section, key: k.Name}] = r
+		all[address{section: k.Section, key: k.Name}] = k.ownDefault()
 	}
 	return all
 })
+
+// ownDefault reads the key's default.
+func (k Key) ownDefault() reading {
+	v, ok := parseValue(k.Default)
+	r, wrong := read(k, v)
+	if !ok || wrong != nil {
+		panic("scenes: bad default of " + k.Path())
+	}
+	return r
+}
 
 // get returns what the text says for a key, else the default. Without either
 // the reading is empty.
@@ -73,6 +77,9 @@ func (b *builder) fail(r reading, at span, e Error) {
 		return
 	}
 	e.File, e.Key = b.src.name, r.address.String()
+	if r.part != "" {
+		e.Problem = r.part + ": " + e.Problem
+	}
 	if r.given {
 		e.Found = b.src.excerptOf(at)
 		e.locate(b.src.text, at.from)
@@ -159,176 +166,6 @@ func orDefault(u unit, name string) unit {
 	}
 	return u
 }
-
-func (b *builder) object() {
-	get := func(key string) reading { return b.get("object", 0, key) }
-	o := &b.scene.Object
-	o.Kind = get("kind").word
-	b.length(get("charge"), 0)
-	o.Mass = b.measure(get("mass"))
-	o.Distance = b.measure(get("distance"))
-	o.ThetaG = b.measure(get("theta_g"))
-	o.Redshift = b.number(get("redshift"), 0)
-	if o.ThetaG.Given && (o.Mass.Given || o.Distance.Given) {
-		b.failAt(get("theta_g"), Error{Problem: "given together with mass or distance", Allowed: "theta_g, or mass and distance"})
-	}
-}
-
-func (b *builder) observer() {
-	get := func(key string) reading { return b.get("observer", 0, key) }
-	o := &b.scene.Observer
-	o.Radius = math.Inf(1)
-	if r := get("radius"); r.word == "" {
-		o.Radius = b.length(r, 0)
-	}
-	o.Inclination = b.plain(get("inclination"), 0)
-	o.Azimuth = b.plain(get("azimuth"), 0)
-	o.Motion = get("motion").word
-	o.PositionAngle = b.plain(get("position_angle"), 0)
-}
-
-// photonSphere is the radius, in M, at and inside which a parallel field has
-// no meaning: there L/E no longer tells the inward paths apart.
-const photonSphere = 3
-
-func (b *builder) field() {
-	get := func(key string) reading { return b.get("field", 0, key) }
-	f := &b.scene.Field
-	radius := b.get("observer", 0, "radius")
-	projection := get("projection")
-	f.Projection = projection.word
-	infinite := math.IsInf(b.scene.Observer.Radius, 1)
-	switch {
-	case f.Projection == "perspective" && infinite:
-		b.failAt(projection, Error{Problem: "a perspective field needs an observer at a finite radius", Allowed: "parallel, or observer.radius in M"})
-	case f.Projection == "parallel" && b.scene.Observer.Radius <= photonSphere:
-		b.failAt(radius, Error{Problem: "too close for a parallel field", Allowed: `more than 3 M, or field.projection = "perspective"`})
-	}
-	width := get("width")
-	f.AutoWidth = width.word == "auto"
-	if !f.AutoWidth {
-		f.Width = b.extent(width, 0, inside(0, 180))
-	}
-	pixels := get("pixels")
-	center := get("center")
-	for i := range 2 {
-		f.Pixels[i] = int(b.number(pixels, i))
-		f.Center[i] = b.extent(center, i, inside(-90, 90))
-	}
-	frequency := get("frequency")
-	for i := range frequency.numbers {
-		f.Frequency = append(f.Frequency, b.plain(frequency, i))
-	}
-}
-
-// extent converts a length on the field to M, or to deg when the field is
-// one of angles; perspective is the range there.
-func (b *builder) extent(r reading, i int, perspective Range) float64 {
-	q := r.numbers[i]
-	base := q.unit.base
-	if b.scene.Field.Projection == "parallel" {
-		switch {
-		case base == "deg":
-			b.fail(r, q.span, Error{Problem: "the unit " + q.unit.name + " needs a perspective field",
-				Allowed: "a length (units M rg rs km s uas mas)"})
-			return 0
-		case base == "uas" && !math.IsInf(b.scene.Observer.Radius, 1):
-			b.fail(r, q.span, Error{Problem: "the unit " + q.unit.name + " on a parallel field needs the observer at infinity",
-				Allowed: `a length (units M rg rs km s), or observer.radius = "infinity"`})
-			return 0
-		}
-		return b.length(r, i)
-	}
-	x := q.value
-	switch {
-	case base == "deg":
-		x *= q.unit.factor
-	case base == "uas":
-		x *= q.unit.factor / microarcsecondsPerDegree
-	case base != "" && r.given:
-		b.fail(r, q.span, Error{Problem: "the unit " + q.unit.name + " needs a parallel field", Allowed: "an angle (units deg rad uas mas)"})
-	}
-	b.inRange(r, q, x, perspective, "deg")
-	return x
-}
-
-// memoryLimit bounds the float32 layers of a plate, in bytes.
-const memoryLimit = 4 << 30
-
-// Layers of a plate: the total, and intensity g r phi delay mu of each order.
-const (
-	layersOnce     = 1
-	layersPerOrder = 6
-	bytesPerValue  = 4 // float32
-)
-
-// memory refuses a plate too large, and says how large.
-func (b *builder) memory() {
-	pixels, maxOrder := b.get("field", 0, "pixels"), b.get("trace", 0, "max_order")
-	columns, rows := pixels.numbers[0].value, pixels.numbers[1].value // float64: their product may pass every integer
-	orders := b.scene.Trace.MaxOrder + 1
-	perPixel := (layersOnce + layersPerOrder*orders) * bytesPerValue
-	need := columns * rows * float64(perPixel)
-	if need <= memoryLimit {
-		return
-	}
-	blame := pixels
-	if !pixels.given {
-		blame = maxOrder
-	}
-	b.failAt(blame, Error{
-		Problem: fmt.Sprintf("the image would need %s of memory, %d bytes for each of %.0f x %.0f pixels with max_order %d",
-			gibibytes(need), perPixel, columns, rows, orders-1),
-		Allowed: "at most " + gibibytes(memoryLimit),
-	})
-}
-
-// gibibytes writes a number of bytes in GiB, large ones in TiB.
-func gibibytes(n float64) string {
-	if n >= 1<<40 {
-		return fmt.Sprintf("%.4g TiB", n/(1<<40))
-	}
-	return fmt.Sprintf("%.4g GiB", n/(1<<30))
-}
-
-func (b *builder) emitter(index int) {
-	get := func(key string) reading { return b.get("emitter", index, key) }
-	inner := get("inner")
-	e := Emitter{
-		Kind:          get("kind").word,
-		Inner:         Rim{Name: inner.word},
-		Outer:         b.length(get("outer"), 0),
-		Clockwise:     get("sense").word == "clockwise",
-		Gas:           get("gas").word,
-		Profile:       get("profile").word,
-		Index:         b.number(get("index"), 0),
-		Light:         get("light").word,
-		SpectralIndex: b.number(get("spectral_index"), 0),
-		Thick:         get("optical_depth").word == "thick",
-	}
-	switch inner.word {
-	case "isco":
-		e.Inner.Radius = iscoRadius
-	case "horizon":
-		e.Inner.Radius = horizonRadius
-	default:
-		e.Inner.Radius = b.length(inner, 0)
-	}
-	if e.Inner.Radius >= e.Outer {
-		blame, allowed := inner, "less than the outer radius of "+formatNumber(e.Outer)+" M"
-		if outer := get("outer"); !inner.given && outer.given {
-			blame, allowed = outer, "more than the inner radius of "+formatNumber(e.Inner.Radius)+" M"
-		}
-		b.failAt(blame, Error{Problem: "the inner rim must lie inside the outer one", Allowed: allowed})
-	}
-	b.scene.Emitters = append(b.scene.Emitters, e)
-}
-
-// Radii of a black hole without spin and charge, in M.
-const (
-	horizonRadius = 2
-	iscoRadius    = 6
-)
 
 func (b *builder) telescope() {
 	beam := b.get("telescope", 0, "beam")

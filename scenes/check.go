@@ -12,11 +12,19 @@ import (
 type reading struct {
 	key     Key
 	address address
-	given   bool // in the text, not a default
-	at      span // the value; in the text only when given
+	given   bool   // in the text, not a default
+	at      span   // the value; in the text only when given
+	part    string // "cap 2, size" for a key of an inline table; else ""
 	word    string
 	words   []string
 	numbers []quantity
+	tables  []map[string]reading // TableList: by key; without those left out
+}
+
+// limited returns the reading with another range, and what is said outside it.
+func (r reading) limited(limit Range, why string) reading {
+	r.key.Range, r.key.Why = limit, why
+	return r
 }
 
 // fault is what is wrong with a value, before anybody knows its file.
@@ -24,6 +32,7 @@ type fault struct {
 	at      span
 	problem string
 	allowed string
+	nearest string // for an unknown key
 	later   bool
 }
 
@@ -73,7 +82,7 @@ func check(src *source) (map[address]reading, *Error) {
 		r, wrong := read(k, e.value)
 		if wrong != nil {
 			fail(wrong.at, &Error{Key: e.address.String(), Problem: wrong.problem, Found: src.excerptOf(wrong.at),
-				Allowed: wrong.allowed, Later: wrong.later})
+				Allowed: wrong.allowed, Nearest: wrong.nearest, Later: wrong.later})
 			continue
 		}
 		r.address, r.given = e.address, true
@@ -115,9 +124,9 @@ func checkTable(t table) *Error {
 func read(k Key, v value) (reading, *fault) {
 	r := reading{key: k, at: v.span}
 	if slices.Contains(k.laterKinds, v.kind) {
-		return r, &fault{v.span, k.LaterForm + " is " + notInVersion, k.Allowed(), true}
+		return r, &fault{at: v.span, problem: k.LaterForm + " is " + notInVersion, allowed: k.Allowed(), later: true}
 	}
-	wrongType := &fault{v.span, "wrong type, " + v.kind.String(), k.Allowed(), false}
+	wrongType := &fault{at: v.span, problem: "wrong type, " + v.kind.String(), allowed: k.Allowed()}
 	switch k.Type {
 	case Text:
 		if v.kind != kindText {
@@ -136,7 +145,7 @@ func read(k Key, v value) (reading, *fault) {
 		}
 		for _, item := range v.items {
 			if item.kind != kindText {
-				return r, &fault{item.span, "wrong type, " + item.kind.String(), k.Allowed(), false}
+				return r, &fault{at: item.span, problem: "wrong type, " + item.kind.String(), allowed: k.Allowed()}
 			}
 			if f := readChoice(k, item); f != nil {
 				return r, f
@@ -160,13 +169,15 @@ func read(k Key, v value) (reading, *fault) {
 		case n == 0 && v.kind != kindList:
 			return r, wrongType
 		case k.Count > 0 && n != k.Count, n == 0, n > maxItems:
-			return r, &fault{v.span, fmt.Sprintf("a list of %d items", n), k.Allowed(), false}
+			return r, &fault{at: v.span, problem: fmt.Sprintf("a list of %d items", n), allowed: k.Allowed()}
 		}
 		for _, item := range items {
 			if f := r.readNumber(item); f != nil {
 				return r, f
 			}
 		}
+	case TableList:
+		return r, r.readTables(v)
 	}
 	return r, nil
 }
@@ -177,15 +188,15 @@ func readChoice(k Key, v value) *fault {
 	case slices.Contains(k.Choices, v.text):
 		return nil
 	case slices.Contains(k.LaterChoices, v.text):
-		return &fault{v.span, notInVersion, k.Allowed(), true}
+		return &fault{at: v.span, problem: notInVersion, allowed: k.Allowed(), later: true}
 	}
-	return &fault{v.span, "unknown choice", k.Allowed(), false}
+	return &fault{at: v.span, problem: "unknown choice", allowed: k.Allowed()}
 }
 
 // readNumber appends one number, whole number or quantity.
 func (r *reading) readNumber(v value) *fault {
 	k := r.key
-	wrong := func(problem string) *fault { return &fault{v.span, problem, k.Allowed(), false} }
+	wrong := func(problem string) *fault { return &fault{at: v.span, problem: problem, allowed: k.Allowed()} }
 	isQuantity := k.Type == Quantity || k.Type == QuantityList
 	isInteger := k.Type == Integer || k.Type == IntegerList
 	switch {
@@ -222,6 +233,8 @@ func (k Key) Allowed() string {
 		options = append(options, k.Choices...)
 	case ChoiceList:
 		options = append(options, "a list of "+strings.Join(k.Choices, ", "))
+	case TableList:
+		options = append(options, "a list of {"+strings.Join(k.fieldNames(), ", ")+"}")
 	default:
 		options = append(options, quoted(k.Words)...)
 		options = append(options, k.allowedNumber())

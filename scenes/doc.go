@@ -12,6 +12,12 @@
 // in microarcseconds, frequencies in hertz. In a file a bare distance is in kpc
 // and a bare frequency in GHz, as the table of keys says. A length in km or s
 // needs the object's mass; every angle on the sky needs mass and distance, or
-// theta_g. A scene without an emitter is legal: its image is empty. Nothing here knows of light
-// paths or pixels beyond their count.
+// theta_g. A scene without an emitter is legal: its image is empty.
+//
+// Object, observer and emitters are held against one another: a key that the
+// kind at hand does not have is refused, and so is what cannot stay where it
+// is put, such as gas circling inside a shell. What is legal but strange is
+// said by Notes. Nothing here knows of light paths or pixels beyond their
+// count; the few radii that the checks need (horizon, photon sphere,
+// innermost stable orbit) are in radii.go.
 package scenes

@@ -2,6 +2,7 @@ package scenes
 
 import (
 	"bytes"
+	"path/filepath"
 	"slices"
 	"unicode/utf8"
 )
@@ -42,6 +43,10 @@ func Parse(name string, text []byte) (*Document, error) {
 
 // Name returns the name given to Parse or Load.
 func (d *Document) Name() string { return d.name }
+
+// Dir returns the directory that relative paths in the scene count from: that
+// of its file, and "." for a built-in scene.
+func (d *Document) Dir() string { return filepath.Dir(d.name) }
 
 // Scene returns the scene; changing it does not change the document.
 func (d *Document) Scene() Scene { return d.scene.clone() }

@@ -1,6 +1,9 @@
 package scenes
 
-import "slices"
+import (
+	"reflect"
+	"slices"
+)
 
 // Equal reports whether both say the same, to the last bit of every number.
 func (s Scene) Equal(other Scene) bool {
@@ -14,7 +17,7 @@ func (s Scene) Equal(other Scene) bool {
 		f.Pixels == g.Pixels &&
 		f.Center == g.Center &&
 		slices.Equal(f.Frequency, g.Frequency) &&
-		slices.Equal(s.Emitters, other.Emitters) &&
+		slices.EqualFunc(s.Emitters, other.Emitters, func(a, b Emitter) bool { return reflect.DeepEqual(a, b) }) &&
 		s.Telescope == other.Telescope &&
 		s.Measured == other.Measured &&
 		s.Trace == other.Trace
@@ -23,14 +26,9 @@ func (s Scene) Equal(other Scene) bool {
 // clone returns a copy that shares no slice.
 func (s Scene) clone() Scene {
 	s.Emitters = slices.Clone(s.Emitters)
+	for i := range s.Emitters {
+		s.Emitters[i].Caps = slices.Clone(s.Emitters[i].Caps)
+	}
 	s.Field.Frequency = slices.Clone(s.Field.Frequency)
 	return s
-}
-
-// Notes returns what is legal but worth telling, in full sentences.
-func (s Scene) Notes() []string {
-	if len(s.Emitters) == 0 {
-		return []string{"The scene has no emitter: its image is empty."}
-	}
-	return nil
 }

@@ -32,7 +32,7 @@ func ExampleParse() {
 	fmt.Println(err)
 	// Output:
 	// 3 10 observer.radius
-	// near.toml:3:10: observer.radius: out of range: the observer must be outside the horizon; found "1.9 M"; allowed: "infinity" or more than 2 M
+	// near.toml:3:10: observer.radius: out of range: a static observer must be outside the horizon; found "1.9 M"; allowed: "infinity" or more than 2 M
 	//     radius = "1.9 M"
 	//              ^
 }

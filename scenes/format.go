@@ -19,6 +19,15 @@ func Format(s Scene) []byte {
 
 	w.header("[object]")
 	w.key("kind", quote(s.Object.Kind))
+	switch s.Object.Kind {
+	case blackHole:
+		w.quantity("charge", s.Object.Charge, "M")
+	case star:
+		w.quantity("radius", s.Object.Radius, "M")
+		w.key("interior", quote(s.Object.Interior))
+	case shell:
+		w.quantity("radius", s.Object.Radius, "M")
+	}
 	w.measure("mass", s.Object.Mass, "Msun")
 	w.measure("distance", s.Object.Distance, "Mpc", "kpc", "pc")
 	w.measure("theta_g", s.Object.ThetaG, "uas")
@@ -38,7 +47,7 @@ func Format(s Scene) []byte {
 
 	f := s.Field
 	extent := "M"
-	if f.Projection == "perspective" {
+	if f.angular() {
 		extent = "deg"
 	}
 	w.header("[field]")
@@ -120,6 +129,19 @@ func (w writer) list(name string, items []string) {
 func (w writer) emitter(e Emitter) {
 	w.header("[[emitter]]")
 	w.key("kind", quote(e.Kind))
+	switch e.Kind {
+	case disk:
+		w.disk(e)
+	case surface:
+		w.surface(e)
+	case sky:
+		w.sky(e)
+	}
+	w.key("light", quote(e.Light))
+	w.key("spectral_index", tomlNumber(e.SpectralIndex))
+}
+
+func (w writer) disk(e Emitter) {
 	if e.Inner.Name != "" {
 		w.key("inner", quote(e.Inner.Name))
 	} else {
@@ -130,10 +152,30 @@ func (w writer) emitter(e Emitter) {
 	w.key("gas", quote(e.Gas))
 	w.key("profile", quote(e.Profile))
 	w.key("index", tomlNumber(e.Index))
-	w.key("light", quote(e.Light))
-	w.key("spectral_index", tomlNumber(e.SpectralIndex))
 	w.key("optical_depth", quote(pick(e.Thick, "thick", "thin")))
-	w.key("emission_angle", quote("isotropic"))
+	w.key("emission_angle", quote(e.EmissionAngle))
+}
+
+func (w writer) surface(e Emitter) {
+	if e.Temperature > 0 {
+		w.quantity("temperature", e.Temperature, "K")
+	}
+	if e.Period > 0 {
+		w.quantity("period", e.Period, "M")
+	}
+	if len(e.Caps) > 0 {
+		w.key("caps", formatCaps(e.Caps))
+	}
+	w.key("emission_angle", quote(e.EmissionAngle))
+}
+
+func (w writer) sky(e Emitter) {
+	if e.Image != "" {
+		w.key("image", quote(e.Image))
+	} else {
+		w.key("pattern", quote(e.Pattern))
+	}
+	w.key("seed", strconv.FormatInt(e.Seed, 10))
 }
 
 // pick returns yes or no.

@@ -20,6 +20,10 @@ func FuzzParse(f *testing.F) {
 	for _, c := range refusals {
 		f.Add([]byte(top + c.text))
 	}
+	for _, c := range objectRefusals {
+		text, _, _ := c.place()
+		f.Add([]byte(text))
+	}
 	f.Fuzz(func(t *testing.T, text []byte) {
 		first, err := Parse("fuzz.toml", text)
 		if err != nil {
@@ -52,6 +56,10 @@ func FuzzSet(f *testing.F) {
 		}
 	}
 	f.Add([]byte("schema = 1\nobserver = {}\nemitter = [{}, {outer = 9}]"), "emitter.2.inner", "horizon")
+	f.Add([]byte("schema = 1\nobject = {kind = \"star\", radius = 6}\nemitter = [{kind = \"surface\"}]"), "emitter.caps",
+		"[{colatitude = 3, size = 20, temperature = 1e6}]")
+	f.Add([]byte("schema = 1\n[[emitter]]\nkind = \"sky\""), "emitter.image", "sky.png")
+	f.Add([]byte("schema = 1\nobserver.radius = 4"), "object.charge", "0.6")
 	f.Add([]byte("schema = 1\r\nobserver.radius = 50"), "observer.inclination", "75deg")
 	f.Fuzz(func(t *testing.T, text []byte, path, value string) {
 		d, err := Parse("fuzz.toml", text)

@@ -25,6 +25,8 @@ func TestHostileTexts(t *testing.T) {
 		"many spaces":    "observer.radius = \"1" + full(" ") + "M\"",
 		"frequencies":    "field.frequency = [" + full("1,") + "]",
 		"comments":       full("#\n"),
+		"caps":           "emitter = [{kind = \"surface\", caps = [" + full("{size = 1, temperature = 9, colatitude = 3},") + "]}]",
+		"foreign keys":   full("[[emitter]]\nkind = \"sky\"\ninner = 3\n"),
 		"repeated words": "trace.effects = [" + full("\"motion\",") + "]",
 	} {
 		t.Run(name, func(t *testing.T) {

@@ -17,6 +17,7 @@ const (
 	IntegerList              // a list of Count whole numbers
 	Quantity                 // text with a unit, or a bare number in Unit
 	QuantityList             // a list of Count quantities; Count 0: one, or a list of any length
+	TableList                // a list of inline tables with the keys Fields
 )
 
 // Key is one key of the scene file. The table of keys drives the checks, the
@@ -30,9 +31,11 @@ type Key struct {
 	Units    []string // units that are accepted
 	Words    []string // words that may stand instead of a quantity
 	Choices  []string // Choice and ChoiceList: the words carried out
+	Fields   []Key    // TableList: the keys of each table; they have no Section
 	Range    Range    // of the number, in M, deg, uas, Msun, pc, Hz or without unit
 	Error    bool     // "+- error" may follow the number
-	Required bool     // a file without it is refused
+	Kinds    []string // kinds of object or emitter that have the key; empty: all
+	Required bool     // a file, or an inline table, without it is refused
 	Default  string   // as written in a file; "" when the key may stay away without one
 	Text     string   // what it is, one line
 	Why      string   // said when the value is out of Range; may be ""
@@ -44,6 +47,15 @@ type Key struct {
 	OnlyZero     bool     // numbers other than 0
 
 	laterKinds []kind // TOML kinds of LaterForm
+}
+
+// fieldNames returns the names of the keys of an inline table.
+func (k Key) fieldNames() []string {
+	var names []string
+	for _, f := range k.Fields {
+		names = append(names, f.Name)
+	}
+	return names
 }
 
 // Path returns the key as --set takes it, "observer.inclination".
@@ -91,14 +103,14 @@ var topKeys = []Key{
 }
 
 var objectKeys = []Key{
-	{Section: "object", Name: "kind", Type: Choice, Choices: []string{"black-hole"}, LaterChoices: []string{"star", "shell"},
-		Default: `"black-hole"`, Text: "kind of object"},
-	{Section: "object", Name: "charge", Type: Quantity, Unit: "M", Units: lengthUnits, Range: inside(-1, 1), OnlyZero: true,
-		Default: `"0 M"`, Text: "charge Q of a black hole, |Q| < M", Why: "beyond it there is no horizon"},
-	{Section: "object", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Later: true,
-		Text: "radius of a star or shell"},
-	{Section: "object", Name: "interior", Type: Choice, Choices: []string{"opaque", "uniform"}, Later: true,
-		Text: "interior of a star"},
+	{Section: "object", Name: "kind", Type: Choice, Choices: []string{blackHole, star, shell},
+		Default: `"black-hole"`, Text: "kind of object; shell: thin, heavy, flat inside"},
+	{Section: "object", Name: "charge", Type: Quantity, Unit: "M", Units: lengthUnits, Range: Range{Min: 0, Max: 1, OpenMax: true}, Kinds: []string{blackHole},
+		Default: `"0 M"`, Text: "size |Q| of the charge of a black hole", Why: "at 1 M and beyond it there is no horizon, and its sign does not matter to light"},
+	{Section: "object", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Kinds: []string{star, shell},
+		Text: "circumferential radius of a star (more than 9/4 M) or shell; they need one"},
+	{Section: "object", Name: "interior", Type: Choice, Choices: []string{"opaque", "uniform"}, Kinds: []string{star},
+		Default: `"opaque"`, Text: "interior of a star; uniform: of one density, and light passes through"},
 	{Section: "object", Name: "mass", Type: Quantity, Unit: "Msun", Units: massUnits, Range: above(0), Error: true,
 		Text: "mass; with it km and s may be used, with the distance also uas"},
 	{Section: "object", Name: "distance", Type: Quantity, Unit: "kpc", Units: distanceUnits, Range: above(0), Error: true,
@@ -110,45 +122,45 @@ var objectKeys = []Key{
 }
 
 var observerKeys = []Key{
-	{Section: "observer", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"infinity"}, Range: above(2),
-		Default: `"infinity"`, Text: "circumferential radius of the observer", Why: "the observer must be outside the horizon"},
+	{Section: "observer", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"infinity"}, Range: atLeast(0),
+		Default: `"infinity"`, Text: "circumferential radius of the observer; static: outside a horizon or star, infall: also inside the horizon, orbit: above 3 M (charged: the photon sphere), shell: also inside it"},
 	{Section: "observer", Name: "inclination", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(0, 180),
 		Default: `"60 deg"`, Text: "angle between the disk axis and the direction to the observer"},
 	{Section: "observer", Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360),
 		Default: `"0 deg"`, Text: "azimuth of the observer in the disk plane"},
-	{Section: "observer", Name: "motion", Type: Choice, Choices: []string{"static"}, LaterChoices: []string{"orbit", "infall"},
-		Default: `"static"`, Text: "motion of the observer"},
+	{Section: "observer", Name: "motion", Type: Choice, Choices: []string{"static", "orbit", "infall"},
+		Default: `"static"`, Text: "motion of the observer; orbit: a circular geodesic towards +alpha, infall: radially, from rest at infinity"},
 	{Section: "observer", Name: "position_angle", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360),
 		Default: `"0 deg"`, Text: "position angle of the disk axis on the sky, from north through east"},
 }
 
 var fieldKeys = []Key{
-	{Section: "field", Name: "projection", Type: Choice, Choices: []string{"parallel", "perspective"}, LaterChoices: []string{"all-sky"},
-		Default: `"parallel"`, Text: "parallel: impact parameters alpha, beta; perspective: angles at the observer"},
+	{Section: "field", Name: "projection", Type: Choice, Choices: []string{parallel, perspective, allSky},
+		Default: `"parallel"`, Text: "parallel: impact parameters alpha, beta; perspective: angles at the observer; all-sky: every direction, equirectangular"},
 	{Section: "field", Name: "width", Type: Quantity, Unit: "M", Units: fieldUnits, Words: []string{"auto"}, Range: above(0),
-		Default: `"auto"`, Text: "width of the field; auto: everything that shines plus 5 %; perspective: an angle, bare numbers in deg, below 180 deg"},
+		Default: `"auto"`, Text: "width of the field; auto: everything that shines plus 5 %; perspective: an angle, bare numbers in deg, below 180 deg; all-sky: 360 deg"},
 	{Section: "field", Name: "pixels", Type: IntegerList, Count: 2, Range: atLeast(1),
 		Default: `[800, 800]`, Text: "columns and rows"},
 	{Section: "field", Name: "center", Type: QuantityList, Count: 2, Unit: "M", Units: fieldUnits, Range: anyNumber,
-		Default: `["0 M", "0 M"]`, Text: "centre of the field, right and up; perspective: angles, bare numbers in deg, within 90 deg"},
+		Default: `["0 M", "0 M"]`, Text: "centre of the field, right and up; perspective: angles, bare numbers in deg, within 90 deg; all-sky: 0"},
 	{Section: "field", Name: "frequency", Type: QuantityList, Unit: "GHz", Units: frequencyUnits, Range: above(0),
 		Text: "observed frequency or photon energy, one or a list"},
 }
 
 var emitterKeys = []Key{
-	{Section: "emitter", Name: "kind", Type: Choice, Choices: []string{"disk"}, LaterChoices: []string{"spot", "surface", "sky"},
+	{Section: "emitter", Name: "kind", Type: Choice, Choices: []string{disk, surface, sky}, LaterChoices: []string{"spot"},
 		Default: `"disk"`, Text: "kind of emitter"},
-	{Section: "emitter", Name: "inner", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"isco", "horizon"}, Range: atLeast(2),
-		Default: `"isco"`, Text: "inner rim of the disk; isco is 6 M, horizon 2 M", Why: "the disk must end outside the horizon"},
-	{Section: "emitter", Name: "outer", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2),
-		Default: `"20 M"`, Text: "outer rim of the disk", Why: "the disk must end outside the horizon"},
-	{Section: "emitter", Name: "sense", Type: Choice, Choices: []string{"counter-clockwise", "clockwise"},
+	{Section: "emitter", Name: "inner", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"isco", "horizon"}, Range: above(0), Kinds: onlyDisk,
+		Default: `"isco"`, Text: "inner rim of the disk; isco: the innermost stable circular orbit (6 M uncharged) or the object's radius, whichever is larger; horizon: 2 M uncharged"},
+	{Section: "emitter", Name: "outer", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Kinds: onlyDisk,
+		Default: `"20 M"`, Text: "outer rim of the disk"},
+	{Section: "emitter", Name: "sense", Type: Choice, Choices: []string{"counter-clockwise", "clockwise"}, Kinds: onlyDisk,
 		Default: `"counter-clockwise"`, Text: "sense in which the gas turns about the disk axis"},
-	{Section: "emitter", Name: "gas", Type: Choice, Choices: []string{"circular"}, LaterChoices: []string{"static"},
-		Default: `"circular"`, Text: "motion of the gas; circular: plunging inside the isco"},
-	{Section: "emitter", Name: "profile", Type: Choice, Choices: []string{"power"}, LaterChoices: []string{"novikov-thorne", "table"},
+	{Section: "emitter", Name: "gas", Type: Choice, Choices: []string{"circular", "static"}, Kinds: onlyDisk,
+		Default: `"circular"`, Text: "motion of the gas; circular: plunging inside the isco of a black hole, not below 6 M around a star or shell; static: held at rest"},
+	{Section: "emitter", Name: "profile", Type: Choice, Choices: []string{"power"}, LaterChoices: []string{"novikov-thorne", "table"}, Kinds: onlyDisk,
 		Default: `"power"`, Text: "emissivity with radius; power: (r/M)^-index in the gas frame"},
-	{Section: "emitter", Name: "index", Type: Number, Range: between(-20, 20), LaterForm: "a list", laterKinds: []kind{kindList},
+	{Section: "emitter", Name: "index", Type: Number, Range: between(-20, 20), LaterForm: "a list", laterKinds: []kind{kindList}, Kinds: onlyDisk,
 		Default: `3`, Text: "index of a power profile"},
 	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(2), Later: true,
 		Text: "radii between the indices of a broken power profile"},
@@ -168,20 +180,45 @@ var emitterKeys = []Key{
 	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Later: true,
 		Text: "energy of a line in the gas frame"},
 	{Section: "emitter", Name: "optical_depth", Type: Choice, Choices: []string{"thin", "thick"},
-		LaterForm: "a number at normal incidence", laterKinds: []kind{kindInteger, kindFloat},
+		LaterForm: "a number at normal incidence", laterKinds: []kind{kindInteger, kindFloat}, Kinds: onlyDisk,
 		Default: `"thin"`, Text: "thin: all crossings add up; thick: the first one ends the path"},
-	{Section: "emitter", Name: "emission_angle", Type: Choice, Choices: []string{"isotropic"}, LaterChoices: []string{"darkened", "brightened"},
-		Default: `"isotropic"`, Text: "how the intensity depends on the direction in the gas frame"},
+	{Section: "emitter", Name: "emission_angle", Type: Choice, Choices: []string{"isotropic", "darkened", "brightened"}, Kinds: []string{disk, surface},
+		Default: `"isotropic"`, Text: "intensity with mu, the cosine to the normal in the gas frame; darkened: 1 + 2.06 mu, brightened: ln(1 + 1/mu)"},
 	{Section: "emitter", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Later: true, Text: "spot: radius"},
 	{Section: "emitter", Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360), Later: true, Text: "spot: azimuth at t = 0"},
 	{Section: "emitter", Name: "size", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Later: true, Text: "spot: proper Gaussian sigma"},
 	{Section: "emitter", Name: "contrast", Type: Number, Range: above(0), Later: true, Text: "spot: contrast"},
-	{Section: "emitter", Name: "temperature", Type: Quantity, Unit: "K", Units: []string{"K", "eV", "keV"}, Range: above(0), Later: true, Text: "surface: temperature"},
-	{Section: "emitter", Name: "period", Type: Quantity, Unit: "s", Units: timeUnits, Range: above(0), Later: true, Text: "surface: period of rotation"},
-	{Section: "emitter", Name: "caps", Type: Text, Later: true, Text: "surface: hot caps, a list of {colatitude, azimuth, size, temperature}"},
-	{Section: "emitter", Name: "image", Type: Text, Later: true, Text: "sky: image file"},
-	{Section: "emitter", Name: "pattern", Type: Choice, Choices: []string{"stars", "grid"}, Later: true, Text: "sky: drawn pattern"},
-	{Section: "emitter", Name: "seed", Type: Integer, Range: atLeast(0), Later: true, Text: "sky: seed of the stars"},
+	{Section: "emitter", Name: "temperature", Type: Quantity, Unit: "K", Units: temperatureUnits, Range: above(0), Kinds: onlySurface,
+		Text: "temperature of the surface; left out: of uniform brightness 1, or dark around its caps"},
+	{Section: "emitter", Name: "period", Type: Quantity, Unit: "s", Units: timeUnits, Range: above(0), Kinds: onlySurface,
+		Text: "period of rotation seen from infinity; slow rotation only; left out: the star does not turn"},
+	{Section: "emitter", Name: "caps", Type: TableList, Fields: capKeys, Kinds: onlySurface,
+		Text: "hot caps fixed to the surface"},
+	{Section: "emitter", Name: "image", Type: Text, Kinds: onlySky,
+		Text: "path of an equirectangular image, from the scene file's folder"},
+	{Section: "emitter", Name: "pattern", Type: Choice, Choices: []string{"stars", "grid"}, Kinds: onlySky,
+		Default: `"grid"`, Text: "drawn sky, instead of an image"},
+	{Section: "emitter", Name: "seed", Type: Integer, Range: between(0, largestSeed), Kinds: onlySky,
+		Default: `1`, Text: "seed of the star field"},
+}
+
+// Which kinds of emitter have a key.
+var (
+	onlyDisk    = []string{disk}
+	onlySurface = []string{surface}
+	onlySky     = []string{sky}
+)
+
+// largestSeed is the largest whole number that every float64 below it is
+// exact to.
+const largestSeed = 1<<53 - 1
+
+// capKeys are the keys of each of emitter.caps.
+var capKeys = []Key{
+	{Name: "colatitude", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(0, 180), Required: true, Text: "angle from the axis N to the cap's middle"},
+	{Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360), Default: `"0 deg"`, Text: "azimuth of its middle at t = 0"},
+	{Name: "size", Type: Quantity, Unit: "deg", Units: angleUnits, Range: Range{Min: 0, Max: 90, OpenMin: true}, Required: true, Text: "angular radius seen from the star's centre"},
+	{Name: "temperature", Type: Quantity, Unit: "K", Units: temperatureUnits, Range: above(0), Required: true, Text: "temperature"},
 }
 
 var telescopeKeys = []Key{

@@ -5,6 +5,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 )
@@ -18,6 +19,9 @@ func TestLoad(t *testing.T) {
 	d, err := Load(path)
 	if err != nil {
 		t.Fatal(err)
+	}
+	if d.Dir() != filepath.Dir(path) {
+		t.Errorf("directory %q", d.Dir())
 	}
 	if d.Name() != path || string(d.Text()) != text || d.Scene().Title != "x" {
 		t.Errorf("name %q, text %q, title %q", d.Name(), d.Text(), d.Scene().Title)
@@ -63,6 +67,14 @@ func TestBuiltIn(t *testing.T) {
 	files, err := builtInFiles.ReadDir("builtin")
 	if err != nil || len(files) != len(all) {
 		t.Errorf("%d files for %d scenes, error %v", len(files), len(all), err)
+	}
+	var names []string
+	for _, info := range all {
+		names = append(names, info.Name)
+	}
+	want := []string{"@first-light", "@two-caps", "@slow-room", "@last-look", "@behind-glass"}
+	if !slices.Equal(names, want) {
+		t.Errorf("built-in scenes %q, want %q", names, want)
 	}
 	for _, info := range all {
 		d, err := Load(info.Name)

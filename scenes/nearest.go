@@ -62,3 +62,15 @@ func editDistance(a, b string) int {
 	}
 	return row[len(b)]
 }
+
+// nearestField returns the key of an inline table that is most like the name.
+func nearestField(fields []Key, name string) string {
+	best, bestCost := "", 0
+	for _, k := range fields {
+		cost := editDistance(strings.ToLower(name), k.Name)
+		if best == "" || cost < bestCost {
+			best, bestCost = k.Name, cost
+		}
+	}
+	return best
+}

@@ -49,6 +49,10 @@ func (r Range) In(unit string) string {
 		return lo + unit
 	case r.OpenMin && r.OpenMax:
 		return "between " + lo + " and " + hi + unit + ", both excluded"
+	case r.OpenMin:
+		return "more than " + lo + " and at most " + hi + unit
+	case r.OpenMax:
+		return "at least " + lo + " and less than " + hi + unit
 	}
 	return lo + " to " + hi + unit
 }
@@ -58,6 +62,11 @@ func (r Range) In(unit string) string {
 func formatNumber(x float64) string {
 	text := strconv.FormatFloat(x, 'g', -1, 64)
 	return shortExponent.Replace(text)
+}
+
+// formatShort writes x to four digits, for messages.
+func formatShort(x float64) string {
+	return shortExponent.Replace(strconv.FormatFloat(x, 'g', 4, 64))
 }
 
 // shortExponent takes the padding that strconv writes off an exponent.

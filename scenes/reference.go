@@ -24,6 +24,10 @@ func FormatKeys(w io.Writer) error {
 		for _, k := range keyTable {
 			if k.Section == s.name {
 				k.describe(out)
+				for _, f := range k.Fields {
+					f.Name = k.Name + "." + f.Name
+					f.describe(out)
+				}
 			}
 		}
 	}
@@ -43,6 +47,7 @@ func (k Key) describe(w io.Writer) {
 		return
 	}
 	line("allowed", k.Allowed()+pick(k.Error, `; "+- error" may follow the number`, ""))
+	line("only for", strings.Join(k.Kinds, ", "))
 	line("default", k.Default+pick(k.Required, "none, the key is required", ""))
 	later := append([]string{}, k.LaterChoices...)
 	if k.LaterForm != "" {

@@ -21,7 +21,10 @@ type Measure struct {
 
 // Object is the compact object at the centre.
 type Object struct {
-	Kind     string  // "black-hole"
+	Kind     string  // "black-hole", "star" or "shell"
+	Charge   float64 // |Q| of a black hole, M, in [0, 1)
+	Radius   float64 // of a star or shell, M; 0 for a hole
+	Interior string  // star: "opaque" or "uniform"; "" otherwise
 	Mass     Measure // solar masses
 	Distance Measure // angular-diameter distance, parsec
 	ThetaG   Measure // GM/(c² D), microarcseconds; instead of mass and distance
@@ -30,18 +33,18 @@ type Object struct {
 
 // Observer says where the picture is taken from.
 type Observer struct {
-	Radius        float64 // M; +Inf for an observer at infinity
+	Radius        float64 // M; +Inf for an observer at infinity; 0 only inside a shell
 	Inclination   float64 // deg, [0, 180], from the disk axis N
 	Azimuth       float64 // deg
-	Motion        string  // "static"
+	Motion        string  // "static", "orbit" or "infall"
 	PositionAngle float64 // deg, of N on the sky, from north through east
 }
 
 // Field is the part of the sky that is imaged.
 type Field struct {
-	Projection string     // "parallel" or "perspective"
+	Projection string     // "parallel", "perspective" or "all-sky"
 	AutoWidth  bool       // width = "auto": everything that shines plus 5 %
-	Width      float64    // M (parallel) or deg (perspective); 0 when AutoWidth
+	Width      float64    // M (parallel) or deg (perspective, all-sky 360); 0 when AutoWidth
 	Pixels     [2]int     // columns, rows
 	Center     [2]float64 // M (parallel) or deg (perspective)
 	Frequency  []float64  // observed, Hz; empty when not given
@@ -49,16 +52,35 @@ type Field struct {
 
 // Emitter is one thing that shines.
 type Emitter struct {
-	Kind          string  // "disk"
+	Kind          string  // "disk", "surface" or "sky"
 	Inner         Rim     // inner rim
 	Outer         float64 // M
 	Clockwise     bool    // sense = "clockwise"
-	Gas           string  // "circular"
+	Gas           string  // "circular" or "static"
 	Profile       string  // "power"
 	Index         float64 // emissivity (r/M)^-Index in the gas frame
 	Light         string  // "bolometric" or "monochromatic"
 	SpectralIndex float64 // monochromatic: I_ν ∝ ν^SpectralIndex
 	Thick         bool    // optical_depth = "thick"
+	EmissionAngle string  // "isotropic", "darkened" or "brightened"
+
+	// surface
+	Temperature float64 // K; 0 when not given
+	Period      float64 // of rotation seen from infinity, M; 0 for none
+	Caps        []Cap
+
+	// sky
+	Image   string // path of an equirectangular image, "" for a pattern
+	Pattern string // "stars" or "grid"
+	Seed    int64  // of the star field
+}
+
+// Cap is a hot spot on a star's surface, fixed to it.
+type Cap struct {
+	Colatitude  float64 // deg from N, of its middle
+	Azimuth     float64 // deg, at t = 0
+	Size        float64 // deg, angular radius seen from the star's centre
+	Temperature float64 // K
 }
 
 // Rim is an inner rim: a radius, or one that the object defines.

@@ -104,7 +104,7 @@ func TestDefaults(t *testing.T) {
 		Object:   Object{Kind: "black-hole"},
 		Observer: Observer{Radius: math.Inf(1), Inclination: 60, Motion: "static"},
 		Field:    Field{Projection: "parallel", AutoWidth: true, Pixels: [2]int{800, 800}},
-		Emitters: []Emitter{{Kind: "disk", Inner: Rim{"isco", 6}, Outer: 20, Gas: "circular", Profile: "power", Index: 3, Light: "bolometric"}},
+		Emitters: []Emitter{{Kind: "disk", Inner: Rim{"isco", 6}, Outer: 20, Gas: "circular", Profile: "power", Index: 3, Light: "bolometric", EmissionAngle: "isotropic"}},
 		Trace:    Trace{Tolerance: 1e-9, MaxOrder: 2, FluxTolerance: 1e-4},
 	}
 	if !s.Equal(want) {
@@ -129,6 +129,14 @@ func TestFormatComesBack(t *testing.T) {
 		"[field]\nfrequency = [\"6.4 keV\", 230, \"1 Hz\", 1e-300]",
 		"[[emitter]]\ninner = 2.1\nouter = \"1e300 M\"\nsense = \"clockwise\"\nindex = -0.1\n[[emitter]]\nlight = \"monochromatic\"\nspectral_index = -0.7\noptical_depth = \"thick\"",
 		"[trace]\ntolerance = 1e-13\nmax_order = 0\nflux_tolerance = 0.01",
+		"[object]\ncharge = \"0.1 rs\"\n[[emitter]]\ninner = \"isco\"\nemission_angle = \"brightened\"\n[[emitter]]\ninner = \"horizon\"",
+		"[object]\nkind = \"star\"\nradius = \"12.3 km\"\nmass = \"1.4 +- 0.1 Msun\"\ninterior = \"uniform\"\n[[emitter]]\ngas = \"static\"\ninner = 6",
+		"[object]\nkind = \"star\"\nradius = 2.2500000000000004\n[[emitter]]\nkind = \"surface\"\nperiod = \"250.3 M\"\nemission_angle = \"darkened\"\nlight = \"monochromatic\"\nspectral_index = -1",
+		"[object]\nkind = \"star\"\nradius = 6\nmass = 1.4\n[[emitter]]\nkind = \"surface\"\ntemperature = \"0.1 keV\"\nperiod = 0.3\ncaps = [{colatitude = \"1 rad\", azimuth = -0.1, size = 90, temperature = \"0.3 keV\"}, {colatitude = 0, size = 1e-300, temperature = 1e300}]",
+		"[object]\nkind = \"shell\"\nradius = 2.5\n[observer]\nradius = 0\n[field]\nprojection = \"all-sky\"\nwidth = 360\ncenter = [\"0 deg\", 0]\n[[emitter]]\nkind = \"sky\"\npattern = \"stars\"\nseed = 9007199254740991",
+		"[[emitter]]\nkind = \"sky\"\nimage = \"a \\\"b\\\" µ.png\"\nlight = \"monochromatic\"\nspectral_index = 1\n[[emitter]]",
+		"[observer]\nradius = 1e-300\nmotion = \"infall\"\n[field]\nprojection = \"perspective\"",
+		"[observer]\nradius = \"3.0000000000000004 M\"\nmotion = \"orbit\"\n[field]\nprojection = \"all-sky\"",
 	} {
 		first := parse(t, top+text)
 		formatted := Format(first.Scene())

@@ -75,6 +75,14 @@ func TestSetInOtherForms(t *testing.T) {
 		{"byte order mark", "\uFEFFschema = 1\n", "title", "x", "\uFEFFschema = 1\ntitle = \"x\"\n"},
 		{"list over lines", "schema = 1\n[field]\npixels = [ # two\n 8,\n 6 ]\n", "field.width", "9",
 			"schema = 1\n[field]\npixels = [ # two\n 8,\n 6 ]\nwidth = 9\n"},
+		{"caps", "schema = 1\n[object]\nkind = \"star\"\nradius = 6\n[[emitter]]\nkind = \"surface\" # s\n", "emitter.caps",
+			"[{colatitude = 3, size = 9, temperature = 1e6}]",
+			"schema = 1\n[object]\nkind = \"star\"\nradius = 6\n[[emitter]]\nkind = \"surface\" # s\ncaps = [{colatitude = 3, size = 9, temperature = 1e6}]\n"},
+		{"no caps", "schema = 1\n[object]\nkind = \"star\"\nradius = 6\n[[emitter]]\nkind = \"surface\"\ncaps = [ # hot\n {colatitude = 3, size = 9, temperature = 1e6}, # north\n] # x\n", "emitter.caps",
+			"[]",
+			"schema = 1\n[object]\nkind = \"star\"\nradius = 6\n[[emitter]]\nkind = \"surface\"\ncaps = [] # x\n"},
+		{"image", "schema = 1\n[[emitter]]\nkind = \"sky\"\n", "emitter.image", "a b.png",
+			"schema = 1\n[[emitter]]\nkind = \"sky\"\nimage = \"a b.png\"\n"},
 		{"replace a list", "schema = 1\n[field]\npixels = [ 8,\n 6 ] # x\n", "field.pixels", "[1,1]",
 			"schema = 1\n[field]\npixels = [1,1] # x\n"},
 	} {
@@ -93,6 +101,13 @@ func TestSetInOtherForms(t *testing.T) {
 func TestSetRefusalsChangeNothing(t *testing.T) {
 	for _, c := range []struct{ path, value, says string }{
 		{"observer.radius", "1.9 M", "--set observer.radius: out of range"},
+		{"object.kind", "star", "--set object.kind: a star needs object.radius"},
+		{"observer.motion", "infall", "a parallel field needs a static observer"},
+		{"emitter.2.kind", "sky", "--set emitter.2.kind: emitter.2.inner: inner does not apply to a sky"},
+		{"emitter.caps", "[{size = 3}]", "--set emitter.caps: cap 1 needs colatitude"},
+		{"emitter.caps", "[{size = 3]", "--set emitter.caps: wrong type, text"},
+		{"emitter.caps", "[]\nouter = 3", "--set emitter.caps: wrong type, text"},
+		{"emitter.caps", "3", "--set emitter.caps: wrong type, a whole number"},
 		{"observer.radius", "nan", "--set observer.radius: not a finite number"},
 		{"observer.radius", "75 # x", "--set observer.radius: unknown unit"},
 		{"observer.radius", "50\nmotion = \"static\"", "--set observer.radius: unknown unit"},

@@ -151,9 +151,9 @@ func parseSource(name string, text []byte) (*source, *Error) {
 
 // parseValue returns the value that the text is, alone and entirely.
 func parseValue(text string) (value, bool) {
-	const before = "x = "
+	const before = "[t]\nx = " // within a table, where a list of tables is a value like others
 	src, err := parseSource("", []byte(before+text))
-	if err != nil || len(src.tables) != 1 || len(src.entries) != 1 {
+	if err != nil || len(src.tables) != 2 || len(src.entries) != 1 {
 		return value{}, false
 	}
 	v := src.entries[0].value

@@ -18,6 +18,8 @@ const (
 	Planck = 6.62607015e-34
 	// ElementaryCharge is e, C, exact; 1 eV = e J. Source: SI (2019).
 	ElementaryCharge = 1.602176634e-19
+	// Boltzmann is k, J/K, exact. Source: SI (2019).
+	Boltzmann = 1.380649e-23
 	// AstronomicalUnit is the au, m, exact. Source: IAU 2012 Resolution B2.
 	AstronomicalUnit = 149597870700.0
 	// Parsec is the pc, m, exactly 648000/π au. Source: IAU 2015 Resolution B2.
@@ -75,18 +77,19 @@ var unitTable = []unit{
 
 // Sets of units that keys accept.
 var (
-	lengthUnits     = []string{"M", "rg", "rs", "km", "s", "uas", "mas"}
-	angleUnits      = []string{"deg", "rad"}
-	fieldUnits      = slices.Concat(lengthUnits, angleUnits)
-	timeUnits       = []string{"M", "rg", "rs", "s", "d", "yr"}
-	skyUnits        = []string{"uas", "mas"}
-	beamUnits       = slices.Concat(skyUnits, angleUnits)
-	massUnits       = []string{"Msun"}
-	distanceUnits   = []string{"pc", "kpc", "Mpc"}
-	frequencyUnits  = []string{"Hz", "kHz", "MHz", "GHz", "THz", "eV", "keV"}
-	fluxUnits       = []string{"Jy", "mJy"}
-	luminosityUnits = []string{"erg/s", "Edd"}
-	accretionUnits  = []string{"Msun/yr", "Edd"}
+	lengthUnits      = []string{"M", "rg", "rs", "km", "s", "uas", "mas"}
+	angleUnits       = []string{"deg", "rad"}
+	fieldUnits       = slices.Concat(lengthUnits, angleUnits)
+	timeUnits        = []string{"M", "rg", "rs", "s", "d", "yr"}
+	skyUnits         = []string{"uas", "mas"}
+	beamUnits        = slices.Concat(skyUnits, angleUnits)
+	massUnits        = []string{"Msun"}
+	distanceUnits    = []string{"pc", "kpc", "Mpc"}
+	frequencyUnits   = []string{"Hz", "kHz", "MHz", "GHz", "THz", "eV", "keV"}
+	temperatureUnits = []string{"K", "eV", "keV"}
+	fluxUnits        = []string{"Jy", "mJy"}
+	luminosityUnits  = []string{"erg/s", "Edd"}
+	accretionUnits   = []string{"Msun/yr", "Edd"}
 )
 
 // microSigns writes both Unicode micro signs, U+00B5 and U+03BC, as u.

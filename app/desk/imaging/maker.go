@@ -1,0 +1,243 @@
+package imaging
+
+import (
+	"context"
+	"errors"
+	"image"
+	"sync"
+	"time"
+
+	"annulet/raytrace"
+	"annulet/scenes"
+)
+
+// patience is how long a coarse picture that has become stale may still go
+// on. It is longer than a coarse picture takes when the pace is known, so a
+// hand that never rests still sees every picture that was begun.
+const patience = 3 * previewTime
+
+// Order asks for the picture of a scene.
+type Order struct {
+	Serial        int // changes with the scene or the pixel count; equal serials share a trace
+	Scene         scenes.Scene
+	Columns, Rows int
+	Asked         time.Time // when the hand moved
+
+	// Develop turns a plate into an image of the plate's size. It runs
+	// off the window's thread.
+	Develop func(*raytrace.Plate) *image.RGBA
+}
+
+// Frame is a picture ready to show.
+type Frame struct {
+	Order      Order
+	Plate      *raytrace.Plate
+	Width      float64       // of the field: M, or radians on an angular field
+	Image      *image.RGBA   // Order.Columns × Order.Rows, top row first
+	Coarsening int           // 1 when every pixel was traced
+	Traced     time.Duration // how long this plate took
+	Retoned    bool          // the plate had been shown before with another tone
+	Err        error         // the scene cannot be traced; then Plate and Image are nil
+}
+
+// Settled says whether nothing finer will follow.
+func (f Frame) Settled() bool { return f.Err != nil || f.Coarsening == 1 }
+
+// View is a scene made ready to trace.
+type View interface {
+	// Trace makes a plate with the picture's pixels divided by the
+	// coarsening, rounded up.
+	Trace(ctx context.Context, coarsening int, report func(raytrace.Progress)) (*raytrace.Plate, error)
+	// Width is that of the field: M, or radians on an angular field.
+	Width() float64
+}
+
+// Prepare makes a view of an order's scene, of Order.Columns × Order.Rows
+// pixels.
+type Prepare func(Order) (View, error)
+
+// Maker makes pictures. Its methods may be called from any goroutine.
+type Maker struct {
+	prepare Prepare
+	show    func(Frame)           // called from one goroutine, in order
+	report  func(done, tiles int) // called from several; never more than ten times a second
+
+	mu     sync.Mutex
+	order  Order     // the latest
+	begun  int       // Serial of the order being traced or already traced
+	coarse time.Time // when the coarse picture being traced was begun; zero for none
+	cancel context.CancelFunc
+	plate  *Frame // the latest traced, without Image; nil before the first
+
+	traceWake, toneWake chan struct{} // capacity 1
+}
+
+// NewMaker returns a maker; Run starts it.
+func NewMaker(prepare Prepare, show func(Frame), report func(done, tiles int)) *Maker {
+	return &Maker{
+		prepare: prepare, show: show, report: report,
+		begun:     -1,
+		traceWake: make(chan struct{}, 1),
+		toneWake:  make(chan struct{}, 1),
+	}
+}
+
+// Ask replaces whatever was asked before.
+func (m *Maker) Ask(o Order) {
+	m.mu.Lock()
+	retone := o.Serial == m.order.Serial && m.plate != nil
+	m.order = o
+	if o.Serial != m.begun && m.cancel != nil {
+		// A coarse picture goes on for a while, or a hand that never
+		// rests would see none; anything finer is stale at once.
+		if m.coarse.IsZero() || time.Since(m.coarse) > patience {
+			m.cancel()
+		}
+	}
+	m.mu.Unlock()
+	if retone {
+		wake(m.toneWake)
+	}
+	wake(m.traceWake)
+}
+
+// Run works until ctx ends.
+func (m *Maker) Run(ctx context.Context) {
+	var loops sync.WaitGroup
+	loops.Go(func() { m.traceLoop(ctx) })
+	loops.Go(func() { m.toneLoop(ctx) })
+	loops.Wait()
+}
+
+func (m *Maker) traceLoop(ctx context.Context) {
+	var speed pace
+	for {
+		select {
+		case <-ctx.Done():
+			return
+		case <-m.traceWake:
+		}
+		for m.traceLatest(ctx, &speed) {
+		}
+	}
+}
+
+// traceLatest traces the latest order, coarse to fine, until it is done or a
+// newer one arrives. It reports whether there is a newer one.
+func (m *Maker) traceLatest(ctx context.Context, speed *pace) bool {
+	m.mu.Lock()
+	o := m.order
+	fresh := o.Serial != m.begun
+	m.begun = o.Serial
+	m.mu.Unlock()
+	if !fresh || ctx.Err() != nil {
+		return false
+	}
+	begun := time.Now()
+	view, err := m.prepare(o)
+	if err != nil {
+		m.keep(Frame{Order: o, Err: err})
+		return m.stale(o)
+	}
+	rungs := speed.rungs(o.Columns, o.Rows, time.Since(begun))
+	for k, coarsening := range rungs {
+		frame, err := m.traceRung(ctx, view, o, coarsening, k == 0 && len(rungs) > 1)
+		switch {
+		case errors.Is(err, context.Canceled):
+			return ctx.Err() == nil
+		case err != nil:
+			frame.Err = err
+			m.keep(frame)
+			return m.stale(o)
+		}
+		speed.note(frame.Plate.Columns*frame.Plate.Rows, frame.Traced)
+		m.keep(frame)
+		if m.stale(o) {
+			return true
+		}
+	}
+	return false
+}
+
+// traceRung traces one picture; coarse says that newer orders must let it
+// finish.
+func (m *Maker) traceRung(ctx context.Context, view View, o Order, coarsening int, coarse bool) (Frame, error) {
+	ctx, cancel := context.WithCancel(ctx)
+	defer cancel()
+	begun := time.Now()
+	m.mu.Lock()
+	m.cancel, m.coarse = cancel, time.Time{}
+	if coarse {
+		m.coarse = begun
+	} else if m.order.Serial != o.Serial {
+		cancel() // a newer order came between two rungs
+	}
+	m.mu.Unlock()
+	defer func() {
+		m.mu.Lock()
+		m.cancel = nil
+		m.mu.Unlock()
+	}()
+	plate, err := view.Trace(ctx, coarsening, m.throttled(begun))
+	return Frame{Order: o, Plate: plate, Width: view.Width(), Coarsening: coarsening, Traced: time.Since(begun)}, err
+}
+
+// throttled returns a progress callback that passes on at most ten reports a
+// second, and none for pictures that are done sooner.
+func (m *Maker) throttled(begun time.Time) func(raytrace.Progress) {
+	const interval = 100 * time.Millisecond
+	var mu sync.Mutex
+	next := begun.Add(5 * interval)
+	return func(p raytrace.Progress) {
+		mu.Lock()
+		defer mu.Unlock()
+		if now := time.Now(); now.After(next) && m.report != nil {
+			next = now.Add(interval)
+			m.report(p.TilesDone, p.Tiles)
+		}
+	}
+}
+
+func (m *Maker) stale(o Order) bool {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	return m.order.Serial != o.Serial
+}
+
+// keep hands a traced plate to the toning loop; a plate not yet toned is
+// overtaken.
+func (m *Maker) keep(f Frame) {
+	m.mu.Lock()
+	m.plate = &f
+	m.mu.Unlock()
+	wake(m.toneWake)
+}
+
+func (m *Maker) toneLoop(ctx context.Context) {
+	var shown *Frame
+	for {
+		select {
+		case <-ctx.Done():
+			return
+		case <-m.toneWake:
+		}
+		m.mu.Lock()
+		latest, order := m.plate, m.order
+		m.mu.Unlock()
+		f := *latest
+		f.Retoned = shown == latest
+		shown = latest
+		if f.Err == nil {
+			f.Order.Develop = order.Develop // the tone may be newer than the plate
+			f.Image = fit(f.Order.Develop(f.Plate), f.Coarsening, f.Order.Columns, f.Order.Rows)
+		}
+		m.show(f)
+	}
+}
+
+func wake(c chan struct{}) {
+	select {
+	case c <- struct{}{}:
+	default: // it will wake anyway
+	}
+}

@@ -1,0 +1,183 @@
+package imaging
+
+import (
+	"context"
+	"image"
+	"image/color"
+	"slices"
+	"sync"
+	"testing"
+	"time"
+
+	"annulet/raytrace"
+)
+
+// bench is a trace that the test holds in its hand.
+type bench struct {
+	begun    chan int // coarsening of each plate begun
+	release  chan struct{}
+	mu       sync.Mutex
+	finished []int // serial of each plate finished
+}
+
+// benchView is a scene on the bench.
+type benchView struct {
+	*bench
+	order Order
+}
+
+func (v benchView) Width() float64 { return 1 }
+
+func (v benchView) Trace(ctx context.Context, coarsening int, _ func(raytrace.Progress)) (*raytrace.Plate, error) {
+	v.begun <- coarsening
+	select {
+	case <-v.release:
+	case <-ctx.Done():
+		return nil, ctx.Err()
+	}
+	v.mu.Lock()
+	v.finished = append(v.finished, v.order.Serial)
+	v.mu.Unlock()
+	columns, rows := v.order.Columns/coarsening, v.order.Rows/coarsening
+	return &raytrace.Plate{Columns: columns, Rows: rows, Total: make([]float32, columns*rows)}, nil
+}
+
+func blank(p *raytrace.Plate) *image.RGBA { return image.NewRGBA(image.Rect(0, 0, p.Columns, p.Rows)) }
+
+func order(serial int) Order {
+	return Order{Serial: serial, Columns: 600, Rows: 600, Asked: time.Now(), Develop: blank}
+}
+
+// start returns a running maker and the frames it shows.
+func start(t *testing.T) (*Maker, *bench, <-chan Frame) {
+	t.Helper()
+	ctx, cancel := context.WithCancel(context.Background())
+	b := &bench{begun: make(chan int), release: make(chan struct{})}
+	frames := make(chan Frame, 16)
+	m := NewMaker(func(o Order) (View, error) { return benchView{b, o}, nil }, func(f Frame) { frames <- f }, nil)
+	var running sync.WaitGroup
+	running.Go(func() { m.Run(ctx) })
+	t.Cleanup(func() { cancel(); running.Wait() })
+	return m, b, frames
+}
+
+func TestCoarseThenFull(t *testing.T) {
+	m, b, frames := start(t)
+	m.Ask(order(1))
+	for k, want := range []int{4, 1} { // 0.54 s at the guessed speed, 60 ms wanted
+		if got := <-b.begun; got != want {
+			t.Fatalf("plate %d has coarsening %d, want %d", k, got, want)
+		}
+		b.release <- struct{}{}
+		f := <-frames
+		if f.Coarsening != want || f.Settled() != (want == 1) || f.Image.Rect != image.Rect(0, 0, 600, 600) {
+			t.Errorf("frame %d: coarsening %d, settled %v, %v", k, f.Coarsening, f.Settled(), f.Image.Rect)
+		}
+	}
+}
+
+func TestStaleFullPlateIsCancelled(t *testing.T) {
+	m, b, frames := start(t)
+	m.Ask(order(1))
+	<-b.begun
+	b.release <- struct{}{}
+	<-frames
+	<-b.begun // the full one, never released
+	m.Ask(order(2))
+	<-b.begun
+	b.release <- struct{}{}
+	if f := <-frames; f.Order.Serial != 2 {
+		t.Errorf("frame of scene %d, want 2", f.Order.Serial)
+	}
+}
+
+// A hand that never rests must see pictures: a coarse plate that has been
+// begun is finished although newer orders have come.
+func TestCoarsePlateOutlivesNewOrders(t *testing.T) {
+	m, b, frames := start(t)
+	m.Ask(order(1))
+	<-b.begun
+	for serial := 2; serial <= 9; serial++ {
+		m.Ask(order(serial))
+	}
+	b.release <- struct{}{}
+	if f := <-frames; f.Order.Serial != 1 {
+		t.Fatalf("frame of scene %d, want 1", f.Order.Serial)
+	}
+	<-b.begun // of the latest
+	b.release <- struct{}{}
+	if f := <-frames; f.Order.Serial != 9 {
+		t.Errorf("frame of scene %d, want 9: those between are stale", f.Order.Serial)
+	}
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	if !slices.Equal(b.finished, []int{1, 9}) {
+		t.Errorf("finished %v, want 1 and 9", b.finished)
+	}
+}
+
+func TestToneDoesNotTrace(t *testing.T) {
+	m, b, frames := start(t)
+	o := order(1)
+	m.Ask(o)
+	for range 2 {
+		<-b.begun
+		b.release <- struct{}{}
+		<-frames
+	}
+	developed := make(chan struct{}, 1)
+	o.Develop = func(p *raytrace.Plate) *image.RGBA { developed <- struct{}{}; return blank(p) }
+	m.Ask(o)
+	select {
+	case k := <-b.begun:
+		t.Fatalf("a change of tone traced a plate of coarsening %d", k)
+	case f := <-frames:
+		if <-developed; !f.Retoned || f.Coarsening != 1 {
+			t.Errorf("retoned %v, coarsening %d", f.Retoned, f.Coarsening)
+		}
+	}
+}
+
+func TestPace(t *testing.T) {
+	var p pace
+	if got := p.rungs(100, 100, 0); !slices.Equal(got, []int{1}) {
+		t.Errorf("a small picture is made in %v", got)
+	}
+	p.note(1000*1000, 6*time.Second) // a hundred times the preview's time
+	if got := p.rungs(1000, 1000, 0); !slices.Equal(got, []int{10, 3, 1}) {
+		t.Errorf("a slow picture is made in %v, want 10 3 1", got)
+	}
+	if got := p.rungs(1000, 1000, time.Second)[0]; got != 15 {
+		t.Errorf("with the time spent already the first coarsening is %d, want 15", got)
+	}
+	p.note(10, time.Second) // tells nothing
+	if got := p.rungs(1000, 1000, 0)[0]; got != 10 {
+		t.Errorf("a tiny picture changed the pace to %d", got)
+	}
+	if got := p.rungs(100, 4000, 0)[0]; got > 2 {
+		t.Errorf("a narrow picture is coarsened by %d", got)
+	}
+}
+
+func TestFitKeepsTheBottomLeftCorner(t *testing.T) {
+	coarse := image.NewRGBA(image.Rect(0, 0, 34, 34)) // 100 pixels by 3, rounded up
+	for y := range 34 {
+		for x := range 34 {
+			if x < 17 && y >= 17 { // the bottom left quarter
+				coarse.SetRGBA(x, y, color.RGBA{R: 0xff, A: 0xff})
+			}
+		}
+	}
+	out := fit(coarse, 3, 100, 100)
+	if out.Rect != image.Rect(0, 0, 100, 100) {
+		t.Fatalf("fits %v", out.Rect)
+	}
+	for _, k := range []struct {
+		x, y int
+		want uint8
+	}{{0, 99, 0xff}, {48, 52, 0xff}, {53, 60, 0}, {40, 47, 0}, {99, 99, 0}, {0, 0, 0}} {
+		if got := out.RGBAAt(k.x, k.y).R; got != k.want {
+			t.Errorf("pixel %d, %d is %d, want %d", k.x, k.y, got, k.want)
+		}
+	}
+}

@@ -1,0 +1,42 @@
+package scenes
+
+import "fmt"
+
+// memoryLimit bounds the float32 layers of a plate, in bytes.
+const memoryLimit = 4 << 30
+
+// Layers of a plate: the total, and intensity g r phi delay mu of each order.
+const (
+	layersOnce     = 1
+	layersPerOrder = 6
+	bytesPerValue  = 4 // float32
+)
+
+// memory refuses a plate too large, and says how large.
+func (b *builder) memory() {
+	pixels, maxOrder := b.get("field", 0, "pixels"), b.get("trace", 0, "max_order")
+	columns, rows := pixels.numbers[0].value, pixels.numbers[1].value // float64: their product may pass every integer
+	orders := b.scene.Trace.MaxOrder + 1
+	perPixel := (layersOnce + layersPerOrder*orders) * bytesPerValue
+	need := columns * rows * float64(perPixel)
+	if need <= memoryLimit {
+		return
+	}
+	blame := pixels
+	if !pixels.given {
+		blame = maxOrder
+	}
+	b.failAt(blame, Error{
+		Problem: fmt.Sprintf("the image would need %s of memory, %d bytes for each of %.0f x %.0f pixels with max_order %d",
+			gibibytes(need), perPixel, columns, rows, orders-1),
+		Allowed: "at most " + gibibytes(memoryLimit),
+	})
+}
+
+// gibibytes writes a number of bytes in GiB, large ones in TiB.
+func gibibytes(n float64) string {
+	if n >= 1<<40 {
+		return fmt.Sprintf("%.4g TiB", n/(1<<40))
+	}
+	return fmt.Sprintf("%.4g GiB", n/(1<<30))
+}
