@@ -74,20 +74,25 @@ func (t *roundTracer) Cross(rays *Rays, want Want, out *Crossings) {
 	for k := range rays.Lambda {
 		if rays.Seen[k] {
 			t.cosS, t.sinS = rays.CosS[k], rays.SinS[k]
-			t.target, t.order = math.Inf(1), 0
-			if t.plan.Plane {
-				t.target = FirstPlaneAngle(t.sinI, t.cosI, t.sinS)
-			}
-			switch end := t.follow(max(rays.Impact(k), radial), rays.KR[k], 0); {
-			case end == atStop && t.plan.Sky:
-				t.finish(0)
-				t.recordEnd(Sky)
-			case end == atEdge && t.spacetime.end == OnSurface:
-				t.finish(t.spacetime.edge)
-				t.recordEnd(Star)
-			}
+			t.crossOne(max(rays.Impact(k), radial), rays.KR[k])
 		}
 		out.Start = append(out.Start, int32(len(out.R)))
+	}
+}
+
+// crossOne appends the crossings of the ray in hand.
+func (t *roundTracer) crossOne(b, kr float64) {
+	t.target, t.order = math.Inf(1), 0
+	if t.plan.Plane {
+		t.target = FirstPlaneAngle(t.sinI, t.cosI, t.sinS)
+	}
+	switch end := t.follow(b, kr, 0); {
+	case end == atStop && t.plan.Sky:
+		t.finish(0)
+		t.recordEnd(Sky)
+	case end == atEdge && t.spacetime.end == OnSurface:
+		t.finish(t.spacetime.edge)
+		t.recordEnd(Star)
 	}
 }
 
@@ -266,8 +271,10 @@ func (o *orbit) locate(hi float64, f func(theta float64) float64) float64 {
 func (t *roundTracer) recordPlane(theta, u float64) {
 	o, out := &t.orbit, t.out
 	w, slope := o.wAt(theta), o.slopeAt(theta)
-	t.place(Plane, t.target, 1/u)
-	out.KR = append(out.KR, o.b*w)
+	t.place(Plane, t.order, t.target, 1/u)
+	if !t.want.NoKR {
+		out.KR = append(out.KR, o.b*w)
+	}
 	if t.want.Delay {
 		out.Delay = append(out.Delay, o.timeAt(theta)-o.leg*t.spacetime.tortoise(u))
 	}
@@ -284,8 +291,10 @@ func (t *roundTracer) recordEnd(surface Surface) {
 	if o.psi > t.limit {
 		return
 	}
-	t.place(surface, o.psi, 1/o.u0)
-	out.KR = append(out.KR, o.b*o.w0)
+	t.place(surface, orderOf(o.psi), o.psi, 1/o.u0)
+	if !t.want.NoKR {
+		out.KR = append(out.KR, o.b*o.w0)
+	}
 	if t.want.Delay {
 		delay := math.NaN()
 		if surface == Star {
@@ -300,20 +309,25 @@ func (t *roundTracer) recordEnd(surface Surface) {
 }
 
 // place appends what a crossing of any surface says about where it is.
-func (t *roundTracer) place(surface Surface, psi, r float64) {
+func (t *roundTracer) place(surface Surface, order int, psi, r float64) {
 	out := t.out
-	order, cosTheta := t.order, 0.0
-	if surface != Plane {
-		order = max(0, int(math.Ceil(psi/math.Pi))-1)
-		sinPsi, cosPsi := math.Sincos(psi)
-		cosTheta = cosPsi*t.cosI + sinPsi*t.sinS*t.sinI
-	}
 	out.Surface = append(out.Surface, surface)
 	out.Order = append(out.Order, uint8(order))
 	out.R = append(out.R, r)
+	if t.want.NoPlace {
+		return
+	}
+	cosTheta := 0.0
+	if surface != Plane {
+		sinPsi, cosPsi := math.Sincos(psi)
+		cosTheta = cosPsi*t.cosI + sinPsi*t.sinS*t.sinI
+	}
 	out.CosTheta = append(out.CosTheta, cosTheta)
 	out.Phi = append(out.Phi, wrapped(t.azimuth+PlaneAzimuth(t.sinI, t.cosI, t.cosS, t.sinS, psi)))
 }
+
+// orderOf is the image order of a swept angle psi > 0.
+func orderOf(psi float64) int { return max(0, int(math.Ceil(psi/math.Pi))-1) }
 
 // global bounds the error of u after the steps so far. A local error is a
 // shift along the orbit plus a change of b, and both are carried on by

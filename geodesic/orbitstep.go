@@ -19,6 +19,7 @@ type orbit struct {
 	ts     [7]float64 // dtime/dψ at the stages
 	p, q   float64    // ∂u/∂b and ∂w/∂b at fixed ψ
 	p0, q0 float64
+	qs     [7]float64 // ∂w/∂b at the stages
 }
 
 // Coefficients of dormandPrince for the unrolled steps; tests compare the
@@ -135,6 +136,7 @@ func (o *orbit) rideSlope() {
 	q6, s6 := q+h*(a61*s1+a62*s2+a63*s3+a64*s4+a65*s5), tide(o.us[5], curve)*(p+h*(a61*q1+a62*q2+a63*q3+a64*q4+a65*q5))
 	o.p = p + h*(a71*q1+a73*q3+a74*q4+a75*q5+a76*q6)
 	o.q = q + h*(a71*s1+a73*s3+a74*s4+a75*s5+a76*s6)
+	o.qs = [7]float64{q, q2, q3, q4, q5, q6, o.q}
 }
 
 // glideSlope is rideSlope with the coefficient ∂u″/∂u frozen at its mean over

@@ -81,8 +81,10 @@ func (t *roundTracer) recordWithin(phi, drift, delay float64) {
 	b := t.orbit.b
 	r := s.inside.Radius(b, phi)
 	w := math.Copysign(s.speedWithin(b, r), -phi)
-	t.place(Plane, t.target, r)
-	out.KR = append(out.KR, b*w)
+	t.place(Plane, t.order, t.target, r)
+	if !t.want.NoKR {
+		out.KR = append(out.KR, b*w)
+	}
 	if t.want.Delay {
 		out.Delay = append(out.Delay, delay)
 	}

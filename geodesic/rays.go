@@ -73,9 +73,11 @@ func (c *Crossings) Reset(n int) {
 	c.Bound = c.Bound[:0]
 }
 
-// Want says which columns of Crossings a caller will read.
+// Want says which columns of Crossings a caller will read: the costly Delay
+// and Slope only if asked for, CosTheta with Phi and KR unless spared.
 type Want struct {
-	Delay, Slope bool
+	Delay, Slope  bool
+	NoPlace, NoKR bool
 }
 
 func resized[T any](s []T, n int) []T {
@@ -91,6 +93,9 @@ type Plan struct {
 	MaxOrder  int     // highest image order followed, 0 to 9
 	Plane     bool    // crossings of the disk plane
 	Sky       bool    // where escaping paths come from
+	// Reach is the radius, M, beyond which nothing lies on the plane: there
+	// crossings may be interpolated with any bound. 0 means infinity.
+	Reach float64
 }
 
 // Tracer follows blocks of rays. It keeps scratch: one a goroutine.

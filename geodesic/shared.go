@@ -1,0 +1,470 @@
+package geodesic
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"runtime"
+
+	"golang.org/x/sync/errgroup"
+)
+
+// OrbitTable holds the orbits that the paths of one observer share. In a
+// round spacetime a path is u(ψ; v), with v = du/dψ at the observer, and the
+// screen angle only says at which ψ it meets the disk plane. The table keeps
+// u, w = ∂u/∂ψ, p = ∂u/∂v and q = ∂w/∂v at whole steps of ψ for a grid of v
+// that is graded towards the critical orbit; between them u is interpolated
+// to fifth order in ψ (u″ is known) and to third across v.
+//
+// u(ψ; v) is analytic in v, also where v = 0 joins the paths that start
+// inward and outward, and is continued past horizon and infinity so that the
+// ends of orbits are interpolated like the rest. What light passing through a
+// star or a shell does beyond its edge is not tabulated: those rays are
+// integrated one by one.
+type OrbitTable struct {
+	object    *Round
+	uObs      float64
+	tolerance float64
+	orders    int     // image orders held
+	critical  float64 // v of the critical orbit
+	grading   float64 // |v - critical| below which the grid is even; a power of two
+	bits      uint    // 2^bits rows an octave of |v - critical| + grading
+	base      int     // index of grading in that numbering
+	low, high int     // rows are numbered from low to high, 0 the critical one
+	step      float64 // of ψ
+	knots     int     // per row
+	bins      int     // per row, of the bounds
+	timed     bool
+
+	v     []float64
+	nodes []node  // row by row, knots each
+	times []clock // likewise; empty unless timed
+	last  []int32 // knots of a row that hold, row by row
+	ends  []rowEnd
+	off   []float64 // bound on u, row by row, one per binsPerPi-th part of π
+	endOf []float64 // bound on the angle at which the orbits of a cell end, radians
+	sound []bool    // the cell from this row to the next may be interpolated
+	built Build
+}
+
+// node is the state of one orbit at one knot.
+type node struct{ u, w, p, q float64 }
+
+// clock is delay + leg r*, and its slope with v; see rideTime.
+type clock struct{ time, slope, leg float64 }
+
+// rowEnd is where an orbit leaves the exterior.
+type rowEnd struct {
+	psi, slope float64 // swept angle, and d/dv of it
+	kind       ending  // atEdge, atStop (infinity), or pastOrders
+}
+
+// Build reports what a table cost and how good it is.
+type Build struct {
+	Orbits     int     // rows
+	Bytes      int     // of the tables
+	WorstBound float64 // largest bound on u of any cell, 1/M
+}
+
+// Build returns the report of the table's making.
+func (tb *OrbitTable) Build() Build { return tb.built }
+
+// Share says which paths a table must hold.
+type Share struct {
+	Observer  Observer
+	Tolerance float64 // of the paths that the table stands for
+	MaxOrder  int
+	Outward   bool // also paths that start outward
+	Delay     bool // also times
+	Workers   int  // goroutines; 0 means GOMAXPROCS
+}
+
+const (
+	// shareFrom is the smallest impact parameter held, M. Orbits nearer to
+	// radial change on the scale of b itself; rays within are integrated.
+	shareFrom = 0.5
+	// tightestShared is the tolerance below which interpolation cannot
+	// follow and every ray is integrated.
+	tightestShared = 3e-11
+	// beyondHorizon and beyondInfinity are how far in u orbits are
+	// continued past their ends, so that a cell astride an end is held by
+	// all four corners. Method: four times the largest step between rows.
+	beyondHorizon  = 0.12
+	beyondInfinity = -0.05
+	// checkEvery is how many rows share one check by direct integration, at
+	// the share checkAt of the way to the next row: halfway the cubic is
+	// worst, but errors of its slopes cancel, which are worst at a third.
+	checkEvery = 6
+	checkAt    = 0.3
+	// binsPerPi is the resolution of the bounds in ψ. Taste.
+	binsPerPi = 8
+	// tableShare and checkShare divide the tolerance of the paths that the
+	// table stands for: errors of its orbits must not show beside those of
+	// the interpolation, nor errors of the check beside either.
+	tableShare = 200
+	checkShare = 400
+	// checkMargin covers what lies between the checks. Method:
+	// TestSharedBounds counts none uncovered.
+	checkMargin = 4
+)
+
+// gridFor chooses rows per octave and knots per π from the tolerance: the
+// error of the interpolation falls with their fourth and sixth power.
+func gridFor(tolerance float64) (bits uint, perPi int) {
+	switch {
+	case tolerance >= 1e-6:
+		return 4, 16
+	case tolerance >= 1e-8:
+		return 5, 24
+	case tolerance >= 3e-10:
+		return 6, 40
+	}
+	return 7, 48
+}
+
+// SharedOrbits integrates the table for one observer. It answers ctx within
+// a few rows. It returns nil and no error where sharing does not pay:
+// tolerances below 3e-11, and observers within a shell.
+func (s *Round) SharedOrbits(ctx context.Context, share Share) (*OrbitTable, error) {
+	if err := s.Check(share.Observer); err != nil {
+		return nil, err
+	}
+	uObs := 1 / share.Observer.Radius
+	if share.Tolerance < tightestShared || s.inside != nil && uObs > s.edge {
+		return nil, nil
+	}
+	tb := s.layOut(share, uObs)
+	rows := len(tb.v)
+	if err := tb.onRows(ctx, share, share.Tolerance/tableShare, rows, tb.integrate); err != nil {
+		return nil, err
+	}
+	checked := make([]tableCheck, (rows+checkEvery-2)/checkEvery)
+	if err := tb.onRows(ctx, share, share.Tolerance/checkShare, len(checked), func(t *roundTracer, k int) {
+		checked[k] = tb.check(t, k*checkEvery)
+	}); err != nil {
+		return nil, err
+	}
+	tb.conclude(checked)
+	return tb, nil
+}
+
+// onRows does work for the numbers 0 to n-1, shared among goroutines, each
+// with a tracer of its own.
+func (tb *OrbitTable) onRows(ctx context.Context, share Share, tolerance float64, n int, work func(t *roundTracer, k int)) error {
+	workers := share.Workers
+	if workers <= 0 {
+		workers = runtime.GOMAXPROCS(0)
+	}
+	group, ctx := errgroup.WithContext(ctx)
+	for worker := range workers {
+		group.Go(func() error {
+			t, err := tb.object.newTracer(share.Observer, Plan{Tolerance: max(tolerance, MinTolerance), MaxOrder: share.MaxOrder})
+			if err != nil {
+				return err
+			}
+			for k := worker; k < n; k += workers {
+				if err := ctx.Err(); err != nil {
+					return fmt.Errorf("geodesic: sharing orbits: %w", err)
+				}
+				work(t, k)
+			}
+			return nil
+		})
+	}
+	return group.Wait()
+}
+
+// layOut places the rows.
+func (s *Round) layOut(share Share, uObs float64) *OrbitTable {
+	tb := &OrbitTable{
+		object: s, uObs: uObs, tolerance: share.Tolerance,
+		orders: share.MaxOrder + 1, timed: share.Delay,
+	}
+	var perPi int
+	tb.bits, perPi = gridFor(share.Tolerance)
+	tb.step = math.Pi / float64(perPi)
+	tb.knots = tb.orders*perPi + 2
+
+	bc := s.CriticalImpact()
+	tb.critical = math.Sqrt(max(s.speed2(bc, uObs), 0))
+	if uObs > 1/s.PhotonSphere() {
+		tb.critical = -tb.critical
+	}
+	// a path at distance d from b_c leaves the photon sphere after
+	// ln(80.6 M/d) radians (Gralla, Holz & Wald, Phys. Rev. D 100, 024018
+	// (2019), from memory); dv = -db/(b³ v), or its root near v = 0
+	scale := 80.6 * math.Exp(-float64(tb.orders)*math.Pi) / (bc * bc * bc)
+	scale /= max(math.Abs(tb.critical), math.Sqrt(scale))
+	tb.grading = math.Ldexp(1, int(math.Floor(math.Log2(scale))))
+	tb.base = int(math.Float64bits(tb.grading) >> (52 - tb.bits))
+
+	steepest := math.Sqrt(max(s.speed2(shareFrom, uObs), 0))
+	least := 0.0
+	if share.Outward {
+		least = -steepest
+	}
+	tb.high = tb.rowOf(steepest) + 1
+	tb.low = tb.rowOf(least)
+	for row := tb.low; row <= tb.high; row++ {
+		tb.v = append(tb.v, tb.vOf(row))
+	}
+	rows := len(tb.v)
+	tb.nodes = make([]node, rows*tb.knots)
+	if tb.timed {
+		tb.times = make([]clock, rows*tb.knots)
+	}
+	tb.last = make([]int32, rows)
+	tb.ends = make([]rowEnd, rows)
+	tb.bins = tb.orders*binsPerPi + 1
+	tb.off = make([]float64, rows*tb.bins)
+	tb.endOf = make([]float64, rows)
+	tb.sound = make([]bool, rows)
+	return tb
+}
+
+// rowOf returns the row at or below v: the leading bits of
+// |v - critical| + grading number the rows, evenly within each octave.
+func (tb *OrbitTable) rowOf(v float64) int {
+	z := v - tb.critical
+	if z >= 0 {
+		return int(math.Float64bits(z+tb.grading)>>(52-tb.bits)) - tb.base
+	}
+	return tb.base - int(math.Float64bits(tb.grading-z)>>(52-tb.bits)) - 1
+}
+
+// vOf is the v of a row.
+func (tb *OrbitTable) vOf(row int) float64 {
+	at := math.Float64frombits(uint64(tb.base+max(row, -row)) << (52 - tb.bits))
+	if row >= 0 {
+		return tb.critical + (at - tb.grading)
+	}
+	return tb.critical - (at - tb.grading)
+}
+
+// launchSlope puts the orbit at the observer with slope v, its riders those
+// of ∂/∂v. Within a horizon not every v belongs to light with E > 0.
+func (t *roundTracer) launchSlope(v float64) (ok bool) {
+	o, s := &t.orbit, t.spacetime
+	square := v*v + t.uObs*t.uObs*s.lapse2(t.uObs) // 1/b²
+	if square < 0 || t.uObs > s.edge && square < 1e-6 {
+		return false
+	}
+	*o = orbit{b: 1 / max(math.Sqrt(square), 1e-30), curve: o.curve, u0: t.uObs, w0: v, leg: 1, q0: 1}
+	if v < 0 {
+		o.leg = -1
+	}
+	t.pace.start(o.b)
+	t.pace.h = min(t.pace.h, t.pace.first)
+	return true
+}
+
+// integrate fills one row of the table.
+func (tb *OrbitTable) integrate(t *roundTracer, row int) {
+	o, s := &t.orbit, tb.object
+	v := tb.v[row]
+	if !t.launchSlope(v) {
+		return
+	}
+	nodes := tb.nodes[row*tb.knots : (row+1)*tb.knots]
+	nodes[0] = node{o.u0, o.w0, o.p0, o.q0}
+	var ride clockRider
+	if tb.timed {
+		ride = newClockRider(t, v)
+		tb.times[row*tb.knots] = ride.clock
+	}
+	end := rowEnd{psi: math.Inf(1), kind: pastOrders}
+	k := 1
+	for ; k < tb.knots; k++ {
+		if o.u0 > s.edge+beyondHorizon && o.w0 > 0 || o.u0 < beyondInfinity && o.w0 < 0 {
+			break
+		}
+		target := float64(k) * tb.step
+		for o.psi < target {
+			if t.pace.tried > maxSteps {
+				return // last stays 0: no cell of this row is sound
+			}
+			h := min(t.pace.h, target-o.psi)
+			errU, errW := o.try(h)
+			if !t.pace.judge(h, errU, errW) {
+				continue
+			}
+			o.rideSlope()
+			if tb.timed {
+				ride.advance(o)
+			}
+			if end.kind == pastOrders {
+				end = tb.lookForEnd(o)
+			}
+			o.accept()
+			if target-o.psi < 1e-14*target {
+				o.psi = target
+			}
+		}
+		nodes[k] = node{o.u0, o.w0, o.p0, o.q0}
+		if tb.timed {
+			tb.times[row*tb.knots+k] = ride.clock
+		}
+		// the integration's own share of the bound; ∂/∂b at relative size one
+		// is ∂/∂v at 1/b
+		bin := &tb.off[row*tb.bins+int(target*(binsPerPi/math.Pi))]
+		*bin = max(*bin, t.pace.global(o.b, o.w0, o.p0/(o.b*o.b)))
+	}
+	tb.last[row] = int32(k)
+	tb.ends[row] = end
+}
+
+// lookForEnd returns the end of the orbit if it lies in the trial step.
+func (tb *OrbitTable) lookForEnd(o *orbit) rowEnd {
+	to, kind := 0.0, atStop
+	switch edge := tb.object.edge; {
+	case o.w > 0 && o.u0 < edge && o.u >= edge:
+		to, kind = edge, atEdge
+	case o.w < 0 && o.u0 > 0 && o.u <= 0:
+	default:
+		return rowEnd{psi: math.Inf(1), kind: pastOrders}
+	}
+	theta := o.locate(1, func(theta float64) float64 { return o.uAt(theta) - to })
+	return rowEnd{psi: o.psi + theta*o.h, slope: -o.slopeAt(theta) / o.wAt(theta), kind: kind}
+}
+
+// conclude turns the checks into bounds for every row, and says which cells
+// may be interpolated.
+func (tb *OrbitTable) conclude(checked []tableCheck) {
+	for row := range len(tb.v) - 1 {
+		k := row / checkEvery
+		near := checked[max(k-1, 0):min(k+2, len(checked))]
+		for bin := range tb.bins {
+			worst := 0.0
+			for _, c := range near {
+				for _, off := range c.off[max(bin-1, 0):min(bin+2, tb.bins)] {
+					worst = max(worst, off)
+				}
+			}
+			at := &tb.off[row*tb.bins+bin]
+			*at += checkMargin*worst + roundoff
+			tb.built.WorstBound = max(tb.built.WorstBound, *at)
+		}
+		for _, c := range near {
+			tb.endOf[row] = max(tb.endOf[row], checkMargin*c.end+tb.tolerance)
+		}
+		tb.sound[row] = tb.bothPastEnd(row)
+	}
+	tb.built.Orbits = len(tb.v)
+	tb.built.Bytes = 32*len(tb.nodes) + 24*len(tb.times) + 8*(len(tb.v)+len(tb.off)) + 24*len(tb.ends)
+}
+
+// bothPastEnd says whether, where the shorter of two neighbouring orbits stops
+// being held, the other has ended too, so that no crossing is lost there.
+func (tb *OrbitTable) bothPastEnd(row int) bool {
+	k := int(min(tb.last[row], tb.last[row+1]))
+	if k == 0 {
+		return false
+	}
+	if k == tb.knots {
+		return true
+	}
+	a, b := tb.nodes[row*tb.knots+k-1], tb.nodes[(row+1)*tb.knots+k-1]
+	past := func(n node) bool { return n.u >= tb.object.edge && n.w > 0 || n.u <= 0 && n.w < 0 }
+	return past(a) && past(b)
+}
+
+// tableCheck is what one integrated orbit says of the interpolation: the
+// largest difference in u for each bin of ψ, and that of the end angle.
+type tableCheck struct {
+	off []float64
+	end float64
+}
+
+// check integrates one orbit between two rows.
+func (tb *OrbitTable) check(t *roundTracer, row int) tableCheck {
+	c := tableCheck{off: make([]float64, tb.bins)}
+	o, edge := &t.orbit, tb.object.edge
+	if !t.launchSlope(tb.v[row] + checkAt*(tb.v[row+1]-tb.v[row])) {
+		return c
+	}
+	limit := float64(tb.orders) * math.Pi
+	part := tb.step / 3 // a third of a step: neither knot nor middle is left out, nor what lies between
+	for o.psi < limit && t.pace.tried < maxSteps {
+		h := t.pace.h
+		errU, errW := o.try(h)
+		if !t.pace.judge(h, errU, errW) {
+			continue
+		}
+		for k := math.Ceil(o.psi / part); k*part < min(o.psi+h, limit); k++ {
+			psi := k * part
+			u := o.uAt((psi - o.psi) / h)
+			cell, held := tb.cell(row, psi)
+			if !held || u <= 0 || u >= edge {
+				continue
+			}
+			bin := int(psi * (binsPerPi / math.Pi))
+			c.off[bin] = max(c.off[bin], math.Abs(u-tb.interpolate(&cell, checkAt)))
+		}
+		if end := tb.lookForEnd(o); end.kind != pastOrders {
+			from, to := tb.ends[row], tb.ends[row+1]
+			if from.kind == end.kind && to.kind == end.kind {
+				c.end = math.Abs(end.psi - tb.endPsi(row, checkAt))
+			}
+			break
+		}
+		o.accept()
+	}
+	return c
+}
+
+// endPsi interpolates the swept angle at the ends of two neighbouring orbits.
+func (tb *OrbitTable) endPsi(row int, s float64) float64 {
+	from, to, dv := tb.ends[row], tb.ends[row+1], tb.v[row+1]-tb.v[row]
+	return cubic(s, from.psi, to.psi, from.slope*dv, to.slope*dv)
+}
+
+// cell is the part of the table around one ψ, between two rows.
+type cell struct {
+	row, knot int
+	theta     float64 // share of the way to the next knot
+	dv        float64
+	a, b      *[2]node // this row and the next, at this knot and the next
+}
+
+// cell finds the knots around psi; held is false past the end of either row.
+func (tb *OrbitTable) cell(row int, psi float64) (c cell, held bool) {
+	at := psi / tb.step
+	k := int(at)
+	if k+1 >= int(min(tb.last[row], tb.last[row+1])) {
+		return cell{}, false
+	}
+	i := row*tb.knots + k
+	return cell{
+		row: row, knot: k, theta: at - float64(k), dv: tb.v[row+1] - tb.v[row],
+		a: (*[2]node)(tb.nodes[i : i+2]),
+		b: (*[2]node)(tb.nodes[i+tb.knots : i+tb.knots+2]),
+	}, true
+}
+
+// interpolate returns u in a cell at share s of the way to the next row.
+func (tb *OrbitTable) interpolate(c *cell, s float64) float64 {
+	curve := 2 * tb.object.charge2
+	ua, pa := along(c.a, c.theta, tb.step, curve)
+	ub, pb := along(c.b, c.theta, tb.step, curve)
+	return cubic(s, ua, ub, pa*c.dv, pb*c.dv)
+}
+
+// along interpolates u and p within one row, u by the quintic, p by the
+// cubic: p enters only with the distance to the row.
+func along(n *[2]node, theta, h, curve float64) (u, p float64) {
+	u = quintic(theta, h, n[0].u, n[1].u, n[0].w, n[1].w, bend(n[0].u, curve), bend(n[1].u, curve))
+	p = cubic(theta, n[0].p, n[1].p, h*n[0].q, h*n[1].q)
+	return u, p
+}
+
+// cubic is Hermite's interpolation from values y and slopes m per unit.
+func cubic(s, y0, y1, m0, m1 float64) float64 {
+	d := y1 - y0
+	return y0 + s*(m0+s*(3*d-2*m0-m1+s*(m0+m1-2*d)))
+}
+
+// cubicSlope is the derivative of cubic.
+func cubicSlope(s, y0, y1, m0, m1 float64) float64 {
+	d := y1 - y0
+	return m0 + s*(2*(3*d-2*m0-m1)+3*s*(m0+m1-2*d))
+}
