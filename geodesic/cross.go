@@ -24,7 +24,8 @@ type roundTracer struct {
 	cosS, sinS float64
 	target     float64 // swept angle of the next crossing of the disk plane
 	order      int     // its image order
-	closest    float64 // smallest radius at a turning point so far
+	tracing    bool    // a Story is wanted, not crossings
+	closest    float64 // when tracing, the smallest radius at a turning point so far
 	reach      float64 // the share of the trial step before it dips through the edge
 	want       Want
 	out        *Crossings
@@ -167,7 +168,8 @@ func (t *roundTracer) outside(uStop float64) ending {
 		}
 		t.ride()
 		t.reach = 1
-		if o.w0 > 0 && o.w <= 0 { // a turning point; it may dip through the edge and out again
+		if o.w0 > 0 && o.w <= 0 && (t.tracing || o.peak() >= edge) {
+			// a turning point; it may dip through the edge and out again
 			theta := o.locate(1, func(theta float64) float64 { return o.wAt(theta) })
 			u := o.uAt(theta)
 			if u >= edge {
@@ -202,6 +204,10 @@ func (t *roundTracer) outside(uStop float64) ending {
 	}
 	return lost
 }
+
+// peak is an upper limit of u within a trial step that turns: it cannot rise
+// beyond where the steeper of its ends points at its middle.
+func (o *orbit) peak() float64 { return max(o.u0, o.u) + 0.5*o.h*max(o.w0, -o.w) }
 
 // ride carries the riders over the trial step.
 func (t *roundTracer) ride() {

@@ -11,7 +11,6 @@ type orbit struct {
 	u, w   float64 // at the end of the last step; w = du/dψ
 	u0, w0 float64 // at its start
 	us     [7]float64
-	ws     [7]float64 // du/dψ at the stages
 	fs     [7]float64 // dw/dψ at the stages
 	time   float64    // delay + leg · r*(r), see rideTime
 	time0  float64
@@ -66,32 +65,72 @@ func bend(u, curve float64) float64 { return u * (u*(3-curve*u) - 1) }
 // tide is ∂u″/∂u = -1 + 6u - 6Q² u².
 func tide(u, curve float64) float64 { return u*(6-3*curve*u) - 1 }
 
+// The same coefficients folded once: because u′ = w, a stage of u is
+// u + c h w + h² Σ (A²)_ij f_j, so that only the f of earlier stages enter. The
+// sums b·A are b_j (1 - c_j).
+const (
+	g31 = a32 * a21
+	g41 = a42*a21 + a43*a31
+	g42 = a43 * a32
+	g51 = a52*a21 + a53*a31 + a54*a41
+	g52 = a53*a32 + a54*a42
+	g53 = a54 * a43
+	g61 = a62*a21 + a63*a31 + a64*a41 + a65*a51
+	g62 = a63*a32 + a64*a42 + a65*a52
+	g63 = a64*a43 + a65*a53
+	g64 = a65 * a54
+	g71 = a71
+	g73 = a73 * (1 - 3./10)
+	g74 = a74 * (1 - 4./5)
+	g75 = a75 * (1 - 8./9)
+	eg1 = e3*a31 + e4*a41 + e5*a51 + e6*a61 + e7*a71
+	eg2 = e3*a32 + e4*a42 + e5*a52 + e6*a62
+	eg3 = e4*a43 + e5*a53 + e6*a63 + e7*a73
+	eg4 = e5*a54 + e6*a64 + e7*a74
+	eg5 = e6*a65 + e7*a75
+	eg6 = e7 * a76
+)
+
 // try takes a step of length h from the end of the last one and returns the
 // embedded estimates of the local error of u and w. The orbit's stages and
 // end state are those of the trial; retry with another h or call accept.
 func (o *orbit) try(h float64) (errU, errW float64) {
 	u, w, curve := o.u0, o.w0, o.curve
 	o.h = h
-	w1, f1 := w, bend(u, curve)
-	u2, w2 := u+h*(a21*w1), w+h*(a21*f1)
+	hw, hh := h*w, h*h
+	f1 := bend(u, curve)
+	u2 := u + 1./5*hw
 	f2 := bend(u2, curve)
-	u3, w3 := u+h*(a31*w1+a32*w2), w+h*(a31*f1+a32*f2)
+	u3 := u + 3./10*hw + hh*(g31*f1)
 	f3 := bend(u3, curve)
-	u4, w4 := u+h*(a41*w1+a42*w2+a43*w3), w+h*(a41*f1+a42*f2+a43*f3)
+	u4 := u + 4./5*hw + hh*(g41*f1+g42*f2)
 	f4 := bend(u4, curve)
-	u5, w5 := u+h*(a51*w1+a52*w2+a53*w3+a54*w4), w+h*(a51*f1+a52*f2+a53*f3+a54*f4)
+	u5 := u + 8./9*hw + hh*(g51*f1+g52*f2+g53*f3)
 	f5 := bend(u5, curve)
-	u6, w6 := u+h*(a61*w1+a62*w2+a63*w3+a64*w4+a65*w5), w+h*(a61*f1+a62*f2+a63*f3+a64*f4+a65*f5)
+	u6 := u + hw + hh*(g61*f1+g62*f2+g63*f3+g64*f4)
 	f6 := bend(u6, curve)
-	u7, w7 := u+h*(a71*w1+a73*w3+a74*w4+a75*w5+a76*w6), w+h*(a71*f1+a73*f3+a74*f4+a75*f5+a76*f6)
+	u7 := u + hw + hh*(g71*f1+g73*f3+g74*f4+g75*f5)
 	f7 := bend(u7, curve)
 	o.us = [7]float64{u, u2, u3, u4, u5, u6, u7}
-	o.ws = [7]float64{w1, w2, w3, w4, w5, w6, w7}
 	o.fs = [7]float64{f1, f2, f3, f4, f5, f6, f7}
-	o.u, o.w = u7, w7
-	errU = h * (e1*w1 + e3*w3 + e4*w4 + e5*w5 + e6*w6 + e7*w7)
+	o.u, o.w = u7, w+h*(a71*f1+a73*f3+a74*f4+a75*f5+a76*f6)
+	errU = hh * (eg1*f1 + eg2*f2 + eg3*f3 + eg4*f4 + eg5*f5 + eg6*f6)
 	errW = h * (e1*f1 + e3*f3 + e4*f4 + e5*f5 + e6*f6 + e7*f7)
 	return errU, errW
+}
+
+// slopes returns w at the stages of the trial step.
+func (o *orbit) slopes() [7]float64 {
+	h, w, f := o.h, o.w0, &o.fs
+	return [7]float64{
+		w,
+		w + h*(a21*f[0]),
+		w + h*(a31*f[0]+a32*f[1]),
+		w + h*(a41*f[0]+a42*f[1]+a43*f[2]),
+		w + h*(a51*f[0]+a52*f[1]+a53*f[2]+a54*f[3]),
+		w + h*(a61*f[0]+a62*f[1]+a63*f[2]+a64*f[3]+a65*f[4]),
+		o.w,
+	}
 }
 
 // accept makes the end of the last trial the start of the next step.
@@ -118,7 +157,7 @@ func (o *orbit) rideTime(s *Round) {
 	}
 	bl := o.b * leg
 	k := &o.ts
-	for i, w := range o.ws {
+	for i, w := range o.slopes() {
 		k[i] = o.b / (1 + bl*w)
 	}
 	o.time = o.time0 + o.h*(a71*k[0]+a73*k[2]+a74*k[3]+a75*k[4]+a76*k[5])
@@ -160,7 +199,7 @@ func quartic(h float64, k *[7]float64) float64 {
 // uAt takes the quintic through u, w and u″ at both ends instead, one order
 // better than the pair's own dense output because u″ is known there.
 func (o *orbit) uAt(theta float64) float64 {
-	return quintic(theta, o.h, o.u0, o.u, o.ws[0], o.ws[6], o.fs[0], o.fs[6])
+	return quintic(theta, o.h, o.u0, o.u, o.w0, o.w, o.fs[0], o.fs[6])
 }
 
 func (o *orbit) wAt(theta float64) float64 {

@@ -45,7 +45,7 @@ func (c *clockRider) advance(o *orbit) {
 		c.clock = c.clock.as(leg, c.object, o.u0, o.p0)
 	}
 	var rate, rateV [7]float64
-	for i, w := range o.ws {
+	for i, w := range o.slopes() {
 		rate[i] = 1 / (c.inverse + leg*w)
 		rateV[i] = -(c.inverseV + leg*o.qs[i]) * rate[i] * rate[i]
 	}

@@ -66,7 +66,7 @@ func (s *Round) Trace(p Path) (Story, error) {
 	}
 	t.limit = math.Inf(1)
 	t.target = math.Inf(1)
-	t.want.Delay = true
+	t.want.Delay, t.tracing = true, true
 	closedFate, closedSwept := s.SweptToEnd(p)
 	story := Story{
 		Fate: closedFate, ClosedFormSwept: closedSwept,

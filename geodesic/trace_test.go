@@ -136,15 +136,16 @@ func TestConservationAndReversal(t *testing.T) {
 			invariant := o.u0*o.u0*(1-2*o.u0) + o.w0*o.w0
 			near(t, fmt.Sprintf("b² times the invariant, b = %g", b), invariant*b*b, 1, 100*tolerance*max(1, b*b/9))
 		}
-		end, steps := o.psi, o.psi
+		end := o.psi
 		o.w0 = -o.w0
 		o.psi = 0
 		c.start(b)
 		for range maxSteps {
-			if steps = end - o.psi; steps <= 0 {
+			left := end - o.psi
+			if left <= 0 {
 				break
 			}
-			h := min(c.h, steps)
+			h := min(c.h, left)
 			if !c.judge(h, first(o.try(h)), second(o.try(h))) {
 				continue
 			}

@@ -63,7 +63,7 @@ func (v *views) probe(ctx context.Context, at imaging.Spot) imaging.Found {
 	found.Alpha, found.Beta = view.Field.PixelCenter(at.Column, at.Row)
 	found.Readings, found.Err = view.Probe(ctx, [][2]float64{{found.Alpha, found.Beta}})
 	switch {
-	case view.Field.Parallel:
+	case view.Field.IsParallel():
 		found.Impact = math.Hypot(found.Alpha, found.Beta)
 	case len(found.Readings) > 0:
 		found.Impact = found.Readings[0].Impact

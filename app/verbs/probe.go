@@ -1,0 +1,210 @@
+package verbs
+
+import (
+	"bufio"
+	"errors"
+	"fmt"
+	"io"
+	"math"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"annulet/raytrace"
+)
+
+// probing is what the flags of probe say.
+type probing struct {
+	set   []string
+	at    []string
+	table string
+	json  bool
+}
+
+func newProbe(s streams) *cobra.Command {
+	var o probing
+	cmd := &cobra.Command{
+		Use:   "probe SCENE",
+		Short: "list what lines of sight meet",
+		Long: "Follows lines of sight, given by their screen coordinates, and prints one row\n" +
+			"a crossing with what shines, in the order of the path: alpha,beta,order,r,\n" +
+			"phi_deg,ell,g,mu,delay,intensity. Alpha (to the right) and beta (up) are in M on\n" +
+			"a parallel field; on a perspective one in degrees of the tangent plane, where a\n" +
+			"direction at angle a from the centre lies at (180/pi) tan a. r and delay are in\n" +
+			"M, ell = Lz/E in M. Every line of sight is traced for itself in float64, not read\n" +
+			"from an image.",
+		Example: "  " + programName() + " probe @first-light --at -8,0 --at 8,0\n" +
+			"  " + programName() + " probe scene.toml --table points.csv --json",
+		Args: takes(1, "one SCENE"),
+		RunE: func(cmd *cobra.Command, args []string) error { return probe(cmd, s, o, args[0]) },
+	}
+	f := cmd.Flags()
+	f.StringArrayVar(&o.at, "at", nil, "a line of sight, `ALPHA,BETA`; repeatable")
+	f.StringVar(&o.table, "table", "", "CSV `FILE` with the columns alpha,beta, - for standard input")
+	addSet(f, &o.set)
+	f.BoolVar(&o.json, "json", false, "print one JSON document on stdout")
+	return cmd
+}
+
+// parseAt reads ALPHA,BETA.
+func parseAt(text string) (at [2]float64, err error) {
+	alpha, beta, ok := strings.Cut(text, ",")
+	if !ok {
+		return at, refuse("--at %q: allowed: two numbers with a comma, as in -8,0.5", text)
+	}
+	for k, part := range []string{alpha, beta} {
+		if at[k], err = parseFinite(part); err != nil {
+			return at, refuse("--at %q: %w", text, err)
+		}
+	}
+	return at, nil
+}
+
+// readAt reads the columns alpha,beta of a table.
+func readAt(path string, stdin io.Reader) ([][2]float64, error) {
+	names := []string{"alpha", "beta"}
+	t, err := openTable(path, stdin, names, nil)
+	if err != nil {
+		return nil, err
+	}
+	defer t.close()
+	var points [][2]float64
+	for {
+		fields, line, err := t.next()
+		if errors.Is(err, io.EOF) {
+			return points, nil
+		}
+		if err != nil {
+			return nil, err
+		}
+		var at [2]float64
+		for k, name := range names {
+			if at[k], err = parseFinite(t.field(fields, name)); err != nil {
+				return nil, t.wrong(line, name, err)
+			}
+		}
+		points = append(points, at)
+	}
+}
+
+// probeRow is one crossing as it is printed.
+type probeRow struct {
+	Alpha     number `json:"alpha"`
+	Beta      number `json:"beta"`
+	Order     int    `json:"order"`
+	R         number `json:"r"`
+	PhiDeg    number `json:"phi_deg"`
+	Ell       number `json:"ell"`
+	G         number `json:"g"`
+	Mu        number `json:"mu"`
+	Delay     number `json:"delay"`
+	Intensity number `json:"intensity"`
+}
+
+const probeHeader = "alpha,beta,order,r,phi_deg,ell,g,mu,delay,intensity"
+
+func (r probeRow) csv() string {
+	return strings.Join([]string{
+		r.Alpha.csv(), r.Beta.csv(), fmt.Sprint(r.Order), r.R.csv(), r.PhiDeg.csv(),
+		r.Ell.csv(), r.G.csv(), r.Mu.csv(), r.Delay.csv(), r.Intensity.csv(),
+	}, ",")
+}
+
+// intensityUnit is that of every intensity until a scene says how bright
+// its emitter is.
+const intensityUnit = "emitted at r = 1 M"
+
+func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
+	given := cmd.Flags().Changed("table")
+	if given == (len(o.at) > 0) {
+		return refuse("probe needs lines of sight: either --at or --table")
+	}
+	var points [][2]float64
+	var err error
+	if given {
+		points, err = readAt(o.table, s.in)
+	}
+	for _, text := range o.at {
+		var at [2]float64
+		if at, err = parseAt(text); err != nil {
+			break
+		}
+		points = append(points, at)
+	}
+	if err != nil {
+		return err
+	}
+	document, err := loadScene(scenePath, o.set)
+	if err != nil {
+		return err
+	}
+	view, err := raytrace.NewView(document.Scene())
+	if err != nil {
+		return usage{err}
+	}
+
+	// The library wants radians of the tangent plane on a perspective field.
+	perUnit, unit := math.Pi/180, "deg"
+	if view.Field.IsParallel() {
+		perUnit, unit = 1, "M"
+	}
+	var rows []probeRow
+	err = inOrder(cmd.Context(), points, 0, func(some [][2]float64) ([]probeRow, error) {
+		inside := make([][2]float64, len(some))
+		for k, at := range some {
+			inside[k] = [2]float64{at[0] * perUnit, at[1] * perUnit}
+		}
+		readings, err := view.Probe(cmd.Context(), inside)
+		return probeRows(readings, some, inside), err
+	}, func(some []probeRow) error {
+		rows = append(rows, some...)
+		return nil
+	})
+	if err != nil {
+		return err
+	}
+	if len(rows) == 0 {
+		s.note("no line of sight meets anything that shines")
+	}
+	if o.json {
+		if rows == nil {
+			rows = []probeRow{}
+		}
+		return writeJSON(s.out, struct {
+			Units       map[string]string `json:"units"`
+			Rows        []probeRow        `json:"rows"`
+			NotIncluded []string          `json:"not_included"`
+		}{map[string]string{
+			"alpha": unit, "beta": unit, "r": "M", "phi_deg": "deg", "ell": "M",
+			"g": "1", "mu": "1", "delay": "M", "intensity": intensityUnit,
+		}, rows, notIncluded})
+	}
+	out := bufio.NewWriter(s.out)
+	fmt.Fprintln(out, probeHeader)
+	for _, r := range rows {
+		fmt.Fprintln(out, r.csv())
+	}
+	if err := out.Flush(); err != nil {
+		return err
+	}
+	s.note("%s", notIncludedLine)
+	return nil
+}
+
+// probeRows puts readings into the units of the output. The coordinates are
+// given back as they came, not converted there and back.
+func probeRows(readings []raytrace.Reading, points, inside [][2]float64) []probeRow {
+	rows := make([]probeRow, 0, len(readings))
+	k := 0
+	for _, r := range readings {
+		for k < len(inside)-1 && inside[k] != [2]float64{r.Alpha, r.Beta} {
+			k++
+		}
+		rows = append(rows, probeRow{
+			Alpha: number(points[k][0]), Beta: number(points[k][1]), Order: r.Order,
+			R: number(r.R), PhiDeg: number(r.Phi * 180 / math.Pi), Ell: number(r.Ell),
+			G: number(r.G), Mu: number(r.Mu), Delay: number(r.Delay), Intensity: number(r.Intensity),
+		})
+	}
+	return rows
+}

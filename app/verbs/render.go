@@ -1,0 +1,307 @@
+package verbs
+
+import (
+	"fmt"
+	"image"
+	"io"
+	"math"
+	"os"
+	"path/filepath"
+	"slices"
+	"strconv"
+	"strings"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	"annulet/app/tone"
+	"annulet/assets"
+	"annulet/raytrace"
+	"annulet/scenes"
+)
+
+// layerKind is one of the layers that a picture can show.
+type layerKind struct {
+	word    string
+	layer   raytrace.Layer
+	unit    string
+	perUnit float64    // of the plate's value in that unit
+	colours string     // map by default
+	curve   tone.Curve // by default
+	centre  float64    // of the tone on a linear curve; 0 for none
+}
+
+var layerKinds = []layerKind{
+	{"intensity", raytrace.Intensity, intensityUnit, 1, "ember", tone.SquareRoot, 0},
+	{"g", raytrace.Redshift, "1", 1, "shift", tone.Linear, 1},
+	{"r", raytrace.Radius, "M", 1, "ember", tone.Linear, 0},
+	{"phi", raytrace.Azimuth, "deg", math.Pi / 180, "ember", tone.Linear, 0},
+	{"delay", raytrace.Delay, "M", 1, "ember", tone.Linear, 0},
+	{"mu", raytrace.Mu, "1", 1, "ember", tone.Linear, 0},
+}
+
+func layerWords() string {
+	var words []string
+	for _, k := range layerKinds {
+		words = append(words, k.word)
+	}
+	return strings.Join(words, ", ")
+}
+
+// total is the order that means the sum over orders.
+const total = -1
+
+// parseOrder reads an image order, or the word total.
+func parseOrder(text string) (int, error) {
+	if text == "total" {
+		return total, nil
+	}
+	n, err := strconv.Atoi(text)
+	if err != nil || n < 0 {
+		return 0, fmt.Errorf("%q is no image order; allowed: 0, 1, 2, … or total", text)
+	}
+	return n, nil
+}
+
+// picture says how a plate becomes a picture.
+type picture struct {
+	kind    layerKind
+	order   int // or total
+	tone    tone.Tone
+	colours *assets.Map
+	deep    bool // 16 bits a component
+}
+
+// rendering is what the flags of render say.
+type rendering struct {
+	set, out                    []string
+	depth, workers              int
+	curve, limits, layer, order string
+	colours                     string
+	json                        bool
+}
+
+func newRender(s streams) *cobra.Command {
+	var o rendering
+	cmd := &cobra.Command{
+		Use:   "render SCENE -o FILE [-o FILE ...]",
+		Short: "trace a scene and write its image",
+		Long: "Traces every pixel of the scene's field and writes PNG files that carry the\n" +
+			"scene. A file appears whole or not at all. Layers other than intensity belong to\n" +
+			"one image order: g, r (M), phi (deg), delay (M), mu; --limits are in these units.",
+		Example: "  " + programName() + " render @first-light -o first-light.png\n" +
+			"  " + programName() + " render scene.toml --set observer.inclination=75deg --layer g --order 0 -o g.png",
+		Args: takes(1, "one SCENE"),
+		RunE: func(cmd *cobra.Command, args []string) error { return render(cmd, s, o, args[0]) },
+	}
+	f := cmd.Flags()
+	f.StringArrayVarP(&o.out, "output", "o", nil, "PNG `FILE` to write; repeatable")
+	addSet(f, &o.set)
+	f.StringVar(&o.layer, "layer", "intensity", "what to show: "+layerWords())
+	f.StringVar(&o.order, "order", "", "image `ORDER` 0, 1, …; intensity also total (its default; else 0)")
+	f.StringVar(&o.curve, "curve", "", "value to colour: "+strings.Join(tone.CurveWords(), ", ")+" (default by layer)")
+	f.StringVar(&o.limits, "limits", "", "ends of the colour map, `LOW:HIGH` or P1%:P2% (default 0%:99.9%)")
+	f.StringVar(&o.colours, "map", "", "colour map: "+strings.Join(assets.Names(), ", ")+" (default by layer)")
+	f.IntVar(&o.depth, "depth", 8, "bits a component, 8 or 16")
+	f.IntVar(&o.workers, "workers", 0, "tiles traced at a time; 0 means one a processor")
+	f.BoolVar(&o.json, "json", false, "print a summary as one JSON document on stdout")
+	return cmd
+}
+
+// choose turns the words of the flags into a picture.
+func (o rendering) choose() (p picture, err error) {
+	at := slices.IndexFunc(layerKinds, func(k layerKind) bool { return k.word == o.layer })
+	if at < 0 {
+		return p, refuse("--layer %q: allowed: %s", o.layer, layerWords())
+	}
+	p.kind = layerKinds[at]
+	intensity := p.kind.layer == raytrace.Intensity
+	switch {
+	case o.order != "":
+		if p.order, err = parseOrder(o.order); err != nil {
+			return p, refuse("--order: %w", err)
+		}
+		if p.order == total && !intensity {
+			return p, refuse("--order total: a layer of %s belongs to one order; allowed: 0, 1, 2, …", p.kind.word)
+		}
+	case intensity:
+		p.order = total
+	}
+	p.tone.Curve = p.kind.curve
+	if o.curve != "" {
+		if p.tone.Curve, err = tone.ParseCurve(o.curve); err != nil {
+			return p, refuse("--curve: %w", err)
+		}
+	}
+	if p.tone.Curve == tone.Linear && o.limits == "" {
+		p.tone.Centre = p.kind.centre
+	}
+	if o.limits != "" {
+		if err := p.tone.SetLimits(o.limits); err != nil {
+			return p, refuse("--limits: %w", err)
+		}
+	}
+	name := o.colours
+	if name == "" {
+		name = p.kind.colours
+	}
+	known := false
+	if p.colours, known = assets.Lookup(name); !known {
+		return p, refuse("--map %q: allowed: %s", name, strings.Join(assets.Names(), ", "))
+	}
+	if o.depth != 8 && o.depth != 16 {
+		return p, refuse("--depth %d: allowed: 8, 16", o.depth)
+	}
+	p.deep = o.depth == 16
+	return p, checkWorkers(o.workers)
+}
+
+// values picks the layer, in the unit of the picture.
+func (p picture) values(plate *raytrace.Plate) []float32 {
+	if p.order == total {
+		return plate.Total
+	}
+	values := plate.Layer(p.kind.layer, p.order)
+	if p.kind.perUnit == 1 {
+		return values
+	}
+	values = slices.Clone(values)
+	for k, v := range values {
+		values[k] = float32(float64(v) / p.kind.perUnit)
+	}
+	return values
+}
+
+// paint makes the picture of a layer.
+func (p picture) paint(values []float32, columns, rows int) (image.Image, error) {
+	rect := image.Rect(0, 0, columns, rows)
+	if p.deep {
+		img := image.NewRGBA64(rect)
+		return img, p.tone.Apply16(img, values, columns, rows, p.colours)
+	}
+	img := image.NewRGBA(rect)
+	return img, p.tone.Apply(img, values, columns, rows, p.colours)
+}
+
+// checkOutputs refuses files that this version cannot write, before any work
+// is done.
+func checkOutputs(paths []string, scenePath string) error {
+	if len(paths) == 0 {
+		return refuse("render needs an output: -o FILE.png")
+	}
+	var seen []string
+	for _, path := range paths {
+		if path == "" {
+			return refuse("-o: the name of the file is empty")
+		}
+		if extension := filepath.Ext(path); !strings.EqualFold(extension, ".png") {
+			return refuse("-o %s: extension %q is not in this version; allowed: .png", path, extension)
+		}
+		clean := filepath.Clean(path)
+		if slices.Contains(seen, clean) {
+			return refuse("-o %s comes twice", path)
+		}
+		seen = append(seen, clean)
+		if same(path, scenePath) {
+			return refuse("-o %s would overwrite the scene", path)
+		}
+		if err := checkWritable(path); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// same says whether two names mean one existing file.
+func same(a, b string) bool {
+	infoA, errA := os.Stat(a)
+	infoB, errB := os.Stat(b)
+	return errA == nil && errB == nil && os.SameFile(infoA, infoB)
+}
+
+// renderReport is the JSON of a render.
+type renderReport struct {
+	Units       map[string]string `json:"units"`
+	Files       []string          `json:"files"`
+	Pixels      [2]int            `json:"pixels"` // columns, rows
+	Paths       int               `json:"paths"`
+	WorstBound  number            `json:"worst_bound"`
+	Layer       string            `json:"layer"`
+	Order       *int              `json:"order"` // null for the total
+	Curve       string            `json:"curve"`
+	Map         string            `json:"map"`
+	Limits      [2]number         `json:"limits"`
+	NotIncluded []string          `json:"not_included"`
+}
+
+func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error {
+	p, err := o.choose()
+	if err != nil {
+		return err
+	}
+	document, err := loadScene(scenePath, o.set)
+	if err != nil {
+		return err
+	}
+	scene := document.Scene()
+	if p.order > scene.Trace.MaxOrder {
+		return refuse("--order %d: the scene follows orders up to %d (trace.max_order)", p.order, scene.Trace.MaxOrder)
+	}
+	if err := checkOutputs(o.out, scenePath); err != nil {
+		return err
+	}
+	begun := time.Now()
+	plate, err := tracePlate(cmd, s, scene, o.workers)
+	if err != nil {
+		return err
+	}
+	values := p.values(plate)
+	low, high := p.tone.Limits(values)
+	p.tone.Centre = 0
+	p.tone.Low, p.tone.High = low, high
+	img, err := p.paint(values, plate.Columns, plate.Rows)
+	if err != nil {
+		return err
+	}
+	for _, path := range o.out {
+		err := writeFile(cmd.Context(), path, func(w io.Writer) error { return encodePNG(w, img, document) })
+		if err != nil {
+			return err
+		}
+	}
+
+	s.note("%d x %d pixels, %d paths, worst bound on r %.1e relative, %.2f s",
+		plate.Columns, plate.Rows, plate.Paths, plate.WorstBound, time.Since(begun).Seconds())
+	s.note("%s", notIncludedLine)
+	if !o.json {
+		_, err := fmt.Fprintln(s.out, strings.Join(o.out, "\n"))
+		return err
+	}
+	report := renderReport{
+		Units:  map[string]string{"pixels": "count", "paths": "count", "worst_bound": "relative, on r", "limits": p.kind.unit},
+		Files:  o.out,
+		Pixels: [2]int{plate.Columns, plate.Rows}, Paths: plate.Paths, WorstBound: number(plate.WorstBound),
+		Layer: p.kind.word, Curve: p.tone.Curve.String(), Map: p.colours.Name(),
+		Limits:      [2]number{number(low), number(high)},
+		NotIncluded: notIncluded,
+	}
+	if p.order != total {
+		report.Order = &p.order
+	}
+	return writeJSON(s.out, report)
+}
+
+// tracePlate renders the scene and shows progress.
+func tracePlate(cmd *cobra.Command, s streams, scene scenes.Scene, workers int) (*raytrace.Plate, error) {
+	for _, n := range scene.Notes() {
+		s.note("%s", n)
+	}
+	view, err := raytrace.NewView(scene)
+	if err != nil {
+		return nil, usage{err}
+	}
+	shown := newProgress(s.err)
+	shown.begin(view.Field.Columns, view.Field.Rows)
+	defer shown.end()
+	return view.Render(cmd.Context(), raytrace.Options{Workers: workers, Report: shown.report})
+}
