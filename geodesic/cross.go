@@ -14,6 +14,7 @@ type roundTracer struct {
 	uObs       float64
 	within     bool // the observer is inside the edge, in an Interior
 	sinI, cosI float64
+	tanI       float64 // +Inf edge-on
 	azimuth    float64 // of the observer, radians
 	origin     float64 // delay at the observer: -r*(r_obs), or r*(r_obs) for a falling one
 	limit      float64 // swept angle up to which paths are followed
@@ -54,6 +55,10 @@ func (s *Round) newTracer(o Observer, plan Plan) (*roundTracer, error) {
 	t.observer.Radius = max(o.Radius, centreRadius)
 	t.uObs = 1 / t.observer.Radius
 	t.sinI, t.cosI = sinCosDeg(o.InclinationDeg)
+	t.tanI = math.Inf(1)
+	if t.cosI != 0 {
+		t.tanI = t.sinI / t.cosI
+	}
 	t.orbit.curve = 2 * s.charge2
 	return t, nil
 }
@@ -85,7 +90,7 @@ func (t *roundTracer) Cross(rays *Rays, want Want, out *Crossings) {
 func (t *roundTracer) crossOne(b, kr float64) {
 	t.target, t.order = math.Inf(1), 0
 	if t.plan.Plane {
-		t.target = FirstPlaneAngle(t.sinI, t.cosI, t.sinS)
+		t.target = t.firstAngle()
 	}
 	switch end := t.follow(b, kr, 0); {
 	case end == atStop && t.plan.Sky:
@@ -95,6 +100,14 @@ func (t *roundTracer) crossOne(b, kr float64) {
 		t.finish(t.spacetime.edge)
 		t.recordEnd(Star)
 	}
+}
+
+// firstAngle is FirstPlaneAngle of the ray in hand.
+func (t *roundTracer) firstAngle() float64 {
+	if t.cosI == 0 {
+		return math.Pi
+	}
+	return math.Pi/2 + math.Atan(t.tanI*t.sinS)
 }
 
 // ending says where a leg in the exterior ended.

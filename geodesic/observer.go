@@ -150,19 +150,6 @@ func (s *Round) angular(o Observer, d Direction) (l sightline) {
 	return l
 }
 
-// parallel resolves components of L/E on a static observer's field.
-func (s *Round) parallel(o Observer, d Direction) (l sightline) {
-	l = sightline{b: math.Hypot(d.Alpha, d.Beta), cosS: 1, gObs: 1 / s.Lapse(o.Radius), seen: true}
-	if l.b > 0 {
-		l.cosS, l.sinS = d.Alpha/l.b, d.Beta/l.b
-	}
-	u := 1 / o.Radius
-	square := 1 - l.b*l.b*u*u*s.lapse2(u)
-	l.seen = square >= 0
-	l.kr = math.Sqrt(max(square, 0))
-	return l
-}
-
 // Aim fills rays from an observer's lines of sight.
 //
 // On a parallel field α and β are the components of L/E and only light that
@@ -181,22 +168,49 @@ func (s *Round) Aim(o Observer, parallel bool, dirs []Direction, rays *Rays) err
 	if !parallel && math.IsInf(o.Radius, 1) {
 		return ErrAngularFar
 	}
-	sinI, cosI := sinCosDeg(o.InclinationDeg)
 	rays.Resize(len(dirs))
+	if parallel {
+		s.aimParallel(o, dirs, rays)
+		return nil
+	}
+	sinI, cosI := sinCosDeg(o.InclinationDeg)
 	for k, d := range dirs {
-		var l sightline
-		if parallel {
-			l = s.parallel(o, d)
-		} else {
-			l = s.angular(o, d)
-		}
+		l := s.angular(o, d)
 		alpha, beta := l.b*l.cosS, l.b*l.sinS
 		rays.Lambda[k] = -alpha * sinI
 		rays.Eta[k] = beta*beta + alpha*alpha*cosI*cosI
+		rays.B[k] = l.b
 		rays.CosS[k], rays.SinS[k] = l.cosS, l.sinS
 		rays.KR[k] = l.kr
 		rays.GObs[k] = l.gObs
 		rays.Seen[k] = l.seen
 	}
 	return nil
+}
+
+// aimParallel is Aim for components of L/E on a static observer's field.
+func (s *Round) aimParallel(o Observer, dirs []Direction, rays *Rays) {
+	sinI, cosI := sinCosDeg(o.InclinationDeg)
+	cos2 := cosI * cosI
+	u := 1 / o.Radius
+	reach2 := u * u * s.lapse2(u) // 1 over the square of the largest b
+	gObs := 1 / s.Lapse(o.Radius)
+	n := len(dirs)
+	lambda, eta, impact := rays.Lambda[:n], rays.Eta[:n], rays.B[:n]
+	cosS, sinS, kr := rays.CosS[:n], rays.SinS[:n], rays.KR[:n]
+	for k, d := range dirs {
+		alpha2, beta2 := d.Alpha*d.Alpha, d.Beta*d.Beta
+		b := math.Sqrt(alpha2 + beta2)
+		cosS[k], sinS[k] = 1, 0
+		if b > 0 {
+			cosS[k], sinS[k] = d.Alpha/b, d.Beta/b
+		}
+		lambda[k] = -d.Alpha * sinI
+		eta[k] = beta2 + alpha2*cos2
+		impact[k] = b
+		square := 1 - (alpha2+beta2)*reach2
+		kr[k] = math.Sqrt(max(square, 0))
+		rays.Seen[k] = square >= 0
+		rays.GObs[k] = gObs
+	}
 }

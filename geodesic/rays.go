@@ -1,7 +1,5 @@
 package geodesic
 
-import "math"
-
 // Surface says what a path met.
 type Surface uint8
 
@@ -16,7 +14,8 @@ const (
 // slice has one entry a ray.
 type Rays struct {
 	Lambda     []float64 // Lz/E, M
-	Eta        []float64 // Q/E², M²; b² = Lambda² + Eta
+	Eta        []float64 // Q/E², M²
+	B          []float64 // impact parameter √(Lambda² + Eta), M
 	CosS, SinS []float64 // screen angle, counter-clockwise from +α; on the axis λ and η do not hold it
 	KR         []float64 // k^r/E at the observer: > 0 for light on its way out, whose path is traced inward first
 	GObs       []float64 // ν_obs/E, the observer's share of the redshift factor
@@ -30,6 +29,7 @@ func (r *Rays) Len() int { return len(r.Lambda) }
 func (r *Rays) Resize(n int) {
 	r.Lambda = resized(r.Lambda, n)
 	r.Eta = resized(r.Eta, n)
+	r.B = resized(r.B, n)
 	r.CosS = resized(r.CosS, n)
 	r.SinS = resized(r.SinS, n)
 	r.KR = resized(r.KR, n)
@@ -38,9 +38,7 @@ func (r *Rays) Resize(n int) {
 }
 
 // Impact returns the impact parameter b of ray k, M.
-func (r *Rays) Impact(k int) float64 {
-	return math.Sqrt(r.Lambda[k]*r.Lambda[k] + r.Eta[k])
-}
+func (r *Rays) Impact(k int) float64 { return r.B[k] }
 
 // Crossings is where a block of rays meets surfaces. Ray k owns the entries
 // Start[k] to Start[k+1] of the other slices, in the order of its path.

@@ -32,19 +32,22 @@ type OrbitTable struct {
 	base      int     // index of grading in that numbering
 	low, high int     // rows are numbered from low to high, 0 the critical one
 	step      float64 // of ψ
-	knots     int     // per row
-	bins      int     // per row, of the bounds
+	perStep   float64
+	knots     int // per row
+	bins      int // per row, of the bounds
 	timed     bool
 
-	v     []float64
-	nodes []node  // row by row, knots each
-	times []clock // likewise; empty unless timed
-	last  []int32 // knots of a row that hold, row by row
-	ends  []rowEnd
-	off   []float64 // bound on u, row by row, one per binsPerPi-th part of π
-	endOf []float64 // bound on the angle at which the orbits of a cell end, radians
-	sound []bool    // the cell from this row to the next may be interpolated
-	built Build
+	v      []float64
+	nodes  []node  // row by row, knots each
+	times  []clock // likewise; empty unless timed
+	last   []int32 // knots of a row that hold, row by row
+	ends   []rowEnd
+	until  []float64 // largest end angle of a cell
+	perRow []float64 // 1 over the distance to the next row
+	off    []float64 // bound on u, row by row, one per binsPerPi-th part of π
+	endOf  []float64 // bound on the angle at which the orbits of a cell end, radians
+	sound  []bool    // the cell from this row to the next may be interpolated
+	built  Build
 }
 
 // node is the state of one orbit at one knot.
@@ -183,6 +186,7 @@ func (s *Round) layOut(share Share, uObs float64) *OrbitTable {
 	var perPi int
 	tb.bits, perPi = gridFor(share.Tolerance)
 	tb.step = math.Pi / float64(perPi)
+	tb.perStep = 1 / tb.step
 	tb.knots = tb.orders*perPi + 2
 
 	bc := s.CriticalImpact()
@@ -215,6 +219,8 @@ func (s *Round) layOut(share Share, uObs float64) *OrbitTable {
 	}
 	tb.last = make([]int32, rows)
 	tb.ends = make([]rowEnd, rows)
+	tb.until = make([]float64, rows)
+	tb.perRow = make([]float64, rows)
 	tb.bins = tb.orders*binsPerPi + 1
 	tb.off = make([]float64, rows*tb.bins)
 	tb.endOf = make([]float64, rows)
@@ -347,6 +353,8 @@ func (tb *OrbitTable) conclude(checked []tableCheck) {
 		for _, c := range near {
 			tb.endOf[row] = max(tb.endOf[row], checkMargin*c.end+tb.tolerance)
 		}
+		tb.until[row] = max(tb.ends[row].psi, tb.ends[row+1].psi)
+		tb.perRow[row] = 1 / (tb.v[row+1] - tb.v[row])
 		tb.sound[row] = tb.bothPastEnd(row)
 	}
 	tb.built.Orbits = len(tb.v)
@@ -383,6 +391,7 @@ func (tb *OrbitTable) check(t *roundTracer, row int) tableCheck {
 		return c
 	}
 	limit := float64(tb.orders) * math.Pi
+	across := hermiteAcross(checkAt, tb.v[row+1]-tb.v[row])
 	part := tb.step / 3 // a third of a step: neither knot nor middle is left out, nor what lies between
 	for o.psi < limit && t.pace.tried < maxSteps {
 		h := t.pace.h
@@ -398,7 +407,7 @@ func (tb *OrbitTable) check(t *roundTracer, row int) tableCheck {
 				continue
 			}
 			bin := int(psi * (binsPerPi / math.Pi))
-			c.off[bin] = max(c.off[bin], math.Abs(u-tb.interpolate(&cell, checkAt)))
+			c.off[bin] = max(c.off[bin], math.Abs(u-tb.interpolate(&cell, &across)))
 		}
 		if end := tb.lookForEnd(o); end.kind != pastOrders {
 			from, to := tb.ends[row], tb.ends[row+1]
@@ -428,7 +437,7 @@ type cell struct {
 
 // cell finds the knots around psi; held is false past the end of either row.
 func (tb *OrbitTable) cell(row int, psi float64) (c cell, held bool) {
-	at := psi / tb.step
+	at := psi * tb.perStep
 	k := int(at)
 	if k+1 >= int(min(tb.last[row], tb.last[row+1])) {
 		return cell{}, false
@@ -441,12 +450,40 @@ func (tb *OrbitTable) cell(row int, psi float64) (c cell, held bool) {
 	}, true
 }
 
-// interpolate returns u in a cell at share s of the way to the next row.
-func (tb *OrbitTable) interpolate(c *cell, s float64) float64 {
-	curve := 2 * tb.object.charge2
-	ua, pa := along(c.a, c.theta, tb.step, curve)
-	ub, pb := along(c.b, c.theta, tb.step, curve)
-	return cubic(s, ua, ub, pa*c.dv, pb*c.dv)
+// weights are Hermite's cubic weights across a cell, for the difference of
+// two values and their slopes.
+type weights struct{ step, from, to float64 }
+
+// hermiteAcross returns the weights at share s of the way to the next row, dv
+// away.
+func hermiteAcross(s, dv float64) weights {
+	rest := 1 - s
+	return weights{step: s * s * (3 - 2*s), from: dv * s * rest * rest, to: -dv * s * s * rest}
+}
+
+// interpolate returns u in a cell: along and cubic, with the weights in θ
+// worked out once for both rows.
+func (tb *OrbitTable) interpolate(c *cell, across *weights) float64 {
+	curve, h := 2*tb.object.charge2, tb.step
+	x := c.theta
+	x2 := x * x
+	x3 := x2 * x
+	y := 1 - x
+	y2 := y * y
+	// quintic: u and, at both ends, w and u″
+	k0 := x3 * (10 + x*(6*x-15))
+	h1, k1 := h*x*y*y2*(1+3*x), -h*x3*y*(1+3*y)
+	h2, k2 := 0.5*h*h*x2*y*y2, 0.5*h*h*x3*y2
+	// cubic: p and q
+	c0 := x2 * (3 - 2*x)
+	c1, d1 := h*x*y2, -h*x2*y
+	a0, a1 := &c.a[0], &c.a[1]
+	b0, b1 := &c.b[0], &c.b[1]
+	ua := a0.u + k0*(a1.u-a0.u) + (h1*a0.w + k1*a1.w) + (h2*bend(a0.u, curve) + k2*bend(a1.u, curve))
+	ub := b0.u + k0*(b1.u-b0.u) + (h1*b0.w + k1*b1.w) + (h2*bend(b0.u, curve) + k2*bend(b1.u, curve))
+	pa := a0.p + c0*(a1.p-a0.p) + (c1*a0.q + d1*a1.q)
+	pb := b0.p + c0*(b1.p-b0.p) + (c1*b0.q + d1*b1.q)
+	return ua + across.step*(ub-ua) + (across.from*pa + across.to*pb)
 }
 
 // along interpolates u and p within one row, u by the quintic, p by the

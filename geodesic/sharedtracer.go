@@ -103,17 +103,17 @@ func (t *SharedTracer) look(b, kr float64) bool {
 	if !tb.sound[i] || t.want.Delay && (!tb.timed || tb.uObs > tb.object.edge && b > widestWithin) {
 		return false
 	}
-	c := cell{dv: tb.v[i+1] - tb.v[i]}
-	share := (v - tb.v[i]) / c.dv
+	share := (v - tb.v[i]) * tb.perRow[i]
 	if t.plan.Plane {
-		target := FirstPlaneAngle(t.sinI, t.cosI, t.sinS)
-		end := max(tb.ends[i].psi, tb.ends[i+1].psi)
-		for n := 0; n <= t.plan.MaxOrder && target <= end; n++ {
-			var held bool
-			if c, held = tb.cell(i, target); !held {
+		target := t.firstAngle()
+		across := hermiteAcross(share, tb.v[i+1]-tb.v[i])
+		off := tb.off[i*tb.bins : (i+1)*tb.bins]
+		for n := 0; n <= t.plan.MaxOrder && target <= tb.until[i]; n++ {
+			c, held := tb.cell(i, target)
+			if !held {
 				break // past the end of the path
 			}
-			u := tb.interpolate(&c, share)
+			u := tb.interpolate(&c, &across)
 			if u >= tb.object.edge && tb.uObs > tb.object.edge && c.a[0].w < 0 {
 				target += math.Pi // still within the horizon, on the way out
 				continue
@@ -121,11 +121,12 @@ func (t *SharedTracer) look(b, kr float64) bool {
 			if !(u > 0 && u < tb.object.edge) {
 				break
 			}
-			bound := tb.off[i*tb.bins+int(target*(binsPerPi/math.Pi))] / u
+			r := 1 / u
+			bound := off[int(target*(binsPerPi/math.Pi))] * r
 			if bound > t.target && u > t.least {
 				return false
 			}
-			t.recordShared(&c, share, b, v, u, target, n, bound)
+			t.recordShared(&c, share, b, v, u, r, target, n, bound)
 			target += math.Pi
 		}
 	}
@@ -141,13 +142,13 @@ func (t *SharedTracer) missesAll(b float64) bool {
 	// ψ to the horizon grows with b: below shareFrom it is less than that of
 	// the first row inside, in proportion
 	end := t.table.ends[len(t.table.ends)-1]
-	return end.kind == atEdge && FirstPlaneAngle(t.sinI, t.cosI, t.sinS) > 1.1*end.psi*b/shareFrom+1e-9
+	return end.kind == atEdge && t.firstAngle() > 1.1*end.psi*b/shareFrom+1e-9
 }
 
 // recordShared appends a crossing of the disk plane.
-func (t *SharedTracer) recordShared(c *cell, share, b, v, u, psi float64, order int, bound float64) {
+func (t *SharedTracer) recordShared(c *cell, share, b, v, u, r, psi float64, order int, bound float64) {
 	tb, out := t.table, t.out
-	t.place(Plane, order, psi, 1/u)
+	t.place(Plane, order, psi, r)
 	out.Bound = append(out.Bound, bound)
 	if !t.want.NoKR || t.want.Slope {
 		w, p := tb.turn(c, share)
