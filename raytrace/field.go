@@ -7,58 +7,131 @@ import (
 	"annulet/geodesic"
 )
 
-// Field is the part of the sky that is imaged, in square pixels.
-//
-// On a parallel field the screen coordinates α, β are in M. A perspective
-// field is the gnomonic projection on the plane that touches the unit sphere
-// in the direction of the centre: α, β are coordinates in that plane, in
-// radians there (a direction at angle a from the centre lies at tan a).
+// Projection says what the screen coordinates of a field are.
+type Projection uint8
+
+// The projections.
+const (
+	// Parallel: α, β are the components of L/E, in M.
+	Parallel Projection = iota
+	// Perspective is the gnomonic projection on the plane that touches the
+	// unit sphere in the direction of the centre: α, β are coordinates in
+	// that plane, in radians there (a direction at angle a from the centre
+	// lies at tan a).
+	Perspective
+	// AllSky is equirectangular and holds every direction: α is the
+	// longitude to the right and β the latitude up, in radians, with the
+	// centre ahead. It covers 2π by π whatever Width and Center say, and its
+	// pixels are square if there are twice as many columns as rows.
+	AllSky
+)
+
+// Field is the part of the sky that is imaged.
 type Field struct {
-	Parallel      bool       // else perspective
+	Projection    Projection
 	Width         float64    // of the whole field on the screen: M, or radians
 	Center        [2]float64 // α, β of its middle
 	Columns, Rows int
 }
 
-// Pitch returns the side of a pixel in screen coordinates.
-func (f Field) Pitch() float64 { return f.Width / float64(f.Columns) }
+// IsParallel reports whether screen coordinates are lengths, in M; else they
+// are angles, in radians.
+func (f Field) IsParallel() bool { return f.Projection == Parallel }
+
+// Pitch returns the width of a pixel in screen coordinates; pixels are
+// square but for an all-sky field with another number of rows than half its
+// columns.
+func (f Field) Pitch() float64 {
+	across, _ := f.pitches()
+	return across
+}
+
+// pitches returns the width and height of a pixel in screen coordinates.
+func (f Field) pitches() (across, up float64) {
+	if f.Projection == AllSky {
+		return 2 * math.Pi / float64(f.Columns), math.Pi / float64(f.Rows)
+	}
+	pitch := f.Width / float64(f.Columns)
+	return pitch, pitch
+}
 
 // PixelCenter returns the screen coordinates of the centre of a pixel; row 0
 // is the bottom row.
 func (f Field) PixelCenter(column, row int) (alpha, beta float64) {
-	pitch := f.Pitch()
-	alpha = f.Center[0] + (float64(column)+0.5-float64(f.Columns)/2)*pitch
-	beta = f.Center[1] + (float64(row)+0.5-float64(f.Rows)/2)*pitch
-	return alpha, beta
+	across, up := f.pitches()
+	alpha = (float64(column) + 0.5 - float64(f.Columns)/2) * across
+	beta = (float64(row) + 0.5 - float64(f.Rows)/2) * up
+	if f.Projection == AllSky {
+		return alpha, beta
+	}
+	return f.Center[0] + alpha, f.Center[1] + beta
+}
+
+// SolidAngle returns the exact solid angle of a pixel, sr; on a parallel
+// field its area, M².
+func (f Field) SolidAngle(column, row int) float64 {
+	across, up := f.pitches()
+	x, y := f.PixelCenter(column, row)
+	switch f.Projection {
+	case Parallel:
+		return across * up
+	case AllSky: // Δλ (sin β₂ - sin β₁)
+		return across * 2 * math.Cos(y) * math.Sin(up/2)
+	}
+	left, right, bottom, top := x-across/2, x+across/2, y-up/2, y+up/2
+	return tangentTriangle(across*up, left, bottom, right, bottom, right, top) +
+		tangentTriangle(across*up, left, bottom, right, top, left, top)
+}
+
+// tangentTriangle is the solid angle of a triangle in the plane that touches
+// the unit sphere, triple being twice its area; without cancellation for
+// small ones: Van Oosterom & Strackee, IEEE Trans. Biomed. Eng. 30, 125
+// (1983), from memory.
+func tangentTriangle(triple, ax, ay, bx, by, cx, cy float64) float64 {
+	a := math.Sqrt(1 + ax*ax + ay*ay)
+	b := math.Sqrt(1 + bx*bx + by*by)
+	c := math.Sqrt(1 + cx*cx + cy*cy)
+	dot := func(px, py, qx, qy float64) float64 { return 1 + px*qx + py*qy }
+	return 2 * math.Atan2(triple, a*b*c+dot(ax, ay, bx, by)*c+dot(ax, ay, cx, cy)*b+dot(bx, by, cx, cy)*a)
 }
 
 // direction turns screen coordinates into a line of sight.
 func (f Field) direction(alpha, beta float64) geodesic.Direction {
-	if f.Parallel {
+	switch f.Projection {
+	case Parallel:
 		return geodesic.Direction{Alpha: alpha, Beta: beta}
+	case AllSky:
+		sinA, cosA := math.Sincos(alpha)
+		sinB, cosB := math.Sincos(beta)
+		return geodesic.Direction{Alpha: sinA * cosB, Beta: sinB, Ahead: cosA * cosB}
 	}
 	ahead := 1 / math.Sqrt(1+alpha*alpha+beta*beta)
 	return geodesic.Direction{Alpha: alpha * ahead, Beta: beta * ahead, Ahead: ahead}
 }
 
-// aimTile appends the lines of sight of a tile's pixel centres, row by row.
-func (f Field) aimTile(tile image.Rectangle, dirs []geodesic.Direction) []geodesic.Direction {
+// tileCenters appends the screen coordinates of a tile's pixel centres, row
+// by row.
+func (f Field) tileCenters(tile image.Rectangle, at [][2]float64) [][2]float64 {
 	for row := tile.Min.Y; row < tile.Max.Y; row++ {
 		for column := tile.Min.X; column < tile.Max.X; column++ {
-			dirs = append(dirs, f.direction(f.PixelCenter(column, row)))
+			alpha, beta := f.PixelCenter(column, row)
+			at = append(at, [2]float64{alpha, beta})
 		}
 	}
-	return dirs
+	return at
 }
 
 // coarsened is the same field in pixels k times as wide, anchored at the
-// bottom left corner; a last column or row may reach over the edge.
+// bottom left corner; a last column or row may reach over the edge. An
+// all-sky field stays the whole sky, in fewer pixels.
 func (f Field) coarsened(k int) Field {
 	pitch := f.Pitch()
 	columns, rows := (f.Columns+k-1)/k, (f.Rows+k-1)/k
-	f.Center[0] += float64(columns*k-f.Columns) * pitch / 2
-	f.Center[1] += float64(rows*k-f.Rows) * pitch / 2
-	f.Width = float64(columns*k) * pitch
+	if f.Projection != AllSky {
+		f.Center[0] += float64(columns*k-f.Columns) * pitch / 2
+		f.Center[1] += float64(rows*k-f.Rows) * pitch / 2
+		f.Width = float64(columns*k) * pitch
+	}
 	f.Columns, f.Rows = columns, rows
 	return f
 }

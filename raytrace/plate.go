@@ -7,9 +7,9 @@ type Layer int
 
 // The layers of a plate, one of each per image order.
 const (
-	Intensity Layer = iota // as received, relative to that emitted at r = 1 M
+	Intensity Layer = iota // as received, relative to the emitter's unit, see package emit
 	Redshift               // g = ν_obs/ν_em
-	Radius                 // r, M
+	Radius                 // r, M; NaN on the sky, as are Delay and Mu
 	Azimuth                // φ, radians
 	Delay                  // t_obs - t_em - r*(r_obs), M
 	Mu                     // |cos| of the emission angle in the gas frame
@@ -22,7 +22,8 @@ type Plate struct {
 	Total                 []float32 // intensity summed over orders, Rows·Columns, row 0 at the bottom
 	layers                [][]float32
 	Paths                 int     // light paths traced
-	WorstBound            float64 // largest relative bound on r of any crossing shown
+	WorstBound            float64 // largest relative bound on r of any crossing of the disk plane shown
+	WorstAngle            float64 // largest bound, radians, on the swept angle of any crossing of star or sky shown
 }
 
 // newPlate returns a plate on which nothing shines yet.
@@ -44,7 +45,8 @@ func newPlate(columns, rows, orders int) *Plate {
 
 // Layer returns the values of one quantity for one image order, with
 // Rows·Columns entries, row 0 at the bottom. Where the order has no crossing
-// intensity is 0 and every other layer NaN.
+// intensity is 0 and every other layer NaN; where it has several, intensity
+// is their sum and the others are of the first on the path.
 func (p *Plate) Layer(l Layer, order int) []float32 {
 	return p.layers[order*int(layerCount)+int(l)]
 }

@@ -12,13 +12,16 @@ type Reading struct {
 	Alpha, Beta float64 // screen coordinates as given
 	Impact      float64 // b, M
 	Order       int
-	R           float64 // M
-	RBound      float64 // relative bound on R
+	Surface     geodesic.Surface
+	R           float64 // M; +Inf on the sky
+	CosTheta    float64 // cosine of the polar angle from N; 0 on the disk plane
+	RBound      float64 // relative bound on R; 0 on star and sky, where R is exact
+	AngleBound  float64 // bound on the swept angle, radians; 0 on the disk plane, where it is exact
 	Phi         float64 // radians
 	Ell         float64 // Lz/E, M
-	G, Mu       float64
-	Delay       float64 // M
-	Intensity   float64 // relative to that emitted at r = 1 M
+	G, Mu       float64 // Mu is NaN on the sky
+	Delay       float64 // M; NaN on the sky
+	Intensity   float64 // as the plate has it, for a pixel of the field around this line of sight
 }
 
 // probeBlock is how many lines of sight are traced between looks at the
@@ -39,11 +42,8 @@ func (v *View) Probe(ctx context.Context, at [][2]float64) ([]Reading, error) {
 			return nil, fmt.Errorf("raytrace: probing: %w", err)
 		}
 		block := at[from:min(from+probeBlock, len(at))]
-		b.dirs = b.dirs[:0]
-		for _, p := range block {
-			b.dirs = append(b.dirs, v.Field.direction(p[0], p[1]))
-		}
-		if err := b.trace(geodesic.Want{Delay: true}); err != nil {
+		b.screen = append(b.screen[:0], block...)
+		if err := b.trace(); err != nil {
 			return nil, err
 		}
 		for k, p := range block {
@@ -60,13 +60,20 @@ func (b *bench) read(k int, p [2]float64, readings []Reading) []Reading {
 		if !lit {
 			continue
 		}
-		readings = append(readings, Reading{
+		reading := Reading{
 			Alpha: p[0], Beta: p[1], Impact: b.rays.Impact(k),
-			Order: int(b.at.Order[j]),
-			R:     b.at.R[j], RBound: b.at.Bound[j], Phi: b.at.Phi[j],
+			Order:   int(b.at.Order[j]),
+			Surface: b.at.Surface[j],
+			R:       b.at.R[j], CosTheta: b.at.CosTheta[j], Phi: b.at.Phi[j],
 			Ell: b.rays.Lambda[k], G: s.g, Mu: s.mu,
 			Delay: b.at.Delay[j], Intensity: s.intensity,
-		})
+		}
+		if reading.Surface == geodesic.Plane {
+			reading.RBound = b.at.Bound[j]
+		} else {
+			reading.AngleBound = b.at.Bound[j]
+		}
+		readings = append(readings, reading)
 		if opaque {
 			break
 		}

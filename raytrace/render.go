@@ -86,28 +86,37 @@ type tally struct {
 	report func(Progress)
 }
 
-func (t *tally) add(tile image.Rectangle, worst float64) {
+func (t *tally) add(tile image.Rectangle, worst bounds) {
 	t.mu.Lock()
 	defer t.mu.Unlock()
 	t.done++
 	t.plate.Paths += tile.Dx() * tile.Dy()
-	t.plate.WorstBound = max(t.plate.WorstBound, worst)
+	t.plate.WorstBound = max(t.plate.WorstBound, worst.radius)
+	t.plate.WorstAngle = max(t.plate.WorstAngle, worst.angle)
 	if t.report != nil {
 		t.report(Progress{Tile: tile, TilesDone: t.done, Tiles: t.tiles, PathsDone: t.plate.Paths})
 	}
 }
 
-// fill traces one tile into the plate and returns the worst relative bound
-// on r of the crossings shown.
-func (b *bench) fill(tile image.Rectangle, plate *Plate) (worst float64, err error) {
-	b.dirs = b.view.Field.aimTile(tile, b.dirs[:0])
-	if err := b.trace(geodesic.Want{Delay: true}); err != nil {
-		return 0, err
+// bounds is the worst of the crossings shown: relative on r, and of swept
+// angles in radians.
+type bounds struct{ radius, angle float64 }
+
+func (b bounds) worse(c bounds) bounds {
+	return bounds{max(b.radius, c.radius), max(b.angle, c.angle)}
+}
+
+// fill traces one tile into the plate and returns the worst bounds of the
+// crossings shown.
+func (b *bench) fill(tile image.Rectangle, plate *Plate) (worst bounds, err error) {
+	b.screen = b.view.Field.tileCenters(tile, b.screen[:0])
+	if err := b.trace(); err != nil {
+		return worst, err
 	}
 	k := 0
 	for row := tile.Min.Y; row < tile.Max.Y; row++ {
 		for column := tile.Min.X; column < tile.Max.X; column++ {
-			worst = max(worst, b.expose(k, row*plate.Columns+column, plate))
+			worst = worst.worse(b.expose(k, row*plate.Columns+column, plate))
 			k++
 		}
 	}
@@ -115,23 +124,37 @@ func (b *bench) fill(tile image.Rectangle, plate *Plate) (worst float64, err err
 }
 
 // expose writes ray k to a pixel of the plate, order by order, up to the
-// first opaque emitter, and returns the worst bound on the way.
-func (b *bench) expose(k, pixel int, plate *Plate) (worst float64) {
-	var total float64
+// first opaque emitter, and returns the worst bounds on the way. Where an
+// order has several crossings its intensity is their sum and its other
+// layers show the first one.
+func (b *bench) expose(k, pixel int, plate *Plate) (worst bounds) {
+	var total, sum float64 // of all orders, of the one in hand
+	last := -1
 	for j := b.at.Start[k]; j < b.at.Start[k+1]; j++ {
 		s, lit, opaque := b.look(j)
 		if !lit {
 			continue
 		}
 		total += s.intensity
-		worst = max(worst, b.at.Bound[j])
-		layers := plate.layers[int(b.at.Order[j])*int(layerCount):]
-		layers[Intensity][pixel] = float32(s.intensity)
-		layers[Redshift][pixel] = float32(s.g)
-		layers[Radius][pixel] = float32(b.at.R[j])
-		layers[Azimuth][pixel] = float32(b.at.Phi[j])
-		layers[Delay][pixel] = float32(b.at.Delay[j])
-		layers[Mu][pixel] = float32(s.mu)
+		surface, order := b.at.Surface[j], int(b.at.Order[j])
+		if surface == geodesic.Plane {
+			worst.radius = max(worst.radius, b.at.Bound[j])
+		} else {
+			worst.angle = max(worst.angle, b.at.Bound[j])
+		}
+		layers := plate.layers[order*int(layerCount):]
+		if order != last {
+			last, sum = order, 0
+			layers[Redshift][pixel] = float32(s.g)
+			layers[Azimuth][pixel] = float32(b.at.Phi[j])
+			if surface != geodesic.Sky { // infinitely far, without a time of its own
+				layers[Radius][pixel] = float32(b.at.R[j])
+				layers[Delay][pixel] = float32(b.at.Delay[j])
+				layers[Mu][pixel] = float32(s.mu)
+			}
+		}
+		sum += s.intensity
+		layers[Intensity][pixel] = float32(sum)
 		if opaque {
 			break
 		}

@@ -19,46 +19,82 @@ type View struct {
 }
 
 // NewView prepares a scene. The scene must have passed the checks of
-// package scenes; what this version cannot trace is an error.
-func NewView(s scenes.Scene) (*View, error) {
+// package scenes; what this version cannot trace is an error. Paths of
+// images are taken from the working directory.
+func NewView(s scenes.Scene) (*View, error) { return NewViewIn(s, "") }
+
+// NewViewIn is NewView with the folder from which paths of images are taken:
+// that of the scene file.
+func NewViewIn(s scenes.Scene, folder string) (*View, error) {
 	object, err := newObject(s.Object)
 	if err != nil {
 		return nil, fmt.Errorf("raytrace: %w", err)
 	}
+	observer, err := newObserver(s.Observer)
+	if err != nil {
+		return nil, fmt.Errorf("raytrace: %w", err)
+	}
+	field, err := newField(s.Field)
+	if err != nil {
+		return nil, fmt.Errorf("raytrace: %w", err)
+	}
 	v := &View{
-		Spacetime: object,
-		Observer: geodesic.Observer{
-			Radius:         s.Observer.Radius,
-			InclinationDeg: s.Observer.Inclination,
-			AzimuthDeg:     s.Observer.Azimuth,
-		},
-		Field: Field{
-			Parallel: s.Field.Projection == "parallel",
-			Width:    s.Field.Width,
-			Center:   s.Field.Center,
-			Columns:  s.Field.Pixels[0],
-			Rows:     s.Field.Pixels[1],
-		},
-		Plan: geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder, Plane: true},
+		Spacetime: object, Observer: observer, Field: field,
+		Plan: geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
 	}
-	if !v.Field.Parallel {
-		const deg = math.Pi / 180
-		v.Field.Width = 2 * math.Tan(s.Field.Width*deg/2)
-		v.Field.Center = [2]float64{math.Tan(s.Field.Center[0] * deg), math.Tan(s.Field.Center[1] * deg)}
-	}
-	var disks []*emit.Disk
 	for i, e := range s.Emitters {
-		d, err := newDisk(e, object)
+		shining, err := newEmitter(e, s.Object, object, folder)
 		if err != nil {
 			return nil, fmt.Errorf("raytrace: emitter %d: %w", i+1, err)
 		}
-		disks = append(disks, d)
-		v.Emitters = append(v.Emitters, d)
+		switch shining.(type) {
+		case *emit.Disk:
+			v.Plan.Plane = true
+		case *emit.Sky:
+			v.Plan.Sky = true
+		}
+		v.Emitters = append(v.Emitters, shining)
 	}
-	if s.Field.AutoWidth {
-		v.Field.Width = autoWidth(v.Field, v.Observer, disks, v.Plan.MaxOrder)
+	if s.Field.AutoWidth && field.Projection != AllSky {
+		v.Field.Width, err = autoWidth(v, object)
 	}
-	return v, nil
+	return v, err
+}
+
+// newField turns a scene's field into screen coordinates; an automatic width
+// is left open.
+func newField(f scenes.Field) (Field, error) {
+	field := Field{Width: f.Width, Center: f.Center, Columns: f.Pixels[0], Rows: f.Pixels[1]}
+	const deg = math.Pi / 180
+	switch f.Projection {
+	case "parallel":
+		field.Projection = Parallel
+	case "perspective":
+		field.Projection = Perspective
+		field.Width = 2 * math.Tan(f.Width*deg/2)
+		field.Center = [2]float64{math.Tan(f.Center[0] * deg), math.Tan(f.Center[1] * deg)}
+	case "all-sky":
+		field.Projection = AllSky
+		field.Width, field.Center = 2*math.Pi, [2]float64{}
+	default:
+		return Field{}, fmt.Errorf("projection %q cannot be traced in this version", f.Projection)
+	}
+	return field, nil
+}
+
+func newObserver(o scenes.Observer) (geodesic.Observer, error) {
+	observer := geodesic.Observer{Radius: o.Radius, InclinationDeg: o.Inclination, AzimuthDeg: o.Azimuth}
+	switch o.Motion {
+	case "", "static":
+		observer.Motion = geodesic.Static
+	case "orbit":
+		observer.Motion = geodesic.Orbit
+	case "infall":
+		observer.Motion = geodesic.Infall
+	default:
+		return observer, fmt.Errorf("motion %q cannot be traced in this version", o.Motion)
+	}
+	return observer, nil
 }
 
 // newObject is the one line a kind of object takes here.
@@ -74,29 +110,10 @@ func newObject(o scenes.Object) (*geodesic.Round, error) {
 	return nil, fmt.Errorf("object of kind %q cannot be traced in this version", o.Kind)
 }
 
-func newDisk(e scenes.Emitter, object *geodesic.Round) (*emit.Disk, error) {
-	if e.Kind != "disk" {
-		return nil, fmt.Errorf("kind %q cannot be traced in this version", e.Kind)
-	}
-	d := &emit.Disk{
-		Gas:   object.CircularGas(),
-		Inner: e.Inner.Radius, Outer: e.Outer,
-		Index: e.Index, Clockwise: e.Clockwise, Thick: e.Thick,
-	}
-	switch e.Light {
-	case "bolometric":
-		d.GPower = 4
-	case "monochromatic":
-		d.GPower = 3 - e.SpectralIndex
-	default:
-		return nil, fmt.Errorf("light %q cannot be traced in this version", e.Light)
-	}
-	return d, nil
-}
-
 // Coarsened returns the same view with k times fewer columns and rows (at
 // least one of each), for previews. Pixels are k times as wide, and the
-// bottom left corners of both fields agree.
+// bottom left corners of both fields agree; all-sky fields stay the whole
+// sky.
 func (v *View) Coarsened(k int) *View {
 	coarse := *v
 	coarse.Field = v.Field.coarsened(max(1, k))

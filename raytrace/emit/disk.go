@@ -14,13 +14,14 @@ type Disk struct {
 	Index        float64
 	Clockwise    bool // the gas turns clockwise about N
 	Thick        bool // paths end on the disk
+	Angle        AngleLaw
 	// GPower is the power of g that the received intensity carries: 4 for
 	// bolometric light, 3 - s for a power-law spectrum I_ν ∝ ν^s.
 	GPower float64
 }
 
 // Shade fills light for a block of crossings; see Light.
-func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, light *Light) {
+func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, light *Light) {
 	light.Resize(len(at.R))
 	sense := 1.0
 	if d.Clockwise {
@@ -37,7 +38,7 @@ func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, light *Light) 
 			light.Opaque[j] = d.Thick
 			light.G[j] = g
 			light.Mu[j] = geodesic.EmissionCosine(g, rays.GObs[k], rays.Eta[k], r)
-			light.Intensity[j] = power(g, d.GPower) * power(r, -d.Index)
+			light.Intensity[j] = power(g, d.GPower) * power(r, -d.Index) * d.Angle.Intensity(light.Mu[j])
 		}
 	}
 }
