@@ -80,6 +80,12 @@ func NewShell(r float64) (*Round, error) {
 
 var schwarzschild = &Round{edge: 0.5, end: Captured, name: "black hole"}
 
+// Same says whether two values describe the same spacetime.
+func (s *Round) Same(other *Round) bool {
+	return s.name == other.name && s.charge2 == other.charge2 && s.edge == other.edge &&
+		s.end == other.end && (s.inside == nil) == (other.inside == nil)
+}
+
 // Edge returns the radius of the horizon, surface or shell, M.
 func (s *Round) Edge() float64 { return 1 / s.edge }
 

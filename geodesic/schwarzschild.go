@@ -12,7 +12,3 @@ const PhotonSphere = 3.0
 // Lapse returns √(1-2/r), the rate of a static clock in the Schwarzschild
 // exterior at r, M; 1 at infinity.
 func Lapse(r float64) float64 { return math.Sqrt(1 - 2/r) }
-
-// MinRadius is the smallest radius of an observer at rest outside the
-// Schwarzschild horizon, M.
-const MinRadius = HorizonRadius * (1 + horizonMargin)

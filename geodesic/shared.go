@@ -23,6 +23,7 @@ import (
 // integrated one by one.
 type OrbitTable struct {
 	object    *Round
+	share     Share
 	uObs      float64
 	tolerance float64
 	orders    int     // image orders held
@@ -71,6 +72,15 @@ type Build struct {
 
 // Build returns the report of the table's making.
 func (tb *OrbitTable) Build() Build { return tb.built }
+
+// Holds says whether a table serves paths of this object and share: the same
+// observer but for inclination and azimuth, and no more asked for.
+func (s *Round) Holds(tb *OrbitTable, share Share) bool {
+	return tb.object.Same(s) && tb.share.Observer.Radius == share.Observer.Radius &&
+		(tb.share.Observer.Motion == Infall) == (share.Observer.Motion == Infall) &&
+		tb.share.Tolerance == share.Tolerance && tb.share.MaxOrder >= share.MaxOrder &&
+		(tb.share.Outward || !share.Outward) && (tb.timed || !share.Delay)
+}
 
 // Share says which paths a table must hold.
 type Share struct {
@@ -180,7 +190,7 @@ func (tb *OrbitTable) onRows(ctx context.Context, share Share, tolerance float64
 // layOut places the rows.
 func (s *Round) layOut(share Share, uObs float64) *OrbitTable {
 	tb := &OrbitTable{
-		object: s, uObs: uObs, tolerance: share.Tolerance,
+		object: s, share: share, uObs: uObs, tolerance: share.Tolerance,
 		orders: share.MaxOrder + 1, timed: share.Delay,
 	}
 	var perPi int

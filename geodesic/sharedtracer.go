@@ -45,7 +45,7 @@ func (s *Round) SharedTracer(o Observer, plan Plan, table *OrbitTable) (*SharedT
 	if err != nil {
 		return nil, err
 	}
-	if table != nil && (table.object != s || table.uObs != t.uObs || table.orders <= plan.MaxOrder || table.tolerance*sharedTarget > target*(1+1e-12)) {
+	if table != nil && (!table.object.Same(s) || table.uObs != t.uObs || table.orders <= plan.MaxOrder || table.tolerance*sharedTarget > target*(1+1e-12)) {
 		table = nil
 	}
 	shared := &SharedTracer{roundTracer: t, table: table, target: target}

@@ -14,6 +14,7 @@ import (
 // Emitter turns a block of crossings into light. It must be safe for
 // concurrent use. Pixels is filled only if the view's plan asks for the sky.
 type Emitter interface {
+	Reads() emit.Reads
 	Shade(rays *geodesic.Rays, crossings *geodesic.Crossings, pixels *emit.Pixels, light *emit.Light)
 }
 

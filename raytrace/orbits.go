@@ -10,6 +10,7 @@ import (
 // sharer is a spacetime whose paths share orbits.
 type sharer interface {
 	SharedOrbits(ctx context.Context, share geodesic.Share) (*geodesic.OrbitTable, error)
+	Holds(table *geodesic.OrbitTable, share geodesic.Share) bool
 	SharedTracer(o geodesic.Observer, plan geodesic.Plan, table *geodesic.OrbitTable) (*geodesic.SharedTracer, error)
 }
 
@@ -24,15 +25,35 @@ type Orbits struct {
 	table *geodesic.OrbitTable
 }
 
-// tableFor returns a table for the share, from the last one if that holds it.
-// It is nil where sharing does not pay.
-func (o *Orbits) tableFor(ctx context.Context, object *geodesic.Round, share geodesic.Share) (*geodesic.OrbitTable, error) {
+// Build reports on the orbits kept; the zero Build if there are none.
+func (o *Orbits) Build() geodesic.Build {
 	o.mu.Lock()
 	defer o.mu.Unlock()
-	if o.table != nil && o.table.Holds(object, share) {
+	if o.table == nil {
+		return geodesic.Build{}
+	}
+	return o.table.Build()
+}
+
+// shared returns the table that the view's paths share, made now if the last
+// one does not hold it; nil where sharing does not pay.
+func (v *View) shared(ctx context.Context, workers int, delay bool) (*geodesic.OrbitTable, error) {
+	s, ok := v.Spacetime.(sharer)
+	if !ok || v.Orbits == nil {
+		return nil, nil
+	}
+	share := geodesic.Share{
+		Observer: v.Observer, Tolerance: v.Plan.Tolerance, MaxOrder: v.Plan.MaxOrder,
+		Outward: v.Field.Projection == AllSky || v.Field.Projection == Perspective && v.Observer.Motion != geodesic.Static,
+		Delay:   delay, Workers: workers,
+	}
+	o := v.Orbits
+	o.mu.Lock()
+	defer o.mu.Unlock()
+	if o.table != nil && s.Holds(o.table, share) {
 		return o.table, nil
 	}
-	table, err := object.SharedOrbits(ctx, share)
+	table, err := s.SharedOrbits(ctx, share)
 	if err == nil && table != nil {
 		o.table = table
 	}

@@ -19,26 +19,47 @@ const (
 // Plate is the traced and shaded image.
 type Plate struct {
 	Columns, Rows, Orders int
-	Total                 []float32 // intensity summed over orders, Rows·Columns, row 0 at the bottom
-	layers                [][]float32
-	Paths                 int     // light paths traced
-	WorstBound            float64 // largest relative bound on r of any crossing of the disk plane shown
-	WorstAngle            float64 // largest bound, radians, on the swept angle of any crossing of star or sky shown
+	Total                 []float32   // intensity summed over orders, Rows·Columns, row 0 at the bottom
+	layers                [][]float32 // nil where not kept
+	Paths                 int         // light paths followed
+	Integrated            int         // of these, integrated one by one and not interpolated between shared orbits
+	WorstBound            float64     // largest relative bound on r of any crossing of the disk plane shown
+	WorstAngle            float64     // largest bound, radians, on the swept angle of any crossing of star or sky shown
+}
+
+// layerSet says which layers are kept.
+type layerSet [layerCount]bool
+
+// keep turns a list of layers into a set; nil means all.
+func keep(layers []Layer) (kept layerSet) {
+	for l := range kept {
+		kept[l] = layers == nil
+	}
+	for _, l := range layers {
+		kept[l] = true
+	}
+	return kept
 }
 
 // newPlate returns a plate on which nothing shines yet.
-func newPlate(columns, rows, orders int) *Plate {
+func newPlate(columns, rows, orders int, kept layerSet) *Plate {
 	size := columns * rows
-	p := &Plate{Columns: columns, Rows: rows, Orders: orders, Total: make([]float32, size)}
+	p := &Plate{
+		Columns: columns, Rows: rows, Orders: orders,
+		Total: make([]float32, size), layers: make([][]float32, orders*int(layerCount)),
+	}
 	nothing := float32(math.NaN())
-	for k := range orders * int(layerCount) {
-		layer := make([]float32, size)
-		if Layer(k%int(layerCount)) != Intensity {
-			for i := range layer {
-				layer[i] = nothing
+	for k := range p.layers {
+		l := Layer(k % int(layerCount))
+		if !kept[l] {
+			continue
+		}
+		p.layers[k] = make([]float32, size)
+		if l != Intensity {
+			for i := range p.layers[k] {
+				p.layers[k][i] = nothing
 			}
 		}
-		p.layers = append(p.layers, layer)
 	}
 	return p
 }
@@ -46,7 +67,8 @@ func newPlate(columns, rows, orders int) *Plate {
 // Layer returns the values of one quantity for one image order, with
 // Rows·Columns entries, row 0 at the bottom. Where the order has no crossing
 // intensity is 0 and every other layer NaN; where it has several, intensity
-// is their sum and the others are of the first on the path.
+// is their sum and the others are of the first on the path. Layers that were
+// not asked for are nil.
 func (p *Plate) Layer(l Layer, order int) []float32 {
 	return p.layers[order*int(layerCount)+int(l)]
 }

@@ -32,7 +32,7 @@ const probeBlock = 1024
 // and returns their crossings with emitters, up to the first opaque one,
 // line of sight by line of sight in path order.
 func (v *View) Probe(ctx context.Context, at [][2]float64) ([]Reading, error) {
-	b, err := v.newBench()
+	b, err := v.newBench(nil)
 	if err != nil {
 		return nil, err
 	}
@@ -43,9 +43,10 @@ func (v *View) Probe(ctx context.Context, at [][2]float64) ([]Reading, error) {
 		}
 		block := at[from:min(from+probeBlock, len(at))]
 		b.screen = append(b.screen[:0], block...)
-		if err := b.trace(); err != nil {
+		if _, err := b.follow(geodesic.Want{Delay: true, Slope: v.Plan.Sky}); err != nil {
 			return nil, err
 		}
+		b.shade()
 		for k, p := range block {
 			readings = b.read(k, p, readings)
 		}

@@ -18,6 +18,11 @@ type Options struct {
 	Workers  int            // goroutines; 0 means GOMAXPROCS
 	TileSide int            // pixels; 0 means 32
 	Report   func(Progress) // called from the workers, one call at a time; nil for none
+	// Layers are those the plate keeps beside the total; nil means all,
+	// an empty list none.
+	Layers []Layer
+	// PathByPath integrates every ray instead of sharing orbits.
+	PathByPath bool
 }
 
 // Progress says how far a render is.
@@ -29,7 +34,7 @@ type Progress struct {
 
 // defaultTileSide is the side of a tile in pixels. Taste: its blocks of 1024
 // rays stay in the second-level cache, and a cancelled render ends within
-// about four milliseconds.
+// about four milliseconds even path by path.
 const defaultTileSide = 32
 
 // Render traces and shades the whole field. Tiles are handed out from the
@@ -37,20 +42,60 @@ const defaultTileSide = 32
 // plate bit for bit. It stops within a tile when ctx ends, with an error
 // that wraps ctx.Err().
 func (v *View) Render(ctx context.Context, o Options) (*Plate, error) {
-	if o.Workers <= 0 {
-		o.Workers = runtime.GOMAXPROCS(0)
+	kept := keep(o.Layers)
+	plate := newPlate(v.Field.Columns, v.Field.Rows, v.Plan.MaxOrder+1, kept)
+	want := v.want(kept)
+	tiles := tilesOutward(plate.Columns, plate.Rows, o.tileSide())
+	err := v.onTiles(ctx, o, want, tiles, func(b *bench, k int) (tileReport, error) {
+		integrated, err := b.followTile(tiles[k], want)
+		if err != nil {
+			return tileReport{}, err
+		}
+		b.shade()
+		return tileReport{b.exposeTile(tiles[k], plate), integrated}, nil
+	}, plate)
+	if err != nil {
+		return nil, err
 	}
-	if o.TileSide <= 0 {
-		o.TileSide = defaultTileSide
+	return plate, nil
+}
+
+func (o Options) tileSide() int {
+	if o.TileSide > 0 {
+		return o.TileSide
 	}
-	plate := newPlate(v.Field.Columns, v.Field.Rows, v.Plan.MaxOrder+1)
-	tiles := tilesOutward(plate.Columns, plate.Rows, o.TileSide)
+	return defaultTileSide
+}
+
+func (o Options) workers() int {
+	if o.Workers > 0 {
+		return o.Workers
+	}
+	return runtime.GOMAXPROCS(0)
+}
+
+// tileReport is what a finished tile adds to the plate's tally.
+type tileReport struct {
+	worst      bounds
+	integrated int
+}
+
+// onTiles does work for every tile, shared among goroutines, and tallies on
+// the plate.
+func (v *View) onTiles(ctx context.Context, o Options, want geodesic.Want, tiles []image.Rectangle, work func(b *bench, k int) (tileReport, error), plate *Plate) error {
+	var table *geodesic.OrbitTable
+	if !o.PathByPath {
+		var err error
+		if table, err = v.shared(ctx, o.workers(), want.Delay); err != nil {
+			return err
+		}
+	}
 	var next atomic.Int64
 	tally := tally{plate: plate, tiles: len(tiles), report: o.Report}
 	group, ctx := errgroup.WithContext(ctx)
-	for range min(o.Workers, len(tiles)) {
+	for range min(o.workers(), len(tiles)) {
 		group.Go(func() error {
-			b, err := v.newBench()
+			b, err := v.newBench(table)
 			if err != nil {
 				return err
 			}
@@ -62,18 +107,15 @@ func (v *View) Render(ctx context.Context, o Options) (*Plate, error) {
 				if err := ctx.Err(); err != nil {
 					return fmt.Errorf("raytrace: before tile %v: %w", tiles[k], err)
 				}
-				worst, err := b.fill(tiles[k], plate)
+				report, err := work(b, k)
 				if err != nil {
 					return err
 				}
-				tally.add(tiles[k], worst)
+				tally.add(tiles[k], report)
 			}
 		})
 	}
-	if err := group.Wait(); err != nil {
-		return nil, err
-	}
-	return plate, nil
+	return group.Wait()
 }
 
 // tally gathers what the tiles report; sums and maxima do not depend on the
@@ -86,13 +128,14 @@ type tally struct {
 	report func(Progress)
 }
 
-func (t *tally) add(tile image.Rectangle, worst bounds) {
+func (t *tally) add(tile image.Rectangle, r tileReport) {
 	t.mu.Lock()
 	defer t.mu.Unlock()
 	t.done++
 	t.plate.Paths += tile.Dx() * tile.Dy()
-	t.plate.WorstBound = max(t.plate.WorstBound, worst.radius)
-	t.plate.WorstAngle = max(t.plate.WorstAngle, worst.angle)
+	t.plate.Integrated += r.integrated
+	t.plate.WorstBound = max(t.plate.WorstBound, r.worst.radius)
+	t.plate.WorstAngle = max(t.plate.WorstAngle, r.worst.angle)
 	if t.report != nil {
 		t.report(Progress{Tile: tile, TilesDone: t.done, Tiles: t.tiles, PathsDone: t.plate.Paths})
 	}
@@ -102,32 +145,29 @@ func (t *tally) add(tile image.Rectangle, worst bounds) {
 // angles in radians.
 type bounds struct{ radius, angle float64 }
 
-func (b bounds) worse(c bounds) bounds {
-	return bounds{max(b.radius, c.radius), max(b.angle, c.angle)}
+// followTile traces the pixel centres of a tile.
+func (b *bench) followTile(tile image.Rectangle, want geodesic.Want) (integrated int, err error) {
+	b.screen = b.view.Field.tileCenters(tile, b.screen[:0])
+	return b.follow(want)
 }
 
-// fill traces one tile into the plate and returns the worst bounds of the
-// crossings shown.
-func (b *bench) fill(tile image.Rectangle, plate *Plate) (worst bounds, err error) {
-	b.screen = b.view.Field.tileCenters(tile, b.screen[:0])
-	if err := b.trace(); err != nil {
-		return worst, err
-	}
+// exposeTile writes the shaded block to its pixels and returns the worst
+// bounds of the crossings shown.
+func (b *bench) exposeTile(tile image.Rectangle, plate *Plate) (worst bounds) {
 	k := 0
 	for row := tile.Min.Y; row < tile.Max.Y; row++ {
 		for column := tile.Min.X; column < tile.Max.X; column++ {
-			worst = worst.worse(b.expose(k, row*plate.Columns+column, plate))
+			b.expose(k, row*plate.Columns+column, plate, &worst)
 			k++
 		}
 	}
-	return worst, nil
+	return worst
 }
 
 // expose writes ray k to a pixel of the plate, order by order, up to the
-// first opaque emitter, and returns the worst bounds on the way. Where an
-// order has several crossings its intensity is their sum and its other
-// layers show the first one.
-func (b *bench) expose(k, pixel int, plate *Plate) (worst bounds) {
+// first opaque emitter. Where an order has several crossings its intensity is
+// their sum and its other layers show the first one.
+func (b *bench) expose(k, pixel int, plate *Plate, worst *bounds) {
 	var total, sum float64 // of all orders, of the one in hand
 	last := -1
 	for j := b.at.Start[k]; j < b.at.Start[k+1]; j++ {
@@ -142,23 +182,39 @@ func (b *bench) expose(k, pixel int, plate *Plate) (worst bounds) {
 		} else {
 			worst.angle = max(worst.angle, b.at.Bound[j])
 		}
-		layers := plate.layers[order*int(layerCount):]
+		layers := plate.layers[order*int(layerCount):][:layerCount]
 		if order != last {
 			last, sum = order, 0
-			layers[Redshift][pixel] = float32(s.g)
-			layers[Azimuth][pixel] = float32(b.at.Phi[j])
-			if surface != geodesic.Sky { // infinitely far, without a time of its own
-				layers[Radius][pixel] = float32(b.at.R[j])
-				layers[Delay][pixel] = float32(b.at.Delay[j])
-				layers[Mu][pixel] = float32(s.mu)
-			}
+			b.describe(j, pixel, s, layers)
 		}
 		sum += s.intensity
-		layers[Intensity][pixel] = float32(sum)
+		set(layers[Intensity], pixel, sum)
 		if opaque {
 			break
 		}
 	}
 	plate.Total[pixel] = float32(total)
-	return worst
+}
+
+// describe writes the layers other than intensity that are kept.
+func (b *bench) describe(j int32, pixel int, s sight, layers [][]float32) {
+	set(layers[Redshift], pixel, s.g)
+	if layers[Azimuth] != nil {
+		layers[Azimuth][pixel] = float32(b.at.Phi[j])
+	}
+	if b.at.Surface[j] == geodesic.Sky { // infinitely far, without a time of its own
+		return
+	}
+	set(layers[Radius], pixel, b.at.R[j])
+	set(layers[Mu], pixel, s.mu)
+	if layers[Delay] != nil {
+		layers[Delay][pixel] = float32(b.at.Delay[j])
+	}
+}
+
+// set writes a pixel of a layer that is kept.
+func set(layer []float32, pixel int, x float64) {
+	if layer != nil {
+		layer[pixel] = float32(x)
+	}
 }

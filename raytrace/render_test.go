@@ -60,7 +60,7 @@ func samePlate(t *testing.T, what string, a, b *Plate) {
 		}
 		return len(x) == len(y)
 	}
-	if !same(a.Total, b.Total) || a.WorstBound != b.WorstBound || a.Paths != b.Paths {
+	if a.Integrated != b.Integrated || !same(a.Total, b.Total) || a.WorstBound != b.WorstBound || a.Paths != b.Paths {
 		t.Errorf("%s: totals differ", what)
 	}
 	for k := range a.layers {
@@ -237,7 +237,7 @@ func TestProbeAgreesWithPlate(t *testing.T) {
 		s := scene(75, 2, 31)
 		s.Emitters[0].Thick = thick
 		v := view(t, s)
-		p := render(t, v, Options{})
+		p := render(t, v, Options{PathByPath: true})
 		compared := 0
 		for row := range p.Rows {
 			for column := range p.Columns {

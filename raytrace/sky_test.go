@@ -373,7 +373,7 @@ func TestFold(t *testing.T) {
 	s := skyScene("black-hole", 0, 10, "static", "stars", 0)
 	s.Field.Pixels = [2]int{90, 45}
 	v := view(t, s)
-	b, err := v.newBench()
+	b, err := v.newBench(nil)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -382,7 +382,7 @@ func TestFold(t *testing.T) {
 		alpha, beta := v.Field.PixelCenter(column, row)
 		b.screen = append(b.screen, [2]float64{alpha, beta})
 	}
-	if err := b.trace(); err != nil {
+	if _, err := b.follow(geodesic.Want{Delay: true, Slope: true}); err != nil {
 		t.Fatal(err)
 	}
 	var turn [3]float64 // dψ from side to side of a pixel

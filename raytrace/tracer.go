@@ -10,7 +10,8 @@ import (
 type bench struct {
 	view          *View
 	tracer        geodesic.Tracer
-	screen        [][2]float64 // α, β of the block's lines of sight
+	sharing       *geodesic.SharedTracer // the tracer if orbits are shared, else nil
+	screen        [][2]float64           // α, β of the block's lines of sight
 	dirs          []geodesic.Direction
 	rays          geodesic.Rays
 	at            geodesic.Crossings
@@ -21,34 +22,62 @@ type bench struct {
 	lights        []emit.Light // one an emitter
 }
 
-func (v *View) newBench() (*bench, error) {
-	tracer, err := v.Spacetime.Tracer(v.Observer, v.Plan)
-	if err != nil {
-		return nil, err
+// newBench returns scratch that follows paths by the table's orbits, or one
+// by one if that is nil.
+func (v *View) newBench(table *geodesic.OrbitTable) (*bench, error) {
+	b := &bench{view: v, lights: make([]emit.Light, len(v.Emitters))}
+	var err error
+	if s, ok := v.Spacetime.(sharer); ok && table != nil {
+		b.sharing, err = s.SharedTracer(v.Observer, v.Plan, table)
+		b.tracer = b.sharing
+	} else {
+		b.tracer, err = v.Spacetime.Tracer(v.Observer, v.Plan)
 	}
-	return &bench{view: v, tracer: tracer, lights: make([]emit.Light, len(v.Emitters))}, nil
+	return b, err
 }
 
-// trace follows the block of b.screen and shades its crossings.
-func (b *bench) trace() error {
+// want is what the emitters and the kept layers read.
+func (v *View) want(kept layerSet) geodesic.Want {
+	want := geodesic.Want{Delay: kept[Delay], Slope: v.Plan.Sky, NoPlace: !kept[Azimuth], NoKR: true}
+	for _, e := range v.Emitters {
+		reads := e.Reads()
+		want.Delay = want.Delay || reads.Delay
+		want.NoPlace = want.NoPlace && !reads.Place
+		want.NoKR = want.NoKR && !reads.KR
+	}
+	return want
+}
+
+// follow traces the block of b.screen to its crossings and returns how many
+// of its rays were integrated one by one.
+func (b *bench) follow(want geodesic.Want) (integrated int, err error) {
 	v := b.view
 	b.dirs = b.dirs[:0]
 	for _, p := range b.screen {
 		b.dirs = append(b.dirs, v.Field.direction(p[0], p[1]))
 	}
 	if err := b.aim(&b.rays); err != nil {
-		return err
+		return 0, err
 	}
-	b.tracer.Cross(&b.rays, geodesic.Want{Delay: true, Slope: v.Plan.Sky}, &b.at)
+	integrated = len(b.screen)
+	if b.sharing != nil {
+		integrated = -b.sharing.Direct()
+	}
+	b.tracer.Cross(&b.rays, want, &b.at)
+	if b.sharing != nil {
+		integrated += b.sharing.Direct()
+	}
 	if v.Plan.Sky {
-		if err := b.cover(); err != nil {
-			return err
-		}
+		err = b.cover()
 	}
-	for e, emitter := range v.Emitters {
+	return integrated, err
+}
+
+// shade lights the crossings of the block.
+func (b *bench) shade() {
+	for e, emitter := range b.view.Emitters {
 		emitter.Shade(&b.rays, &b.at, &b.pixels, &b.lights[e])
 	}
-	return nil
 }
 
 // aim turns the lines of sight of b.dirs into rays.

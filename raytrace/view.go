@@ -16,6 +16,9 @@ type View struct {
 	Field     Field
 	Emitters  []Emitter
 	Plan      geodesic.Plan
+	// Orbits are the shared orbits that Render keeps. Views that follow one
+	// another share them: see Follow.
+	Orbits *Orbits
 }
 
 // NewView prepares a scene. The scene must have passed the checks of
@@ -40,16 +43,18 @@ func NewViewIn(s scenes.Scene, folder string) (*View, error) {
 	}
 	v := &View{
 		Spacetime: object, Observer: observer, Field: field,
-		Plan: geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
+		Plan:   geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
+		Orbits: new(Orbits),
 	}
 	for i, e := range s.Emitters {
 		shining, err := newEmitter(e, s.Object, object, folder)
 		if err != nil {
 			return nil, fmt.Errorf("raytrace: emitter %d: %w", i+1, err)
 		}
-		switch shining.(type) {
+		switch e := shining.(type) {
 		case *emit.Disk:
 			v.Plan.Plane = true
+			v.Plan.Reach = max(v.Plan.Reach, e.Outer)
 		case *emit.Sky:
 			v.Plan.Sky = true
 		}
@@ -118,4 +123,12 @@ func (v *View) Coarsened(k int) *View {
 	coarse := *v
 	coarse.Field = v.Field.coarsened(max(1, k))
 	return &coarse
+}
+
+// Follow lets v use the shared orbits of an earlier view, which it finds
+// ready if only inclination, azimuth, field or emitters have changed.
+func (v *View) Follow(earlier *View) {
+	if earlier != nil && earlier.Orbits != nil {
+		v.Orbits = earlier.Orbits
+	}
 }

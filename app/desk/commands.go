@@ -125,7 +125,7 @@ func (c *commands) order() imaging.Order {
 	columns, rows := c.state.Picture()
 	curve := c.state.Tone
 	return imaging.Order{
-		Serial: c.state.Serial(), Scene: c.state.Scene(), Columns: columns, Rows: rows, Asked: time.Now(),
+		Serial: c.state.Serial(), Scene: c.state.Scene(), Folder: c.state.Folder(), Columns: columns, Rows: rows, Asked: time.Now(),
 		Develop: func(p *raytrace.Plate) *image.RGBA { return develop(p, curve) },
 	}
 }

@@ -62,7 +62,7 @@ func (c *commands) saveImageTo(path string) {
 		c.tell(err)
 		return
 	}
-	scene, text, curve := c.state.Scene(), c.state.Text(), c.state.Tone
+	scene, folder, text, curve := c.state.Scene(), c.state.Folder(), c.state.Text(), c.state.Tone
 	ctx, cancel := context.WithCancel(context.Background())
 	bar := widget.NewProgressBarInfinite()
 	waiting := dialog.NewCustom("Saving "+filepath.Base(path), "Stop", bar, c.window)
@@ -70,7 +70,7 @@ func (c *commands) saveImageTo(path string) {
 	waiting.Show()
 	go func() {
 		var plate *raytrace.Plate
-		view, err := prepare(scene)
+		view, err := prepare(scene, folder)
 		if err == nil {
 			plate, err = view.Trace(ctx, 1, nil)
 		}

@@ -2,7 +2,6 @@ package files
 
 import (
 	"bytes"
-	"encoding/binary"
 	"errors"
 	"fmt"
 	"hash/crc32"
@@ -49,7 +48,9 @@ func EncodePNG(w io.Writer, img image.Image, texts []Text) error {
 		if err := t.check(); err != nil {
 			return err
 		}
-		writeChunk(&chunks, typeText, t.data())
+		if err := putChunk(&chunks, typeText, t.data()); err != nil {
+			return err
+		}
 	}
 	encoder := png.Encoder{CompressionLevel: png.DefaultCompression}
 	splice := &splice{w: w, at: beforeTexts, insert: chunks.Bytes()}
@@ -87,18 +88,6 @@ func (t Text) check() error {
 func (t Text) data() []byte {
 	const between = "\x00" + "\x00\x00" + "\x00" + "\x00"
 	return []byte(t.Keyword + between + t.Value)
-}
-
-func writeChunk(out *bytes.Buffer, kind string, data []byte) {
-	var word [4]byte
-	put := func(v uint32) {
-		binary.BigEndian.PutUint32(word[:], v)
-		out.Write(word[:])
-	}
-	put(uint32(len(data)))
-	out.WriteString(kind)
-	out.Write(data)
-	put(checksum(kind, data))
 }
 
 // checksum returns the CRC of a chunk's type and data.

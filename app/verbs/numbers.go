@@ -8,8 +8,6 @@ import (
 	"math"
 	"strconv"
 	"strings"
-
-	"annulet/geodesic"
 )
 
 // number is a float64 as outputs print it: the fewest digits that read back
@@ -49,24 +47,6 @@ func parseFinite(text string) (float64, error) {
 		return 0, fmt.Errorf("%q is not a finite number", text)
 	}
 	return x, nil
-}
-
-// parseRadius reads an observer's radius in M: a number above 2, or infinity.
-func parseRadius(text string) (float64, error) {
-	if t := strings.TrimSpace(text); t == "infinity" || t == "inf" {
-		return math.Inf(1), nil
-	}
-	r, err := parseFinite(strings.TrimSuffix(strings.TrimSpace(text), "M"))
-	if err != nil {
-		return 0, fmt.Errorf("%q is neither a number of M nor infinity", text)
-	}
-	switch {
-	case r < geodesic.MinRadius:
-		return 0, fmt.Errorf("%s M is not outside the horizon; allowed: above 2 M, or infinity", number(r).csv())
-	case r > geodesic.MaxRadius:
-		return 0, fmt.Errorf("%s M is too far; beyond %g M say infinity", number(r).csv(), geodesic.MaxRadius)
-	}
-	return r, nil
 }
 
 // parseImpact reads an impact parameter in M.

@@ -138,7 +138,7 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	if err != nil {
 		return err
 	}
-	view, err := raytrace.NewView(document.Scene())
+	view, err := raytrace.NewViewIn(document.Scene(), document.Dir())
 	if err != nil {
 		return usage{err}
 	}

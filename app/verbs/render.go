@@ -251,7 +251,7 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 		return err
 	}
 	begun := time.Now()
-	plate, err := tracePlate(cmd, s, scene, o.workers)
+	plate, err := tracePlate(cmd, s, scene, document.Dir(), o.workers)
 	if err != nil {
 		return err
 	}
@@ -292,11 +292,11 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 }
 
 // tracePlate renders the scene and shows progress.
-func tracePlate(cmd *cobra.Command, s streams, scene scenes.Scene, workers int) (*raytrace.Plate, error) {
+func tracePlate(cmd *cobra.Command, s streams, scene scenes.Scene, folder string, workers int) (*raytrace.Plate, error) {
 	for _, n := range scene.Notes() {
 		s.note("%s", n)
 	}
-	view, err := raytrace.NewView(scene)
+	view, err := raytrace.NewViewIn(scene, folder)
 	if err != nil {
 		return nil, usage{err}
 	}

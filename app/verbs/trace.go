@@ -16,6 +16,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"annulet/geodesic"
+	"annulet/scenes"
 )
 
 // The tolerances that paths take.
@@ -28,21 +29,20 @@ const (
 
 // tracing is what the flags of trace say.
 type tracing struct {
-	object, interior       string
-	interiorGiven          bool
-	objectRadius, charge   quantity
+	placing                // the object
 	observerRadius, impact quantity
 	tolerance              quantity
-	json                   bool
 	table                  string // a file, - for stdin
 	workers                int    // 0 means one a processor
 }
 
 func newTrace(s streams) *cobra.Command {
 	o := tracing{
-		objectRadius:   quantity{name: "M", parse: parseFinite},
-		charge:         quantity{name: "M", parse: parseFinite},
-		observerRadius: quantity{name: "M|infinity", parse: parseRadius},
+		placing: placing{
+			objectRadius: quantity{name: "M", parse: parseLength},
+			charge:       quantity{name: "M", parse: parseLength},
+		},
+		observerRadius: quantity{name: "M|infinity", parse: parseStation},
 		impact:         quantity{name: "M", parse: parseImpact},
 		tolerance: quantity{
 			name: "number", parse: parseTolerance,
@@ -52,18 +52,21 @@ func newTrace(s streams) *cobra.Command {
 	cmd := &cobra.Command{
 		Use:   "trace",
 		Short: "follow one light path, or a table of them",
-		Long: "Follows a light path backwards from an observer, first inward, until it is\n" +
-			"back at the observer's radius (or at infinity) or at the horizon, and puts the\n" +
-			"closed form beside it. Lengths and times are in M = GM/c^2, GM/c^3.\n\n" +
+		Long: "Follows a light path backwards from a static observer, first inward, until it is\n" +
+			"back at the observer's radius (or at infinity), at the horizon or on an opaque\n" +
+			"star, and puts the closed form beside it; for a charged hole there is none.\n" +
+			"Shells and uniform stars let light through. An observer within a shell is\n" +
+			"allowed; the path then goes to infinity, or is trapped within 3 M for ever.\n" +
+			"Lengths and times are in M = GM/c^2, GM/c^3.\n\n" +
 			"With --table it reads CSV with the columns object,object_radius,observer_radius,\n" +
-			"impact (the first two may be left out) and writes the same columns plus\n" +
-			"fate,swept_rad,closest_r,difference_rad.",
+			"impact and, if there, interior,charge (only observer_radius and impact must be)\n" +
+			"and writes the same columns plus fate,swept_rad,closest_r,difference_rad.",
 		Example: "  " + programName() + " trace --observer-radius 1000 --impact 5.3\n" +
+			"  " + programName() + " trace --object shell --object-radius 4 --observer-radius infinity --impact 4\n" +
 			"  " + programName() + " trace --table paths.csv > fates.csv",
 		Args: takes(0, ""),
 		RunE: func(cmd *cobra.Command, _ []string) error {
 			flags := cmd.Flags()
-			o.interiorGiven = flags.Changed("interior")
 			if flags.Changed("table") {
 				for _, single := range []string{"observer-radius", "impact", "object", "object-radius", "interior", "charge"} {
 					if flags.Changed(single) {
@@ -76,12 +79,12 @@ func newTrace(s streams) *cobra.Command {
 		},
 	}
 	f := cmd.Flags()
-	f.Var(&o.observerRadius, "observer-radius", "circumferential radius of the observer, above 2 M, or infinity")
+	f.Var(&o.observerRadius, "observer-radius", "circumferential radius of the observer, outside the horizon or the star, or infinity")
 	f.Var(&o.impact, "impact", "impact parameter b = L/E, 0 or more")
-	f.StringVar(&o.object, "object", "black-hole", "what is at the centre: black-hole")
-	f.Var(&o.objectRadius, "object-radius", "radius of a star or shell (not in this version)")
-	f.StringVar(&o.interior, "interior", "", "interior of a star (not in this version)")
-	f.Var(&o.charge, "charge", "charge of the black hole (not in this version, other than 0)")
+	f.StringVar(&o.object, "object", "black-hole", "what is at the centre: black-hole, star, shell")
+	f.Var(&o.objectRadius, "object-radius", "radius of a star (above 9/4 M) or shell (above 2 M)")
+	f.StringVar(&o.interior, "interior", "", "interior of a star: opaque (the default) or uniform")
+	f.Var(&o.charge, "charge", "charge |Q| of a black hole, below 1 M")
 	f.Var(&o.tolerance, "tolerance", fmt.Sprintf("relative, %g to %g", minTolerance, maxTolerance))
 	f.BoolVar(&o.json, "json", false, "print one JSON document on stdout")
 	f.StringVar(&o.table, "table", "", "CSV `FILE` of paths, - for standard input")
@@ -89,84 +92,137 @@ func newTrace(s streams) *cobra.Command {
 	return cmd
 }
 
-// checkObject refuses what this version cannot trace. Radius is the text of
-// the object's radius; a black hole has none, but 0 and 2 M do no harm.
-func checkObject(kind, radius string) error {
-	switch kind {
-	case "black-hole", "":
-	case "star", "shell":
-		return fmt.Errorf("%s: not in this version; allowed: black-hole", kind)
-	default:
-		return fmt.Errorf("%q is no object; allowed: black-hole", kind)
-	}
-	if radius == "" {
-		return nil
-	}
-	r, err := parseFinite(radius)
+// body is an object as scenes describe it and as paths meet it.
+type body struct {
+	object    scenes.Object
+	spacetime *geodesic.Round
+}
+
+// bodies holds every object that was asked for, once.
+type bodies map[scenes.Object]*body
+
+// of returns the object that flags describe.
+func (known bodies) of(p placing) (*body, error) {
+	object, err := flaggedObject(p)
 	if err != nil {
-		return err
+		return nil, err
 	}
-	if r != 0 && r != 2 {
-		return fmt.Errorf("a black hole has no object radius (its horizon is at 2 M), got %s M", number(r).csv())
+	if b, ok := known[object]; ok {
+		return b, nil
 	}
-	return nil
+	spacetime, err := spacetimeOf(object)
+	if err != nil {
+		return nil, refuse("%s", plain(err))
+	}
+	b := &body{object, spacetime}
+	known[object] = b
+	return b, nil
 }
 
-// checkPath refuses a path on which no light reaches the observer.
-func checkPath(p geodesic.Path) error {
-	if math.IsInf(p.ObserverRadius, 1) {
-		return nil
+// plain is a message of package geodesic without the package's name.
+func plain(err error) string { return strings.TrimPrefix(err.Error(), "geodesic: ") }
+
+// notes are what is strange about the objects themselves, each said once.
+func (known bodies) notes() []string {
+	var notes []string
+	for _, b := range known {
+		// An emitter, so that nothing is said of a picture.
+		notes = append(notes, scenes.Scene{Object: b.object, Emitters: make([]scenes.Emitter, 1)}.Notes()...)
 	}
-	if most := p.ObserverRadius / geodesic.Lapse(p.ObserverRadius); p.Impact > most {
-		return refuse("impact %s M: no light reaches an observer at %s M with it; allowed: 0 to %s M",
-			number(p.Impact).csv(), number(p.ObserverRadius).csv(), number(most).csv())
-	}
-	return nil
+	slices.Sort(notes)
+	return slices.Compact(notes)
 }
 
-// traced follows a path.
-func traced(p geodesic.Path) (geodesic.Story, error) {
-	if err := checkPath(p); err != nil {
-		return geodesic.Story{}, err
+// title names an object for people.
+func (b *body) title() string {
+	switch o := b.object; {
+	case o.Kind == "star":
+		return fmt.Sprintf("%s star of %s M", o.Interior, number(o.Radius).csv())
+	case o.Kind == "shell":
+		return fmt.Sprintf("shell of %s M", number(o.Radius).csv())
+	case o.Charge != 0:
+		return fmt.Sprintf("black hole of charge %s M", number(o.Charge).csv())
 	}
-	story, err := geodesic.Trace(p)
-	for _, fault := range []error{geodesic.ErrInside, geodesic.ErrTooFar, geodesic.ErrTolerance, geodesic.ErrImpact} {
-		if errors.Is(err, fault) {
-			return story, usage{err}
+	return "black hole"
+}
+
+// criticalDistance is b/b_c - 1.
+func (b *body) criticalDistance(impact float64) float64 {
+	if b.object.Charge == 0 {
+		return geodesic.CriticalDistance(impact)
+	}
+	return impact/b.spacetime.CriticalImpact() - 1
+}
+
+// check refuses an observer that cannot be there, and a path on which no
+// light reaches the observer.
+func (b *body) check(p geodesic.Path) error {
+	r := p.ObserverRadius
+	if err := b.spacetime.Check(geodesic.Observer{Radius: r}); err != nil {
+		if errors.Is(err, geodesic.ErrInside) {
+			return refuse("%s; allowed: above %.6g M, or infinity", plain(err), b.spacetime.Edge())
 		}
+		return refuse("%s", plain(err))
 	}
-	return story, err
+	if most := r / b.spacetime.Lapse(r); p.Impact > most {
+		return refuse("impact %s M: no light reaches an observer at %s M with it; allowed: 0 to %s M",
+			number(p.Impact).csv(), number(r).csv(), number(most).csv())
+	}
+	return nil
+}
+
+// objectFields is how JSON names an object; the radius is null for a hole,
+// the interior but for a star, the charge but for a hole.
+type objectFields struct {
+	Object       string  `json:"object"`
+	ObjectRadius number  `json:"object_radius"`
+	Interior     *string `json:"interior"`
+	Charge       number  `json:"charge"`
+}
+
+func (b *body) fields() objectFields {
+	f := objectFields{Object: b.object.Kind, ObjectRadius: number(math.NaN()), Charge: number(math.NaN())}
+	switch b.object.Kind {
+	case "star":
+		f.Interior = &b.object.Interior
+		fallthrough
+	case "shell":
+		f.ObjectRadius = number(b.object.Radius)
+	default:
+		f.Charge = number(b.object.Charge)
+	}
+	return f
 }
 
 // traceReport is the JSON of one path.
 type traceReport struct {
-	Units           map[string]string `json:"units"`
-	Object          string            `json:"object"`
-	ObserverRadius  number            `json:"observer_radius"`
-	Impact          number            `json:"impact"`
-	Tolerance       number            `json:"tolerance"`
-	Fate            string            `json:"fate"`
-	FateFrom        string            `json:"fate_from"` // what decided it
-	SweptRad        number            `json:"swept_rad"`
-	DeflectionRad   number            `json:"deflection_rad"`
-	ClosestR        number            `json:"closest_r"`
-	TravelTime      number            `json:"travel_time"`
-	Steps           int               `json:"steps"`
-	Evaluations     int               `json:"evaluations"`
-	BoundRad        number            `json:"bound_rad"`
-	ClosedFormSwept number            `json:"closed_form_swept_rad"`
-	DifferenceRad   number            `json:"difference_rad"`
-	NotIncluded     []string          `json:"not_included"`
+	Units map[string]string `json:"units"`
+	objectFields
+	ObserverRadius  number   `json:"observer_radius"`
+	Impact          number   `json:"impact"`
+	Tolerance       number   `json:"tolerance"`
+	Fate            string   `json:"fate"`
+	FateFrom        string   `json:"fate_from"` // what decided it
+	SweptRad        number   `json:"swept_rad"`
+	DeflectionRad   number   `json:"deflection_rad"`
+	ClosestR        number   `json:"closest_r"`
+	TravelTime      number   `json:"travel_time"`
+	Steps           int      `json:"steps"`
+	Evaluations     int      `json:"evaluations"`
+	BoundRad        number   `json:"bound_rad"`
+	ClosedFormSwept number   `json:"closed_form_swept_rad"`
+	DifferenceRad   number   `json:"difference_rad"`
+	NotIncluded     []string `json:"not_included"`
 }
 
 var traceUnits = map[string]string{
-	"observer_radius": "M", "impact": "M",
+	"object_radius": "M", "charge": "M", "observer_radius": "M", "impact": "M",
 	"swept_rad": "rad", "deflection_rad": "rad", "closest_r": "M", "travel_time": "M",
 	"bound_rad": "rad", "closed_form_swept_rad": "rad", "difference_rad": "rad",
 }
 
-// difference is integrated minus closed form; where both are infinite they
-// agree.
+// difference is integrated minus closed form, NaN where there is none; where
+// both are infinite they agree.
 func difference(story geodesic.Story) float64 {
 	if math.IsInf(story.Swept, 1) && math.IsInf(story.ClosedFormSwept, 1) {
 		return 0
@@ -178,19 +234,6 @@ func traceOne(s streams, o tracing) error {
 	if !o.observerRadius.given || !o.impact.given {
 		return refuse("trace needs --observer-radius and --impact, or --table")
 	}
-	radius := ""
-	if o.objectRadius.given {
-		radius = number(o.objectRadius.value).csv()
-	}
-	if err := checkObject(o.object, radius); err != nil {
-		return refuse("--object: %w", err)
-	}
-	if o.charge.given && o.charge.value != 0 {
-		return refuse("--charge %s: not in this version; allowed: 0", number(o.charge.value).csv())
-	}
-	if o.interiorGiven {
-		return refuse("--interior %s: a black hole has none, and stars are not in this version", o.interior)
-	}
 	if err := checkWorkers(o.workers); err != nil {
 		return err
 	}
@@ -199,14 +242,25 @@ func traceOne(s streams, o tracing) error {
 		Impact:         o.impact.value,
 		Tolerance:      o.tolerance.value,
 	}
-	story, err := traced(path)
+	known := bodies{}
+	centre, err := known.of(o.placing)
 	if err != nil {
 		return err
 	}
+	if err := centre.check(path); err != nil {
+		return err
+	}
+	story, err := centre.spacetime.Trace(path)
+	if err != nil {
+		return err
+	}
+	for _, n := range known.notes() {
+		s.note("%s", n)
+	}
 	report := traceReport{
-		Units:  traceUnits,
-		Object: "black-hole", ObserverRadius: number(path.ObserverRadius),
-		Impact: number(path.Impact), Tolerance: number(path.Tolerance),
+		Units: traceUnits, objectFields: centre.fields(),
+		ObserverRadius: number(path.ObserverRadius),
+		Impact:         number(path.Impact), Tolerance: number(path.Tolerance),
 		Fate: story.Fate.String(), FateFrom: "integration",
 		SweptRad: number(story.Swept), DeflectionRad: number(story.Deflection),
 		ClosestR: number(story.Closest), TravelTime: number(story.TravelTime),
@@ -222,7 +276,7 @@ func traceOne(s streams, o tracing) error {
 		return writeJSON(s.out, report)
 	}
 	defer s.note("%s", notIncludedLine)
-	return traceLines(s.out, report)
+	return traceLines(s.out, centre, report)
 }
 
 // closedFormBound is how far the closed form is held to, in radians, by the
@@ -231,7 +285,7 @@ const closedFormBound = 1e-12
 
 // traceLines prints a report for people, with the digits that the bound
 // supports.
-func traceLines(w io.Writer, r traceReport) error {
+func traceLines(w io.Writer, centre *body, r traceReport) error {
 	var b strings.Builder
 	line := func(what, format string, args ...any) {
 		fmt.Fprintf(&b, "%-17s %s\n", what, fmt.Sprintf(format, args...))
@@ -249,15 +303,24 @@ func traceLines(w io.Writer, r traceReport) error {
 		relative = max(relative, float64(r.BoundRad)/swept)
 	}
 	length := func(x number) string {
-		return honest(float64(x), relative*math.Abs(float64(x))) + " M"
+		const least = 1e-15 // M; less is the rounding of a path through the centre
+		return honest(float64(x), max(relative*math.Abs(float64(x)), least)) + " M"
 	}
 
-	if math.IsInf(float64(r.ObserverRadius), 1) {
+	line("object", "%s", centre.title())
+	switch observer := float64(r.ObserverRadius); {
+	case math.IsInf(observer, 1):
 		line("observer", "at infinity")
-	} else {
+	case observer < centre.spacetime.Edge():
+		line("observer", "static, r = %s M, within the shell", r.ObserverRadius.csv())
+	default:
 		line("observer", "static, r = %s M", r.ObserverRadius.csv())
 	}
-	line("impact parameter", "b = %s M, b/b_c - 1 = %.6g", r.Impact.csv(), geodesic.CriticalDistance(float64(r.Impact)))
+	impact := fmt.Sprintf("b = %s M", r.Impact.csv())
+	if centre.spacetime.Edge() < centre.spacetime.PhotonSphere() {
+		impact += fmt.Sprintf(", b/b_c - 1 = %.6g", centre.criticalDistance(float64(r.Impact)))
+	}
+	line("impact parameter", "%s", impact)
 	if r.FateFrom == "integration" {
 		line("fate", "%s", r.Fate)
 	} else {
@@ -270,14 +333,23 @@ func traceLines(w io.Writer, r traceReport) error {
 	line("closest approach", "r = %s", length(r.ClosestR))
 	if t := r.TravelTime; !math.IsNaN(float64(t)) {
 		text := length(t)
-		if math.IsInf(float64(r.ObserverRadius), 1) {
+		fromInfinity := math.IsInf(float64(r.ObserverRadius), 1)
+		within := float64(r.ObserverRadius) < centre.spacetime.Edge() // and so to infinity
+		switch {
+		case fromInfinity && r.Fate == geodesic.Escaped.String():
 			text += " (less r* of both ends)"
+		case fromInfinity || within:
+			text += " (less r* of the end at infinity)"
 		}
 		line("travel time", "%s", text)
 	}
 	line("error bound", "%.1e rad on the swept angle", float64(r.BoundRad))
-	line("closed form", "%s", angle(r.ClosedFormSwept, closedFormBound))
-	line("difference", "%.1e rad, integrated less closed form", float64(r.DifferenceRad))
+	if math.IsNaN(float64(r.ClosedFormSwept)) {
+		line("closed form", "none for a charged hole")
+	} else {
+		line("closed form", "%s", angle(r.ClosedFormSwept, closedFormBound))
+		line("difference", "%.1e rad, integrated less closed form", float64(r.DifferenceRad))
+	}
 	line("work", "%d steps, %d evaluations, tolerance %s", r.Steps, r.Evaluations, r.Tolerance.csv())
 	_, err := io.WriteString(w, b.String())
 	return err
@@ -285,21 +357,48 @@ func traceLines(w io.Writer, r traceReport) error {
 
 // request is one row of a table of paths.
 type request struct {
-	line int
-	path geodesic.Path
-	text string // the row as it was, for the output
+	line   int
+	centre *body
+	path   geodesic.Path
+	text   string // the row as it was, for the output
 }
 
 // The columns of trace --table.
 var (
 	traceRequired = []string{"observer_radius", "impact"}
-	traceOptional = []string{"object", "object_radius"}
+	traceOptional = []string{"object", "object_radius", "interior", "charge"}
 	traceAdded    = []string{"fate", "swept_rad", "closest_r", "difference_rad"}
 )
 
+// columnNames turns the flags that a message names into columns.
+var columnNames = strings.NewReplacer("--object-radius", "object_radius", "--", "")
+
+// placed reads what a row says of the object, in the terms of the flags.
+func placed(t *table, fields []string) (p placing, err error) {
+	p.object, p.interior = t.field(fields, "object"), t.field(fields, "interior")
+	if p.object == "" {
+		p.object = "black-hole"
+	}
+	read := func(column string, q *quantity) error {
+		text := t.field(fields, column)
+		if text == "" {
+			return nil
+		}
+		if q.value, err = parseLength(text); err != nil {
+			return fmt.Errorf("%s: %w", column, err)
+		}
+		q.given = true
+		return nil
+	}
+	if err := read("object_radius", &p.objectRadius); err != nil {
+		return p, err
+	}
+	return p, read("charge", &p.charge)
+}
+
 // readRequests reads the whole table before anything is traced, so that a
 // bad row writes nothing.
-func readRequests(t *table, tolerance float64) ([]request, error) {
+func readRequests(t *table, tolerance float64, known bodies) ([]request, error) {
 	var requests []request
 	for {
 		fields, line, err := t.next()
@@ -310,20 +409,33 @@ func readRequests(t *table, tolerance float64) ([]request, error) {
 			return nil, err
 		}
 		q := request{line: line, path: geodesic.Path{Tolerance: tolerance}, text: csvLine(fields)}
-		if err := checkObject(t.field(fields, "object"), t.field(fields, "object_radius")); err != nil {
-			return nil, t.wrong(line, "object", err)
+		object, err := placed(t, fields)
+		if err == nil {
+			q.centre, err = known.of(object)
 		}
-		if q.path.ObserverRadius, err = parseRadius(t.field(fields, "observer_radius")); err != nil {
+		if err != nil {
+			return nil, refuse("%s:%d: %s", t.name, line, columnNames.Replace(err.Error()))
+		}
+		if q.path.ObserverRadius, err = parseStation(t.field(fields, "observer_radius")); err != nil {
 			return nil, t.wrong(line, "observer_radius", err)
 		}
 		if q.path.Impact, err = parseImpact(t.field(fields, "impact")); err != nil {
 			return nil, t.wrong(line, "impact", err)
 		}
-		if err := checkPath(q.path); err != nil {
+		if err := q.centre.check(q.path); err != nil {
 			return nil, usage{fmt.Errorf("%s:%d: %w", t.name, line, err)}
 		}
 		requests = append(requests, q)
 	}
+}
+
+// trace follows the row's path.
+func (q request) trace(t *table) (geodesic.Story, error) {
+	story, err := q.centre.spacetime.Trace(q.path)
+	if err != nil {
+		return story, fmt.Errorf("%s:%d: %s", t.name, q.line, plain(err))
+	}
+	return story, nil
 }
 
 // csvLine joins fields, quoting those that need it.
@@ -350,33 +462,25 @@ func traceTable(ctx context.Context, s streams, o tracing) error {
 		return err
 	}
 	defer t.close()
-	requests, err := readRequests(t, o.tolerance.value)
+	known := bodies{}
+	requests, err := readRequests(t, o.tolerance.value, known)
 	if err != nil {
 		return err
 	}
-	columns := slices.Concat(t.columns, traceAdded)
-	var units map[string]string
-	if o.json {
-		units = map[string]string{}
-		for _, c := range columns {
-			if u, ok := traceUnits[c]; ok {
-				units[c] = u
-			}
-		}
-		units["object_radius"] = "M"
+	for _, n := range known.notes() {
+		s.note("%s", n)
 	}
-
 	out := bufio.NewWriterSize(s.out, 1<<16)
 	if o.json {
-		err = traceTableJSON(ctx, out, t, requests, o.workers, units)
+		err = traceTableJSON(ctx, out, t, requests, o.workers)
 	} else {
-		fmt.Fprintln(out, strings.Join(columns, ","))
+		fmt.Fprintln(out, strings.Join(slices.Concat(t.columns, traceAdded), ","))
 		err = inOrder(ctx, requests, o.workers, func(rows []request) ([]byte, error) {
 			var text []byte
 			for _, q := range rows {
-				story, err := traced(q.path)
+				story, err := q.trace(t)
 				if err != nil {
-					return nil, rowError(t, q, err)
+					return nil, err
 				}
 				text = append(text, q.text...)
 				text = append(text, ',')
@@ -405,20 +509,10 @@ func traceTable(ctx context.Context, s streams, o tracing) error {
 	return nil
 }
 
-// rowError says in which row of a table a path failed.
-func rowError(t *table, q request, err error) error {
-	wrapped := fmt.Errorf("%s:%d: %w", t.name, q.line, err)
-	if errors.As(err, new(usage)) {
-		return usage{wrapped}
-	}
-	return wrapped
-}
-
 // traceTableJSON prints the table as {"units":…, "rows":[…], "not_included":…}.
-func traceTableJSON(ctx context.Context, out io.Writer, t *table, requests []request, workers int, units map[string]string) error {
+func traceTableJSON(ctx context.Context, out io.Writer, t *table, requests []request, workers int) error {
 	type row struct {
-		Object         string `json:"object"`
-		ObjectRadius   number `json:"object_radius"`
+		objectFields
 		ObserverRadius number `json:"observer_radius"`
 		Impact         number `json:"impact"`
 		Fate           string `json:"fate"`
@@ -430,12 +524,12 @@ func traceTableJSON(ctx context.Context, out io.Writer, t *table, requests []req
 	err := inOrder(ctx, requests, workers, func(some []request) ([]row, error) {
 		made := make([]row, 0, len(some))
 		for _, q := range some {
-			story, err := traced(q.path)
+			story, err := q.trace(t)
 			if err != nil {
-				return nil, rowError(t, q, err)
+				return nil, err
 			}
 			made = append(made, row{
-				Object: "black-hole", ObjectRadius: number(math.NaN()),
+				objectFields:   q.centre.fields(),
 				ObserverRadius: number(q.path.ObserverRadius), Impact: number(q.path.Impact),
 				Fate: story.Fate.String(), SweptRad: number(story.Swept),
 				ClosestR: number(story.Closest), DifferenceRad: number(difference(story)),
@@ -448,6 +542,12 @@ func traceTableJSON(ctx context.Context, out io.Writer, t *table, requests []req
 	})
 	if err != nil {
 		return err
+	}
+	units := map[string]string{}
+	for _, column := range slices.Concat(traceOptional, traceRequired, traceAdded) {
+		if u, ok := traceUnits[column]; ok {
+			units[column] = u
+		}
 	}
 	return writeJSON(out, struct {
 		Units       map[string]string `json:"units"`

@@ -20,6 +20,10 @@ type Disk struct {
 	GPower float64
 }
 
+// Reads implements what raytrace asks of an emitter: k^r counts only where
+// the gas moves radially.
+func (d *Disk) Reads() Reads { return Reads{KR: d.Gas.Plunges(d.Inner)} }
+
 // Shade fills light for a block of crossings; see Light.
 func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, light *Light) {
 	light.Resize(len(at.R))
@@ -27,13 +31,18 @@ func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, lig
 	if d.Clockwise {
 		sense = -1
 	}
+	falls := d.Reads().KR
+	kr := 0.0
 	for k := range rays.Lambda {
 		for j := at.Start[k]; j < at.Start[k+1]; j++ {
 			r := at.R[j]
 			if at.Surface[j] != geodesic.Plane || r < d.Inner || r > d.Outer {
 				continue
 			}
-			g := d.Gas.RedshiftFactor(r, rays.GObs[k], rays.Lambda[k], at.KR[j], sense)
+			if falls {
+				kr = at.KR[j]
+			}
+			g := d.Gas.RedshiftFactor(r, rays.GObs[k], rays.Lambda[k], kr, sense)
 			light.Lit[j] = true
 			light.Opaque[j] = d.Thick
 			light.G[j] = g

@@ -23,3 +23,7 @@ func (l *Light) Resize(n int) {
 	clear(l.Lit)
 	clear(l.Opaque)
 }
+
+// Reads says which columns of the crossings an emitter looks at, beyond
+// Surface and R; what nobody reads need not be worked out.
+type Reads struct{ Place, KR, Delay bool }

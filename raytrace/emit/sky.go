@@ -56,6 +56,9 @@ const widestFootprint = 2
 // limit.
 const axisImpact = 1e-8
 
+// Reads implements what raytrace asks of an emitter.
+func (s *Sky) Reads() Reads { return Reads{Place: true} }
+
 // Shade fills light for a block of crossings; see Light. Mu is NaN. It needs
 // the crossings' Slope.
 func (s *Sky) Shade(rays *geodesic.Rays, at *geodesic.Crossings, pixels *Pixels, light *Light) {

@@ -42,6 +42,9 @@ func NewCap(colatitude, azimuth, size, brightness float64) Cap {
 	return Cap{sin, cos, azimuth * deg, math.Cos(size * deg), brightness}
 }
 
+// Reads implements what raytrace asks of an emitter.
+func (s *Surface) Reads() Reads { return Reads{Place: true, KR: true, Delay: s.Spin != 0} }
+
 // Shade fills light for a block of crossings; see Light.
 func (s *Surface) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, light *Light) {
 	light.Resize(len(at.R))

@@ -20,6 +20,7 @@ const patience = 3 * previewTime
 type Order struct {
 	Serial        int // changes with the scene or the pixel count; equal serials share a trace
 	Scene         scenes.Scene
+	Folder        string // of the scene file, from which images are taken
 	Columns, Rows int
 	Asked         time.Time // when the hand moved
 

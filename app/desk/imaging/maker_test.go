@@ -44,8 +44,12 @@ func (v benchView) Trace(ctx context.Context, coarsening int, _ func(raytrace.Pr
 
 func blank(p *raytrace.Plate) *image.RGBA { return image.NewRGBA(image.Rect(0, 0, p.Columns, p.Rows)) }
 
+// side of the ordered pictures, in pixels: too many for one quick trace at the
+// guessed speed.
+const side = 2400
+
 func order(serial int) Order {
-	return Order{Serial: serial, Columns: 600, Rows: 600, Asked: time.Now(), Develop: blank}
+	return Order{Serial: serial, Columns: side, Rows: side, Asked: time.Now(), Develop: blank}
 }
 
 // start returns a running maker and the frames it shows.
@@ -64,13 +68,13 @@ func start(t *testing.T) (*Maker, *bench, <-chan Frame) {
 func TestCoarseThenFull(t *testing.T) {
 	m, b, frames := start(t)
 	m.Ask(order(1))
-	for k, want := range []int{4, 1} { // 0.54 s at the guessed speed, 60 ms wanted
+	for k, want := range []int{4, 1} { // 0.58 s at the guessed speed, 60 ms wanted
 		if got := <-b.begun; got != want {
 			t.Fatalf("plate %d has coarsening %d, want %d", k, got, want)
 		}
 		b.release <- struct{}{}
 		f := <-frames
-		if f.Coarsening != want || f.Settled() != (want == 1) || f.Image.Rect != image.Rect(0, 0, 600, 600) {
+		if f.Coarsening != want || f.Settled() != (want == 1) || f.Image.Rect != image.Rect(0, 0, side, side) {
 			t.Errorf("frame %d: coarsening %d, settled %v, %v", k, f.Coarsening, f.Settled(), f.Image.Rect)
 		}
 	}

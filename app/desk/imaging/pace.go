@@ -12,7 +12,7 @@ const (
 	previewTime = 60 * time.Millisecond
 
 	// guessPerPixel is the speed assumed before anything was measured.
-	guessPerPixel = 1.5e-6 // seconds a pixel, all workers together
+	guessPerPixel = 1e-7 // seconds a pixel, all workers together
 
 	// rungRatio is how many times finer each picture is than the one
 	// before it; the finest then costs nine times the last but one.

@@ -14,6 +14,7 @@ type Document interface {
 	Set(key, value string) error
 	Text() []byte
 	Scene() scenes.Scene
+	Dir() string
 }
 
 // State is everything the window shows except the picture's pixels.
@@ -58,6 +59,9 @@ func (s *State) Saved(path string) {
 
 // Scene returns the scene as edited.
 func (s *State) Scene() scenes.Scene { return s.doc.Scene() }
+
+// Folder returns the folder that relative paths in the scene count from.
+func (s *State) Folder() string { return s.doc.Dir() }
 
 // Text returns the scene file as edited, comments kept.
 func (s *State) Text() []byte { return s.doc.Text() }
