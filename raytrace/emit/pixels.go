@@ -40,8 +40,6 @@ func (v Vector) mix(a float64, w Vector, b float64) Vector {
 
 func (v Vector) dot(w Vector) float64 { return v[0]*w[0] + v[1]*w[1] + v[2]*w[2] }
 
-func (v Vector) length() float64 { return math.Sqrt(v.dot(v)) }
-
 // direction is the unit vector at a polar angle and azimuth.
 func direction(cosTheta, phi float64) Vector {
 	sin, cos := math.Sincos(phi)
