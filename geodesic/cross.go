@@ -126,7 +126,7 @@ const (
 func (t *roundTracer) follow(b, kr, uStop float64) ending {
 	s, o := t.spacetime, &t.orbit
 	t.launch(b, kr)
-	if t.within && !t.pass(t.phase(b, kr), t.origin) {
+	if t.within && !t.pass(t.observer.Radius, kr/b, t.origin) {
 		return pastOrders
 	}
 	for {
@@ -135,8 +135,7 @@ func (t *roundTracer) follow(b, kr, uStop float64) ending {
 			return end
 		}
 		t.finish(s.edge)
-		w := math.Sqrt(max(s.speed2(b, s.edge), 0))
-		if !t.pass(-s.inside.HalfSweep(b, w), o.time0-o.leg*s.tortoise(s.edge)) {
+		if !t.pass(s.Edge(), s.speedBelowEdge(b), o.time0-o.leg*s.tortoise(s.edge)) {
 			return pastOrders
 		}
 	}

@@ -14,16 +14,16 @@ func newFlat(r float64) *flat { return &flat{r, math.Sqrt(1 - 2/r)} }
 // closest is the distance of the straight line from the centre.
 func (f *flat) closest(b float64) float64 { return b * f.lapse }
 
-func (f *flat) HalfSweep(b, w float64) float64 {
-	// cos of the half sweep is closest/R, its sin R-normalised √(1/b² - A/R²) b
-	return math.Atan2(b*w*f.radius, f.closest(b))
-}
-
 func (f *flat) Radius(b, phi float64) float64 { return f.closest(b) / math.Cos(phi) }
 
 func (f *flat) Phase(b, r, w float64) float64 { return math.Atan2(w, 1/r) }
 
+// PhaseSlope is that of cos φ = b √A/r.
+func (f *flat) PhaseSlope(b, r, w float64) float64 { return -1 / (r * b * w) }
+
 func (f *flat) Time(b, phi float64) float64 { return b * math.Tan(phi) }
+
+func (f *flat) TimeTo(b, r, w float64) float64 { return b * w * r }
 
 func (f *flat) Lapse(float64) float64 { return f.lapse }
 

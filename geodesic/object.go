@@ -22,17 +22,19 @@ type Round struct {
 // Interior is a region within an edge through which light passes from edge
 // to edge, symmetric about its closest approach. It is asked once or twice a
 // passage, never in a step. Angles phi are swept angles from the closest
-// approach; |phi| <= HalfSweep.
+// approach; w is |du/dψ| as measured inside.
 type Interior interface {
-	// HalfSweep is the angle from the edge to the closest approach of a
-	// path with impact parameter b and |du/dψ| = w just outside the edge.
-	HalfSweep(b, w float64) float64
 	// Radius is the radius at phi, M.
 	Radius(b, phi float64) float64
-	// Phase is |phi| at radius r, M, where |du/dψ| = w.
+	// Phase is |phi| at radius r, M, where |du/dψ| = w, and PhaseSlope its
+	// derivative with b at fixed r, 1/M.
 	Phase(b, r, w float64) float64
-	// Time is the coordinate time from the closest approach to phi, M; odd in phi.
+	PhaseSlope(b, r, w float64) float64
+	// Time is the coordinate time from the closest approach to phi, M; odd
+	// in phi. Nearly radial paths, all of whose phi lie close to ±π/2, are
+	// timed by TimeTo, the time to radius r, M, where |du/dψ| = w.
 	Time(b, phi float64) float64
+	TimeTo(b, r, w float64) float64
 	// Lapse is √-g_tt at r, M, and Ruler √g_rr.
 	Lapse(r float64) float64
 	Ruler(r float64) float64
@@ -60,7 +62,7 @@ func NewHole(charge float64) (*Round, error) {
 // transparent with a uniform density.
 func NewStar(r float64, uniform bool) (*Round, error) {
 	if !(r > BuchdahlRadius && r <= MaxRadius) {
-		return nil, fmt.Errorf("geodesic: star of radius %v M: want more than the Buchdahl limit, 9/4 M", r)
+		return nil, fmt.Errorf("geodesic: star of radius %v M: want more than the Buchdahl limit, 9/4 M, and at most %g M", r, MaxRadius)
 	}
 	s := &Round{edge: 1 / r, end: OnSurface, name: "star"}
 	if uniform {
@@ -73,7 +75,7 @@ func NewStar(r float64, uniform bool) (*Round, error) {
 // flat space inside.
 func NewShell(r float64) (*Round, error) {
 	if !(r > 2 && r <= MaxRadius) {
-		return nil, fmt.Errorf("geodesic: shell of radius %v M: want more than 2 M", r)
+		return nil, fmt.Errorf("geodesic: shell of radius %v M: want more than 2 M, and at most %g M", r, MaxRadius)
 	}
 	return &Round{edge: 1 / r, end: Trapped, inside: newFlat(r), name: "shell"}, nil
 }
@@ -93,10 +95,14 @@ func (s *Round) Edge() float64 { return 1 / s.edge }
 func (s *Round) lapse2(u float64) float64 { return 1 - u*(2-s.charge2*u) }
 
 // Lapse returns √-g_tt at r, the rate of a static clock there; 1 at
-// infinity, NaN within a horizon.
+// infinity, NaN within a horizon or an opaque surface.
 func (s *Round) Lapse(r float64) float64 {
-	if s.inside != nil && r*s.edge < 1 {
+	switch {
+	case r*s.edge >= 1:
+	case s.inside != nil:
 		return s.inside.Lapse(r)
+	default:
+		return math.NaN()
 	}
 	return math.Sqrt(s.lapse2(1 / r))
 }

@@ -118,7 +118,7 @@ func TestUniformInterior(t *testing.T) {
 		s := must(t)(NewStar(radius, true))
 		for _, share := range []float64{0.05, 0.4, 0.8, 0.99} {
 			b := share * min(CriticalImpact, radius/Lapse(radius))
-			half := in.HalfSweep(b, s.edgeSpeed(b))
+			half := s.halfSweep(b)
 			closest := in.Radius(b, 0)
 			near(t, fmt.Sprintf("R = %g: radius at the edge", radius), in.Radius(b, half), radius, 1e-11*radius)
 			near(t, "turning point", closest/in.Lapse(closest), b, 1e-12*b)
@@ -138,7 +138,9 @@ func TestUniformInterior(t *testing.T) {
 				return angle(v) * r * r / (b * n * n)
 			}
 			near(t, fmt.Sprintf("R = %g, b = %g: time", radius, b), in.Time(b, half), quad.Fixed(time, 0, end, 300, nil, 0), 1e-7)
-			near(t, "phase", in.Phase(b, in.Radius(b, 0.3*half), 0), 0.3*half, 1e-7)
+			r := in.Radius(b, 0.3*half)
+			near(t, "phase", in.Phase(b, r, s.speedWithin(b, r)), 0.3*half, 1e-12)
+			near(t, "time to a radius", in.TimeTo(b, r, s.speedWithin(b, r)), in.Time(b, 0.3*half), 1e-11*radius)
 		}
 		below := quad.Fixed(func(r float64) float64 { return in.Ruler(r) / in.Lapse(r) }, radius/3, radius, 200, nil, 0)
 		near(t, fmt.Sprintf("R = %g: tortoise", radius), in.TortoiseBelow(radius/3), below, 1e-11*below)

@@ -2,35 +2,31 @@ package geodesic
 
 import "math"
 
-// phase is the angle from the closest approach at which an observer within
-// the edge stands on its path: before it (negative) if the path is traced
-// inward first, kr > 0.
-func (t *roundTracer) phase(b, kr float64) float64 {
-	phi := t.spacetime.inside.Phase(b, t.observer.Radius, math.Abs(kr)/b)
-	if kr > 0 {
-		return -phi
-	}
-	return phi
-}
-
-// pass carries the path through the interior, from the angle phi before or
-// after its closest approach out to the edge, and puts the orbit there on an
-// outward leg. delay is that at phi. It returns false if the path went past
-// the orders asked for.
-func (t *roundTracer) pass(phi, delay float64) bool {
+// pass carries the path through the interior, from radius r, M, out to the
+// edge, and puts the orbit there on an outward leg. w is du/dψ at r, as
+// measured inside; the closest approach is still to come if it is positive.
+// delay is that at r. It returns false if the path went past the orders asked
+// for.
+func (t *roundTracer) pass(r, w, delay float64) bool {
 	s, o := t.spacetime, &t.orbit
 	in, b := s.inside, o.b
-	w := s.edgeSpeed(b)
-	half := in.HalfSweep(b, w)
-	halfSlope := slopeOf(b, func(b float64) float64 { return in.HalfSweep(b, s.edgeSpeed(b)) })
+	edge, wEdge := s.Edge(), s.edgeSpeed(b)
+	wWithin := s.speedBelowEdge(b)
+	half, halfSlope := in.Phase(b, edge, wWithin), in.PhaseSlope(b, edge, wWithin)
+	if wWithin == 0 {
+		halfSlope = 0 // it grazes: nothing of the path lies within
+	}
+	side := math.Copysign(1, -w)
+	phi := side * in.Phase(b, r, math.Abs(w))
 	var drift float64 // of phi with b at fixed ψ
-	if starts := t.within && o.psi == 0; starts {
-		drift = math.Copysign(1, phi) * slopeOf(b, t.phaseOf)
-	} else if o.w0 != 0 {
+	switch starts := t.within && o.psi == 0; {
+	case starts && w != 0:
+		drift = side * in.PhaseSlope(b, r, math.Abs(w))
+	case !starts && o.w0 != 0:
 		drift = o.p0/o.w0 - halfSlope
 	}
 	exit := o.psi + half - phi
-	clock := delay - in.Time(b, phi)
+	clock := delay - side*in.TimeTo(b, r, math.Abs(w))
 	for t.target <= exit {
 		at := phi + t.target - o.psi
 		t.recordWithin(at, drift, clock+in.Time(b, at))
@@ -41,13 +37,13 @@ func (t *roundTracer) pass(phi, delay float64) bool {
 	if phi < 0 {
 		t.closest = min(t.closest, in.Radius(b, 0))
 	}
-	o.psi, o.u0, o.w0, o.leg = exit, s.edge, -w, -1
+	o.psi, o.u0, o.w0, o.leg = exit, s.edge, -wEdge, -1
 	turn := halfSlope - drift // of the exit angle with b
-	o.p0, o.q0 = w*turn, 0
-	if w > 0 {
-		o.q0 = 1/(b*b*b*w) - bend(s.edge, o.curve)*turn
+	o.p0, o.q0 = wEdge*turn, 0
+	if wEdge > 0 {
+		o.q0 = 1/(b*b*b*wEdge) - bend(s.edge, o.curve)*turn
 	}
-	o.time0 = clock + in.Time(b, half) - s.tortoise(s.edge)
+	o.time0 = clock + in.TimeTo(b, edge, wWithin) - s.tortoise(s.edge)
 	t.pace.restart(b)
 	return exit <= t.limit
 }
@@ -55,16 +51,22 @@ func (t *roundTracer) pass(phi, delay float64) bool {
 // edgeSpeed is |du/dψ| just outside the edge.
 func (s *Round) edgeSpeed(b float64) float64 { return math.Sqrt(max(s.speed2(b, s.edge), 0)) }
 
+// speedBelowEdge is |du/dψ| just inside the edge, where w √(-g_tt g_rr) has
+// the value that it has outside, √(1/b² - A/r²).
+func (s *Round) speedBelowEdge(b float64) float64 {
+	r := s.Edge()
+	return s.edgeSpeed(b) / (s.inside.Lapse(r) * s.inside.Ruler(r))
+}
+
+// halfSweep is the angle from the edge to the closest approach inside.
+func (s *Round) halfSweep(b float64) float64 {
+	return s.inside.Phase(b, s.Edge(), s.speedBelowEdge(b))
+}
+
 // speedWithin is |du/dψ| at r in the interior, from w² g_rr = 1/(b² A) - u².
 func (s *Round) speedWithin(b, r float64) float64 {
 	lapse := s.inside.Lapse(r)
 	return math.Sqrt(max(1/(lapse*lapse*b*b)-1/(r*r), 0)) / s.inside.Ruler(r)
-}
-
-// phaseOf is the size of phase for another impact parameter.
-func (t *roundTracer) phaseOf(b float64) float64 {
-	r := t.observer.Radius
-	return t.spacetime.inside.Phase(b, r, t.spacetime.speedWithin(b, r))
 }
 
 // slopeOf is df/db by a central difference, right to about 1e-10 where f is

@@ -116,7 +116,8 @@ func (s *Round) delta(r float64) float64 {
 	return max(math.FMA(r, r-2, s.charge2), 0)
 }
 
-// stationLapse is √-g_tt; NaN nowhere.
+// stationLapse is Lapse with delta taken exactly near the edge; NaN where
+// nothing can stand.
 func (s *Round) stationLapse(r float64) float64 {
 	switch s.place(r) {
 	case outside:

@@ -39,7 +39,7 @@ type Story struct {
 	// distance, or it came out on the other side. Fate, Swept and Closest
 	// are then the closed form's.
 	FateByClosedForm bool
-	Swept            float64 // radians, from the observer to the end
+	Swept            float64 // radians, from the observer to the end; NaN if only a charged hole's fate could be told
 	Deflection       float64 // radians; NaN unless escaped and the observer is at infinity
 	Closest          float64 // smallest r on the path, M; the edge's if it ends there
 	TravelTime       float64 // M; NaN unless escaped or on a surface; less r* at every end that is at infinity
@@ -77,7 +77,13 @@ func (s *Round) Trace(p Path) (Story, error) {
 		story.FateByClosedForm = true
 		story.Swept, story.Closest = math.Inf(1), p.Impact*s.inside.Lapse(p.ObserverRadius)
 		return story, nil
-	case p.Impact < radial && s.inside == nil:
+	case p.Impact < radial && s.inside == nil: // straight in
+		if s.end == OnSurface {
+			story.TravelTime = -s.tortoise(s.edge)
+			if t.uObs > 0 {
+				story.TravelTime += s.Tortoise(p.ObserverRadius)
+			}
+		}
 		return story, nil
 	}
 	uStop := t.uObs
@@ -91,9 +97,6 @@ func (s *Round) Trace(p Path) (Story, error) {
 		return Story{}, fmt.Errorf("geodesic: b = %v M from r = %v M: %w after %d", p.Impact, p.ObserverRadius, ErrSteps, maxSteps)
 	}
 	t.settle(end, uStop, &story)
-	if math.IsNaN(closedSwept) {
-		return story, nil
-	}
 	decided := s.end != Captured || t.pace.local() < math.Abs(s.criticalDistance(p.Impact))
 	if story.Fate != closedFate || !decided {
 		story.FateByClosedForm = true
@@ -101,7 +104,7 @@ func (s *Round) Trace(p Path) (Story, error) {
 		story.Bound = closedFormBound(p.Impact)
 		story.TravelTime, story.Closest = math.NaN(), s.Edge()
 		if closedFate == Escaped {
-			story.Closest = Periapsis(p.Impact)
+			story.Closest = s.periapsis(p.Impact)
 		}
 	}
 	if story.Fate == Escaped && uStop == 0 && !t.within {
@@ -119,6 +122,9 @@ func (t *roundTracer) settle(end ending, uStop float64, story *Story) {
 	} else {
 		story.Fate = Escaped
 		story.Closest = t.closest
+		if o.b <= radial { // through the centre
+			story.Closest = 0
+		}
 		t.finish(uStop)
 	}
 	story.Swept = o.psi
@@ -143,6 +149,15 @@ func (s *Round) inwardKR(p Path) float64 {
 	}
 	u := 1 / p.ObserverRadius
 	return math.Sqrt(max(1-p.Impact*p.Impact*u*u*s.lapse2(u), 0))
+}
+
+// periapsis is Periapsis for an uncharged object; NaN for a charged one, for
+// which there is no closed form here.
+func (s *Round) periapsis(b float64) float64 {
+	if s.charge2 > 0 {
+		return math.NaN()
+	}
+	return Periapsis(b)
 }
 
 // closedFormBound is what SweptToEnd promises, radians.
@@ -188,7 +203,7 @@ func (s *Round) SweptToEnd(p Path) (Fate, float64) {
 		}
 		r := max(p.ObserverRadius, centreRadius)
 		return Escaped, s.inside.Phase(b, r, s.speedWithin(b, r)) +
-			s.inside.HalfSweep(b, s.edgeSpeed(b)) + o.Sweep(0, s.edge)
+			s.halfSweep(b) + o.Sweep(0, s.edge)
 	}
 	if o.scattering && uObs < 1./3 && o.u2 <= s.edge { // turns outside the edge
 		return Escaped, 2 * o.Sweep(min(uObs, o.u2), o.u2)
@@ -196,5 +211,5 @@ func (s *Round) SweptToEnd(p Path) (Fate, float64) {
 	if s.inside == nil {
 		return s.end, o.Sweep(uObs, s.edge)
 	}
-	return Escaped, 2 * (o.Sweep(uObs, s.edge) + s.inside.HalfSweep(b, s.edgeSpeed(b)))
+	return Escaped, 2 * (o.Sweep(uObs, s.edge) + s.halfSweep(b))
 }

@@ -29,15 +29,21 @@ func newUniform(r float64) *uniform {
 	return u
 }
 
-func (f *uniform) HalfSweep(b, w float64) float64 {
-	return math.Atan2(f.big*w, (1/f.edge-f.edge)/2)
-}
-
-func (f *uniform) Phase(b, r, w float64) float64 {
+// legs returns the sides of the right angle whose angle is the phase at r,
+// √(B²/b² - 1) sin φ, taken from w so that it keeps its digits where it
+// vanishes, and √(B²/b² - 1) cos φ.
+func (f *uniform) legs(r, w float64) (sin, cos float64) {
 	x := r / f.a
 	q := x / (1 + math.Sqrt(1-x*x)) / f.unit
-	d, k2 := (1/q-q)/2, f.big*f.big/(b*b)-1
-	return math.Atan2(math.Sqrt(max(k2-d*d, 0)), d)
+	return f.big * f.Lapse(r) * f.Ruler(r) * w, (1/q - q) / 2
+}
+
+func (f *uniform) Phase(b, r, w float64) float64 { return math.Atan2(f.legs(r, w)) }
+
+func (f *uniform) PhaseSlope(b, r, w float64) float64 {
+	sin, cos := f.legs(r, w)
+	ratio := f.big / b
+	return -cos * ratio * ratio / (b * (ratio*ratio - 1) * sin)
 }
 
 func (f *uniform) Radius(b, phi float64) float64 {
@@ -52,6 +58,11 @@ func (f *uniform) Radius(b, phi float64) float64 {
 
 func (f *uniform) Time(b, phi float64) float64 {
 	sin, cos := math.Sincos(phi)
+	return f.big * math.Atan2(b*sin, f.big*cos)
+}
+
+func (f *uniform) TimeTo(b, r, w float64) float64 {
+	sin, cos := f.legs(r, w)
 	return f.big * math.Atan2(b*sin, f.big*cos)
 }
 
