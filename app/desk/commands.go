@@ -209,7 +209,7 @@ func develop(p *raytrace.Plate, curve tone.Curve) *image.RGBA {
 		panic("desk: the colour map ember is missing")
 	}
 	out := image.NewRGBA(image.Rect(0, 0, p.Columns, p.Rows))
-	if err := (tone.Tone{Curve: curve}).Apply(out, p.Total, p.Columns, p.Rows, ember); err != nil {
+	if err := (tone.Tone{Curve: curve, FromZero: true}).Apply(out, p.Total, p.Columns, p.Rows, ember); err != nil {
 		panic("desk: " + err.Error()) // sizes fit by construction
 	}
 	return out

@@ -41,6 +41,9 @@ func (t Tone) percentiles(values []float32) (lo, hi float64) {
 	if !some {
 		return 0, 1
 	}
+	if t.FromZero && hi > 0 {
+		lo = min(lo, 0)
+	}
 	return lo, hi
 }
 

@@ -91,6 +91,8 @@ func TestLimits(t *testing.T) {
 	}{
 		{"zero tone", Tone{}, values, 1, 8},
 		{"zeros counted", Tone{CountZeros: true}, values, 0, 8},
+		{"from zero", Tone{FromZero: true}, values, 0, 8},
+		{"from zero, negative too", Tone{FromZero: true}, []float32{-2, 1, 8}, -2, 8},
 		{"percentiles", Tone{LowPercent: 30, HighPercent: 75}, values, 2, 4},
 		{"fixed", Tone{Low: -1, High: 3}, values, -1, 3},
 		{"centre", Tone{Centre: 1, Low: 0.5, High: 1.2}, values, 0.5, 1.5},

@@ -43,6 +43,11 @@ type Tone struct {
 	// the field must not change the picture of the rest.
 	CountZeros bool
 
+	// FromZero starts the map at zero where the percentiles would start it
+	// above: for an intensity, which means nothing but by its ratio to the
+	// dark. Not on a logarithmic curve.
+	FromZero bool
+
 	// Centre, in the layer's unit, is put at the middle of the map by
 	// widening the limits to equal distances on both sides: 1 for a layer of
 	// g under a diverging map. Zero means none. Linear only.

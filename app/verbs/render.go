@@ -100,7 +100,7 @@ func newRender(s streams) *cobra.Command {
 	f.StringVar(&o.layer, "layer", "intensity", "what to show: "+layerWords())
 	f.StringVar(&o.order, "order", "", "image `ORDER` 0, 1, …; intensity also total (its default; else 0)")
 	f.StringVar(&o.curve, "curve", "", "value to colour: "+strings.Join(tone.CurveWords(), ", ")+" (default by layer)")
-	f.StringVar(&o.limits, "limits", "", "ends of the colour map, `LOW:HIGH` or P1%:P2% (default 0%:99.9%)")
+	f.StringVar(&o.limits, "limits", "", "ends of the colour map, `LOW:HIGH` or P1%:P2% (default 0%:99.9%, an intensity from 0)")
 	f.StringVar(&o.colours, "map", "", "colour map: "+strings.Join(assets.Names(), ", ")+" (default by layer)")
 	f.IntVar(&o.depth, "depth", 8, "bits a component, 8 or 16")
 	f.IntVar(&o.workers, "workers", 0, "tiles traced at a time; 0 means one a processor")
@@ -133,6 +133,7 @@ func (o rendering) choose() (p picture, err error) {
 			return p, refuse("--curve: %w", err)
 		}
 	}
+	p.tone.FromZero = p.kind.layer == raytrace.Intensity && o.limits == ""
 	if p.tone.Curve == tone.Linear && o.limits == "" {
 		p.tone.Centre = p.kind.centre
 	}
