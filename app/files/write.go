@@ -10,6 +10,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"strings"
 	"syscall"
 )
 
@@ -117,6 +118,11 @@ func (l whileLive) Write(p []byte) (int, error) {
 		return 0, err
 	}
 	return l.w.Write(p)
+}
+
+// IsTemporary says whether a file of that name is what a killed Write left.
+func IsTemporary(name string) bool {
+	return strings.HasPrefix(name, temporaryPrefix) && strings.HasSuffix(name, temporarySuffix)
 }
 
 // temporaryFor returns a fresh hidden name in the folder of path.

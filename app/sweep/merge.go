@@ -1,0 +1,120 @@
+package sweep
+
+import (
+	"context"
+	"encoding/csv"
+	"errors"
+	"fmt"
+	"io"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"strconv"
+
+	"annulet/app/files"
+)
+
+// Merge writes what a sweep has come to so far: the manifest with the states
+// of all cases, and the merged table. When every case is finished and nobody
+// is at work it also takes away the claims and what killed processes left.
+func Merge(ctx context.Context, dir string, m *Manifest) (Count, error) {
+	records, count := Survey(dir, m, false)
+	merged := *m
+	merged.Cases = make([]Listing, len(m.Cases))
+	for k, r := range records {
+		if r.State == Running { // by the time anyone reads it, it may not be
+			r.State = Waiting
+		}
+		merged.Cases[k] = Listing{m.Cases[k].Case, r.State, r.Reason, r.Files}
+	}
+	if err := merged.writeTable(ctx, dir, records); err != nil {
+		return count, err
+	}
+	if err := merged.write(ctx, dir); err != nil {
+		return count, err
+	}
+	if count[Waiting]+count[Running] == 0 {
+		return count, sweepUp(dir)
+	}
+	return count, nil
+}
+
+// tableName is the merged table.
+const tableName = "table.csv"
+
+// writeTable writes a row for every case: its name, what varies, its state,
+// and its columns; the union of all cases' columns in the order in which
+// they first come. Units stand in the header in brackets.
+func (m *Manifest) writeTable(ctx context.Context, dir string, records []Record) error {
+	var keys []string
+	seen := map[string]bool{}
+	for _, c := range m.Cases {
+		for _, s := range c.Set {
+			if !seen[s.Key] {
+				seen[s.Key] = true
+				keys = append(keys, s.Key)
+			}
+		}
+	}
+	var columns []Column
+	at := map[string]int{}
+	for _, r := range records {
+		for _, c := range r.Columns {
+			if _, known := at[c.Name]; !known {
+				at[c.Name] = len(columns)
+				columns = append(columns, c)
+			}
+		}
+	}
+	return files.Write(ctx, filepath.Join(dir, tableName), 0o666, func(w io.Writer) error {
+		out := csv.NewWriter(w)
+		header := append(append([]string{"case"}, keys...), "state")
+		for _, c := range columns {
+			if c.Unit != "" {
+				c.Name += " [" + c.Unit + "]"
+			}
+			header = append(header, c.Name)
+		}
+		if err := out.Write(header); err != nil {
+			return err
+		}
+		for k, r := range records {
+			row := make([]string, len(header))
+			row[0], row[1+len(keys)] = m.Cases[k].Name, string(m.Cases[k].State)
+			for _, s := range m.Cases[k].Set {
+				for i, key := range keys {
+					if key == s.Key {
+						row[1+i] = s.Value
+					}
+				}
+			}
+			for _, c := range r.Columns {
+				if c.Value != nil {
+					row[2+len(keys)+at[c.Name]] = strconv.FormatFloat(*c.Value, 'g', -1, 64)
+				}
+			}
+			if err := out.Write(row); err != nil {
+				return err
+			}
+		}
+		out.Flush()
+		return out.Error()
+	})
+}
+
+// sweepUp removes the claims folder and the temporary files that killed
+// processes left.
+func sweepUp(dir string) error {
+	if err := os.RemoveAll(filepath.Join(dir, claimsFolder)); err != nil {
+		return err
+	}
+	return filepath.WalkDir(dir, func(path string, e fs.DirEntry, err error) error {
+		if err != nil || e.IsDir() || !files.IsTemporary(e.Name()) {
+			return err
+		}
+		if err := os.Remove(path); err != nil && !errors.Is(err, fs.ErrNotExist) {
+			return fmt.Errorf("what a killed process left: %w", err)
+		}
+		return nil
+	})
+}
