@@ -10,6 +10,7 @@ import (
 	"os"
 	"path/filepath"
 	"strconv"
+	"time"
 
 	"annulet/app/files"
 )
@@ -18,6 +19,22 @@ import (
 // of all cases, and the merged table. When every case is finished and nobody
 // is at work it also takes away the claims and what killed processes left.
 func Merge(ctx context.Context, dir string, m *Manifest) (Count, error) {
+	c := openClaims(dir)
+	defer c.close()
+	for { // one process at a time: each takes away what it thinks is litter
+		mine, err := c.take(mergeClaim)
+		if err != nil {
+			return nil, err
+		}
+		if mine != nil {
+			break
+		}
+		select {
+		case <-ctx.Done():
+			return nil, ctx.Err()
+		case <-time.After(pollEvery):
+		}
+	}
 	records, count := Survey(dir, m, false)
 	merged := *m
 	merged.Cases = make([]Listing, len(m.Cases))
@@ -38,6 +55,9 @@ func Merge(ctx context.Context, dir string, m *Manifest) (Count, error) {
 	}
 	return count, nil
 }
+
+// mergeClaim is no case's name: these begin with a digit.
+const mergeClaim = "merge"
 
 // tableName is the merged table.
 const tableName = "table.csv"
@@ -102,13 +122,10 @@ func (m *Manifest) writeTable(ctx context.Context, dir string, records []Record)
 	})
 }
 
-// sweepUp removes the claims folder and the temporary files that killed
-// processes left.
+// sweepUp removes the temporary files that killed processes left and, last,
+// the claims.
 func sweepUp(dir string) error {
-	if err := os.RemoveAll(filepath.Join(dir, claimsFolder)); err != nil {
-		return err
-	}
-	return filepath.WalkDir(dir, func(path string, e fs.DirEntry, err error) error {
+	err := filepath.WalkDir(dir, func(path string, e fs.DirEntry, err error) error {
 		if err != nil || e.IsDir() || !files.IsTemporary(e.Name()) {
 			return err
 		}
@@ -117,4 +134,5 @@ func sweepUp(dir string) error {
 		}
 		return nil
 	})
+	return errors.Join(err, os.RemoveAll(filepath.Join(dir, claimsFolder)))
 }

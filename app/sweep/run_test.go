@@ -145,6 +145,7 @@ func undisturbed(t *testing.T) map[string]string {
 
 func worker(dir string, pause time.Duration) *exec.Cmd {
 	cmd := exec.Command(os.Args[0])
+	cmd.Stderr = os.Stderr
 	cmd.Env = append(os.Environ(), "ANNULET_SWEEP_WORKER="+dir, "ANNULET_SWEEP_PAUSE="+pause.String())
 	return cmd
 }
