@@ -16,8 +16,7 @@ const (
 func (b *builder) memory() {
 	pixels, maxOrder := b.get("field", 0, "pixels"), b.get("trace", 0, "max_order")
 	columns, rows := pixels.numbers[0].value, pixels.numbers[1].value // float64: their product may pass every integer
-	orders := b.scene.Trace.MaxOrder + 1
-	perPixel := (layersOnce + layersPerOrder*orders) * bytesPerValue
+	perPixel := b.scene.bytesPerPixel()
 	need := columns * rows * float64(perPixel)
 	if need <= memoryLimit {
 		return
@@ -28,7 +27,7 @@ func (b *builder) memory() {
 	}
 	b.failAt(blame, Error{
 		Problem: fmt.Sprintf("the image would need %s of memory, %d bytes for each of %.0f x %.0f pixels with max_order %d",
-			gibibytes(need), perPixel, columns, rows, orders-1),
+			gibibytes(need), perPixel, columns, rows, b.scene.Trace.MaxOrder),
 		Allowed: "at most " + gibibytes(memoryLimit),
 	})
 }
@@ -39,4 +38,13 @@ func gibibytes(n float64) string {
 		return fmt.Sprintf("%.4g TiB", n/(1<<40))
 	}
 	return fmt.Sprintf("%.4g GiB", n/(1<<30))
+}
+
+// PlateBytes is the memory of the scene's image with all layers, in bytes.
+func (s Scene) PlateBytes() float64 {
+	return float64(s.Field.Pixels[0]) * float64(s.Field.Pixels[1]) * float64(s.bytesPerPixel())
+}
+
+func (s Scene) bytesPerPixel() int {
+	return (layersOnce + layersPerOrder*(s.Trace.MaxOrder+1)) * bytesPerValue
 }

@@ -1,0 +1,208 @@
+package verbs
+
+import (
+	"context"
+	"fmt"
+	"io"
+	"slices"
+	"strings"
+	"sync"
+	"time"
+
+	"annulet/app/files"
+	"annulet/app/sweep"
+	"annulet/raytrace"
+	"annulet/scenes"
+)
+
+// sweepProduct is one thing that a sweep makes of every case.
+type sweepProduct struct {
+	name   string
+	layers []raytrace.Layer // that it reads, beside the total
+	make   func(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error
+}
+
+// sweepProducts are all of them; a further one is one line here.
+var sweepProducts = []sweepProduct{
+	{"image", []raytrace.Layer{raytrace.Intensity}, writeCaseImage},
+	{"layers", []raytrace.Layer{raytrace.Redshift, raytrace.Radius, raytrace.Azimuth, raytrace.Delay, raytrace.Mu}, writeCaseLayers},
+	{"picture", []raytrace.Layer{}, writeCasePicture},
+}
+
+var defaultProducts = []string{"image"}
+
+func productNames() (names []string) {
+	for _, p := range sweepProducts {
+		names = append(names, p.name)
+	}
+	return names
+}
+
+func checkProducts(products []string) error {
+	for k, p := range products {
+		if !slices.Contains(productNames(), p) {
+			return refuse("product %q: allowed: %s", p, strings.Join(productNames(), ", "))
+		}
+		if slices.Contains(products[:k], p) {
+			return refuse("product %q is asked for twice", p)
+		}
+	}
+	return nil
+}
+
+// kitchen makes cases. Cases with the same object, observer's radius and
+// tolerance share their orbits.
+type kitchen struct {
+	products []sweepProduct
+	layers   []raytrace.Layer
+	workers  int // of one case
+
+	mu     sync.Mutex
+	orbits map[string]*raytrace.Orbits
+	recent []string // keys of orbits, oldest first
+}
+
+// keptOrbits is for how many observers orbits are kept, some MiB each. Taste.
+const keptOrbits = 8
+
+func newKitchen(products []string, workers int) *kitchen {
+	k := &kitchen{workers: workers, orbits: map[string]*raytrace.Orbits{}, layers: []raytrace.Layer{}}
+	for _, p := range sweepProducts {
+		if slices.Contains(products, p.name) {
+			k.products = append(k.products, p)
+			k.layers = append(k.layers, p.layers...)
+		}
+	}
+	return k
+}
+
+// make is a sweep.Produce.
+func (k *kitchen) make(ctx context.Context, job *sweep.Job) error {
+	scene := job.Document.Scene()
+	view, err := raytrace.NewViewIn(scene, job.Document.Dir())
+	if err != nil {
+		return err
+	}
+	view.Orbits = k.orbitsOf(scene)
+	plate, err := view.Render(ctx, raytrace.Options{Workers: k.workers, Layers: k.layers})
+	if err != nil {
+		return err
+	}
+	bound := plate.WorstBound
+	job.Column("worst_bound_r", "relative", &bound)
+	for _, p := range k.products {
+		if err := p.make(ctx, job, plate); err != nil {
+			return fmt.Errorf("%s: %w", p.name, err)
+		}
+	}
+	return nil
+}
+
+// orbitsOf finds the orbits that a scene shares with others.
+func (k *kitchen) orbitsOf(s scenes.Scene) *raytrace.Orbits {
+	o := s.Object
+	key := fmt.Sprint(o.Kind, o.Charge, o.Radius, o.Interior, s.Observer.Radius, s.Observer.Motion,
+		s.Field.Projection, s.Trace.Tolerance, s.Trace.MaxOrder)
+	k.mu.Lock()
+	defer k.mu.Unlock()
+	if found := k.orbits[key]; found != nil {
+		return found
+	}
+	if len(k.recent) == keptOrbits {
+		delete(k.orbits, k.recent[0])
+		k.recent = k.recent[1:]
+	}
+	k.recent = append(k.recent, key)
+	k.orbits[key] = new(raytrace.Orbits)
+	return k.orbits[key]
+}
+
+// writeCaseImage writes the intensities: total, and per order.
+func writeCaseImage(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error {
+	return writeCaseNPZ(ctx, job, "image", func(n *files.NPZ) error {
+		if err := n.Float32("total", plate.Total, plate.Rows, plate.Columns); err != nil {
+			return err
+		}
+		return stackOrders(n, "intensity", plate, raytrace.Intensity)
+	})
+}
+
+// writeCaseLayers writes everything else that the plate holds.
+func writeCaseLayers(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error {
+	return writeCaseNPZ(ctx, job, "layers", func(n *files.NPZ) error {
+		for _, kind := range layerKinds {
+			if kind.layer == raytrace.Intensity {
+				continue
+			}
+			if err := stackOrders(n, kind.word, plate, kind.layer); err != nil {
+				return err
+			}
+		}
+		return nil
+	})
+}
+
+// stackOrders writes one layer as orders, rows, columns; row 0 at the bottom.
+// Azimuths are in radians, as the plate has them.
+func stackOrders(n *files.NPZ, name string, plate *raytrace.Plate, layer raytrace.Layer) error {
+	stack := make([]float32, 0, plate.Orders*len(plate.Total))
+	for order := range plate.Orders {
+		stack = append(stack, plate.Layer(layer, order)...)
+	}
+	if layer == raytrace.Azimuth {
+		name += "_rad"
+	}
+	return n.Float32(name, stack, plate.Orders, plate.Rows, plate.Columns)
+}
+
+func writeCaseNPZ(ctx context.Context, job *sweep.Job, product string, fill func(*files.NPZ) error) error {
+	return job.Write(ctx, product, ".npz", func(w io.Writer) error {
+		n := files.NewNPZ(w)
+		if err := fill(n); err != nil {
+			return err
+		}
+		if err := n.Text("scene", string(job.Document.Text())); err != nil {
+			return err
+		}
+		return n.Close()
+	})
+}
+
+// writeCasePicture writes what render writes by default.
+func writeCasePicture(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error {
+	p, err := rendering{layer: "intensity", depth: 8}.choose()
+	if err != nil {
+		return err
+	}
+	img, err := p.paint(p.values(plate), plate.Columns, plate.Rows)
+	if err != nil {
+		return err
+	}
+	return job.Write(ctx, "picture", ".png", func(w io.Writer) error { return encodePNG(w, img, job.Document) })
+}
+
+// sweepProgress prints how far a sweep is, every few seconds.
+type sweepProgress struct {
+	w     io.Writer
+	begun time.Time
+	next  time.Time
+}
+
+func newSweepProgress(w io.Writer) *sweepProgress {
+	now := time.Now()
+	return &sweepProgress{w: w, begun: now, next: now.Add(lineEvery)}
+}
+
+func (p *sweepProgress) report(t sweep.Tally) {
+	now := time.Now()
+	if now.Before(p.next) {
+		return
+	}
+	p.next = now.Add(lineEvery)
+	left := ""
+	if t.Made > 0 {
+		each := now.Sub(p.begun) / time.Duration(t.Made)
+		left = fmt.Sprintf(", about %v left", (time.Duration(t.Waiting) * each).Round(time.Second))
+	}
+	fmt.Fprintf(p.w, "sweep: %d of %d cases done, %d failed%s\n", t.Done, t.Cases, t.Failed, left)
+}
