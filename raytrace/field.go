@@ -111,14 +111,36 @@ func (f Field) direction(alpha, beta float64) geodesic.Direction {
 
 // tileCenters appends the screen coordinates of a tile's pixel centres, row
 // by row.
-func (f Field) tileCenters(tile image.Rectangle, at [][2]float64) [][2]float64 {
+func (f *Field) tileCenters(tile image.Rectangle, at [][2]float64) [][2]float64 {
+	first := len(at)
 	for row := tile.Min.Y; row < tile.Max.Y; row++ {
+		_, beta := f.PixelCenter(0, row)
 		for column := tile.Min.X; column < tile.Max.X; column++ {
-			alpha, beta := f.PixelCenter(column, row)
-			at = append(at, [2]float64{alpha, beta})
+			at = append(at, [2]float64{0, beta})
+		}
+	}
+	columns := tile.Dx()
+	for k := range columns { // every row has the same α
+		alpha, _ := f.PixelCenter(tile.Min.X+k, 0)
+		for i := first + k; i < len(at); i += columns {
+			at[i][0] = alpha
 		}
 	}
 	return at
+}
+
+// directions appends the lines of sight of screen coordinates.
+func (f *Field) directions(screen [][2]float64, to []geodesic.Direction) []geodesic.Direction {
+	if f.Projection == Parallel {
+		for _, p := range screen {
+			to = append(to, geodesic.Direction{Alpha: p[0], Beta: p[1]})
+		}
+		return to
+	}
+	for _, p := range screen {
+		to = append(to, f.direction(p[0], p[1]))
+	}
+	return to
 }
 
 // coarsened is the same field in pixels k times as wide, anchored at the

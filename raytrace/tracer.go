@@ -52,10 +52,7 @@ func (v *View) want(kept layerSet) geodesic.Want {
 // of its rays were integrated one by one.
 func (b *bench) follow(want geodesic.Want) (integrated int, err error) {
 	v := b.view
-	b.dirs = b.dirs[:0]
-	for _, p := range b.screen {
-		b.dirs = append(b.dirs, v.Field.direction(p[0], p[1]))
-	}
+	b.dirs = v.Field.directions(b.screen, b.dirs[:0])
 	if err := b.aim(&b.rays); err != nil {
 		return 0, err
 	}

@@ -148,7 +148,7 @@ func newRoot(s streams) *cobra.Command {
 	root.CompletionOptions.DisableDefaultCmd = true
 	root.AddCommand(
 		newTrace(s), newProbe(s), newRender(s), newScene(s),
-		newStations(s), newSweep(s),
+		newStations(s), newSweep(s), newBench(s),
 		newVersion(s), newCompletion(s), newMan(s),
 	)
 	return root
