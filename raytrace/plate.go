@@ -21,6 +21,7 @@ type Plate struct {
 	Columns, Rows, Orders int
 	Total                 []float32   // intensity summed over orders, Rows·Columns, row 0 at the bottom
 	layers                [][]float32 // nil where not kept
+	firstRow              int         // of the field: 0, or where a strip begins
 	Paths                 int         // light paths followed
 	Integrated            int         // of these, integrated one by one and not interpolated between shared orbits
 	WorstBound            float64     // largest relative bound on r of any crossing of the disk plane shown
@@ -56,9 +57,7 @@ func newPlate(columns, rows, orders int, kept layerSet) *Plate {
 		}
 		p.layers[k] = make([]float32, size)
 		if l != Intensity {
-			for i := range p.layers[k] {
-				p.layers[k][i] = nothing
-			}
+			fill(p.layers[k], nothing)
 		}
 	}
 	return p
@@ -71,4 +70,31 @@ func newPlate(columns, rows, orders int, kept layerSet) *Plate {
 // not asked for are nil.
 func (p *Plate) Layer(l Layer, order int) []float32 {
 	return p.layers[order*int(layerCount)+int(l)]
+}
+
+// emptied returns a plate in the memory of p, which has at least that many
+// rows, on which nothing shines.
+func (p *Plate) emptied(rows int) *Plate {
+	q := &Plate{Columns: p.Columns, Rows: rows, Orders: p.Orders, layers: p.layers}
+	size := p.Columns * rows
+	q.Total = p.Total[:size]
+	clear(q.Total)
+	for k, values := range p.layers {
+		if values == nil {
+			continue
+		}
+		q.layers[k] = values[:size]
+		if Layer(k%int(layerCount)) == Intensity {
+			clear(q.layers[k])
+		} else {
+			fill(q.layers[k], float32(math.NaN()))
+		}
+	}
+	return q
+}
+
+func fill(values []float32, x float32) {
+	for k := range values {
+		values[k] = x
+	}
 }

@@ -2,6 +2,7 @@ package raytrace
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"image"
 	"runtime"
@@ -37,12 +38,23 @@ type Progress struct {
 // about four milliseconds even path by path.
 const defaultTileSide = 32
 
+// ErrMemory: a plate would be too large to be held whole; Strips renders it.
+var ErrMemory = errors.New("the image is too large to be held whole")
+
+// plateLimit bounds the plate that Render makes, in bytes. Taste: more than
+// a careless request should take, less than a usual machine has.
+const plateLimit = 8 << 30
+
 // Render traces and shades the whole field. Tiles are handed out from the
 // middle of the field outwards, to any number of workers, with the same
 // plate bit for bit. It stops within a tile when ctx ends, with an error
 // that wraps ctx.Err().
 func (v *View) Render(ctx context.Context, o Options) (*Plate, error) {
 	kept := keep(o.Layers)
+	if need := v.PlateBytes(o); need > plateLimit {
+		return nil, fmt.Errorf("raytrace: %w: %.4g GiB for %d x %d pixels and the layers asked for, more than %d GiB",
+			ErrMemory, float64(need)/(1<<30), v.Field.Columns, v.Field.Rows, plateLimit>>30)
+	}
 	plate := newPlate(v.Field.Columns, v.Field.Rows, v.Plan.MaxOrder+1, kept)
 	want := v.want(kept)
 	tiles := tilesOutward(plate.Columns, plate.Rows, o.tileSide())
@@ -157,7 +169,7 @@ func (b *bench) exposeTile(tile image.Rectangle, plate *Plate) (worst bounds) {
 	k := 0
 	for row := tile.Min.Y; row < tile.Max.Y; row++ {
 		for column := tile.Min.X; column < tile.Max.X; column++ {
-			b.expose(k, row*plate.Columns+column, plate, &worst)
+			b.expose(k, (row-plate.firstRow)*plate.Columns+column, plate, &worst)
 			k++
 		}
 	}

@@ -2,7 +2,9 @@ package scenes
 
 import "fmt"
 
-// memoryLimit bounds the float32 layers of a plate, in bytes.
+// memoryLimit bounds one float32 layer of an image, in bytes. Larger images
+// are no use to anybody yet; whether all layers that a request keeps fit is
+// for those to say who keep them.
 const memoryLimit = 4 << 30
 
 // Layers of a plate: the total, and intensity g r phi delay mu of each order.
@@ -12,22 +14,17 @@ const (
 	bytesPerValue  = 4 // float32
 )
 
-// memory refuses a plate too large, and says how large.
+// memory refuses an image too large, and says how large.
 func (b *builder) memory() {
-	pixels, maxOrder := b.get("field", 0, "pixels"), b.get("trace", 0, "max_order")
+	pixels := b.get("field", 0, "pixels")
 	columns, rows := pixels.numbers[0].value, pixels.numbers[1].value // float64: their product may pass every integer
-	perPixel := b.scene.bytesPerPixel()
-	need := columns * rows * float64(perPixel)
+	need := columns * rows * bytesPerValue
 	if need <= memoryLimit {
 		return
 	}
-	blame := pixels
-	if !pixels.given {
-		blame = maxOrder
-	}
-	b.failAt(blame, Error{
-		Problem: fmt.Sprintf("the image would need %s of memory, %d bytes for each of %.0f x %.0f pixels with max_order %d",
-			gibibytes(need), perPixel, columns, rows, b.scene.Trace.MaxOrder),
+	b.failAt(pixels, Error{
+		Problem: fmt.Sprintf("one layer of the image would need %s of memory, %d bytes for each of %.0f x %.0f pixels",
+			gibibytes(need), bytesPerValue, columns, rows),
 		Allowed: "at most " + gibibytes(memoryLimit),
 	})
 }

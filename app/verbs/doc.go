@@ -1,5 +1,5 @@
-// Package verbs is the command line: trace, probe, render, scene and the
-// small ones, shared by the programs annulet and annulet-batch.
+// Package verbs is the command line: trace, probe, render, stations, sweep,
+// bench, scene and the small ones, shared by the programs annulet and annulet-batch.
 //
 // A verb prints its result on stdout, and notes, warnings and progress on
 // stderr. With --json stdout holds one JSON document and nothing else. Numbers

@@ -62,10 +62,15 @@ const sceneKeyword = "Annulet scene"
 
 // encodePNG writes a picture that carries its scene.
 func encodePNG(w io.Writer, img image.Image, d *scenes.Document) error {
-	return files.EncodePNG(w, img, []files.Text{
+	return files.EncodePNG(w, img, pngTexts(d))
+}
+
+// pngTexts are the texts of a picture.
+func pngTexts(d *scenes.Document) []files.Text {
+	return []files.Text{
 		{Keyword: "Title", Value: d.Scene().Title},
 		{Keyword: "Software", Value: "Annulet " + Version},
 		{Keyword: "Comment", Value: notIncludedLine},
 		{Keyword: sceneKeyword, Value: string(d.Text())},
-	})
+	}
 }

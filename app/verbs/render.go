@@ -3,7 +3,6 @@ package verbs
 import (
 	"fmt"
 	"image"
-	"io"
 	"math"
 	"os"
 	"path/filepath"
@@ -17,7 +16,6 @@ import (
 	"annulet/app/tone"
 	"annulet/assets"
 	"annulet/raytrace"
-	"annulet/scenes"
 )
 
 // layerKind is one of the layers that a picture can show.
@@ -157,6 +155,22 @@ func (o rendering) choose() (p picture, err error) {
 	return p, checkWorkers(o.workers)
 }
 
+// depth is bits a component.
+func (p picture) depth() int {
+	if p.deep {
+		return 16
+	}
+	return 8
+}
+
+// layers are those of the plate that the picture needs beside the total.
+func (p picture) layers() []raytrace.Layer {
+	if p.order == total {
+		return []raytrace.Layer{}
+	}
+	return []raytrace.Layer{p.kind.layer}
+}
+
 // values picks the layer, in the unit of the picture.
 func (p picture) values(plate *raytrace.Plate) []float32 {
 	if p.order == total {
@@ -251,25 +265,21 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	if err := checkOutputs(o.out, scenePath); err != nil {
 		return err
 	}
+	for _, n := range scene.Notes() {
+		s.note("%s", n)
+	}
+	view, err := raytrace.NewViewIn(scene, document.Dir())
+	if err != nil {
+		return usage{err}
+	}
 	begun := time.Now()
-	plate, err := tracePlate(cmd, s, scene, document.Dir(), o.workers)
+	job := renderJob{s: s, view: view, picture: p, document: document, options: raytrace.Options{Workers: o.workers, Layers: p.layers()}, hold: holdBytes}
+	plate, err := job.write(cmd.Context(), o.out)
 	if err != nil {
 		return err
 	}
-	values := p.values(plate)
-	low, high := p.tone.Limits(values)
-	p.tone.Centre = 0
-	p.tone.Low, p.tone.High = low, high
-	img, err := p.paint(values, plate.Columns, plate.Rows)
-	if err != nil {
-		return err
-	}
-	for _, path := range o.out {
-		err := writeFile(cmd.Context(), path, func(w io.Writer) error { return encodePNG(w, img, document) })
-		if err != nil {
-			return err
-		}
-	}
+	p.tone = job.picture.tone
+	low, high := p.tone.Low, p.tone.High
 
 	s.note("%d x %d pixels, %d paths, worst bound on r %.1e relative, %.2f s",
 		plate.Columns, plate.Rows, plate.Paths, plate.WorstBound, time.Since(begun).Seconds())
@@ -290,19 +300,4 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 		report.Order = &p.order
 	}
 	return writeJSON(s.out, report)
-}
-
-// tracePlate renders the scene and shows progress.
-func tracePlate(cmd *cobra.Command, s streams, scene scenes.Scene, folder string, workers int) (*raytrace.Plate, error) {
-	for _, n := range scene.Notes() {
-		s.note("%s", n)
-	}
-	view, err := raytrace.NewViewIn(scene, folder)
-	if err != nil {
-		return nil, usage{err}
-	}
-	shown := newProgress(s.err)
-	shown.begin(view.Field.Columns, view.Field.Rows)
-	defer shown.end()
-	return view.Render(cmd.Context(), raytrace.Options{Workers: workers, Report: shown.report})
 }

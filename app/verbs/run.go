@@ -131,10 +131,11 @@ func programName() string {
 func newRoot(s streams) *cobra.Command {
 	root := &cobra.Command{
 		Use:   programName(),
-		Short: "lensed images of gas around a black hole",
-		Long: "Annulet traces light around a black hole: single paths, lines of sight\n" +
-			"through a scene, whole images. SCENE is a TOML file or a built-in scene,\n" +
-			"named with an @ (see scene list).\n\n" + notIncludedLine,
+		Short: "lensed images of gas around a compact object",
+		Long: "Annulet traces light around a black hole, a star or a shell: single paths,\n" +
+			"lines of sight through a scene, whole images, and grids of them; and tells\n" +
+			"clocks, rulers and light times at any radius. SCENE is a TOML file or a built-in\n" +
+			"scene, named with an @ (see scene list).\n\n" + notIncludedLine,
 		Version:       Version,
 		SilenceUsage:  true,
 		SilenceErrors: true,

@@ -8,9 +8,9 @@ import (
 
 // threadTime is the processor time that the calling thread has used.
 func threadTime() time.Duration {
-	var u unix.Rusage
-	if err := unix.Getrusage(unix.RUSAGE_THREAD, &u); err != nil {
+	var t unix.Timespec
+	if err := unix.ClockGettime(unix.CLOCK_THREAD_CPUTIME_ID, &t); err != nil {
 		panic(err) // the arguments are constants
 	}
-	return time.Duration(u.Utime.Nano() + u.Stime.Nano())
+	return time.Duration(t.Nano())
 }
