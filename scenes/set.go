@@ -12,6 +12,7 @@ import (
 type Assignment struct {
 	Path  string // "observer.inclination", "emitter.outer" for the first emitter, "emitter.2.outer" for the second
 	Value string // TOML of the key's type, or else the bare text: 75, 75deg, "75 deg", horizon
+	Unset bool   // instead take the key out of the text, with the comment on its line
 }
 
 // Set changes one key and keeps every comment and all other bytes; a key or
@@ -19,8 +20,11 @@ type Assignment struct {
 // be named, which adds it. When the result would not be a right scene the
 // document stays as it was and the error is of type *Error.
 func (d *Document) Set(path, value string) error {
-	return d.SetAll(Assignment{path, value})
+	return d.SetAll(Assignment{Path: path, Value: value})
 }
+
+// Unset takes a key out of the text, so that its default holds.
+func (d *Document) Unset(path string) error { return d.SetAll(Assignment{Path: path, Unset: true}) }
 
 // SetAll makes several changes as one: only their result need be a right
 // scene.
@@ -75,6 +79,9 @@ func edit(text []byte, a Assignment) (address, []byte, *Error) {
 	}
 	if n := src.count(target.section); target.index > n {
 		return target, nil, &Error{Problem: "no such emitter; the scene has " + strconv.Itoa(n)}
+	}
+	if a.Unset {
+		return target, src.removeKey(target), nil
 	}
 	return target, src.assign(target, tomlFor(key, a.Value)), nil
 }

@@ -152,17 +152,17 @@ func TestSetRefusalsChangeNothing(t *testing.T) {
 
 func TestSetAllIsOneChange(t *testing.T) {
 	d := parse(t, "schema = 1\n")
-	perspective := Assignment{"field.projection", "perspective"}
+	perspective := Assignment{Path: "field.projection", Value: "perspective"}
 	if err := d.SetAll(perspective); err == nil {
 		t.Fatal("perspective from infinity is accepted")
 	}
-	if err := d.SetAll(perspective, Assignment{"observer.radius", "10"}); err != nil {
+	if err := d.SetAll(perspective, Assignment{Path: "observer.radius", Value: "10"}); err != nil {
 		t.Fatal(err)
 	}
 	if s := d.Scene(); s.Field.Projection != "perspective" || s.Observer.Radius != 10 {
 		t.Errorf("scene %+v", s)
 	}
-	err := d.SetAll(Assignment{"observer.radius", "20"}, Assignment{"emitter.inner", "30"})
+	err := d.SetAll(Assignment{Path: "observer.radius", Value: "20"}, Assignment{Path: "emitter.inner", Value: "30"})
 	if err == nil || !strings.HasPrefix(err.Error(), "--set emitter.inner: the inner rim") {
 		t.Errorf("error %v", err)
 	}
