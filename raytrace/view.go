@@ -29,7 +29,7 @@ func NewView(s scenes.Scene) (*View, error) { return NewViewIn(s, "") }
 // NewViewIn is NewView with the folder from which paths of images are taken:
 // that of the scene file.
 func NewViewIn(s scenes.Scene, folder string) (*View, error) {
-	object, err := newObject(s.Object)
+	object, err := NewObject(s.Object)
 	if err != nil {
 		return nil, fmt.Errorf("raytrace: %w", err)
 	}
@@ -102,8 +102,9 @@ func newObserver(o scenes.Observer) (geodesic.Observer, error) {
 	return observer, nil
 }
 
-// newObject is the one line a kind of object takes here.
-func newObject(o scenes.Object) (*geodesic.Round, error) {
+// NewObject returns the spacetime of a scene's object; this is the one line
+// that a kind of object takes here.
+func NewObject(o scenes.Object) (*geodesic.Round, error) {
 	switch o.Kind {
 	case "black-hole":
 		return geodesic.NewHole(o.Charge)

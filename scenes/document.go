@@ -14,6 +14,7 @@ type Document struct {
 	mark  []byte // byte order mark, or empty
 	text  []byte // without the mark
 	scene Scene
+	taken *source // text taken apart, when somebody has asked
 }
 
 // byteOrderMark may stand before UTF-8; some editors write it.
@@ -53,6 +54,18 @@ func (d *Document) Scene() Scene { return d.scene.clone() }
 
 // Text returns a copy of the text, to the byte as read and edited.
 func (d *Document) Text() []byte { return slices.Concat(d.mark, d.text) }
+
+// source returns the text taken apart.
+func (d *Document) source() *source {
+	if d.taken == nil {
+		src, err := parseSource(d.name, d.text)
+		if err != nil {
+			panic("scenes: a document's text is not right: " + err.Error())
+		}
+		d.taken = src
+	}
+	return d.taken
+}
 
 // parseScene checks the text and builds its scene.
 func parseScene(name string, text []byte) (Scene, *Error) {

@@ -15,10 +15,7 @@ func (d *Document) Written(path string) (value string, given bool) {
 	if err != nil {
 		return "", false
 	}
-	src, err := parseSource(d.name, d.text)
-	if err != nil {
-		return "", false
-	}
+	src := d.source()
 	for _, e := range src.entries {
 		if e.address == target {
 			if e.value.kind == kindText {
@@ -108,10 +105,7 @@ func (d *Document) SwapEmitters(index int) error {
 // moveEmitters takes the blocks of the emitters out of the text, arranges
 // them and puts them back where the first one stood.
 func (d *Document) moveEmitters(index int, arrange func([][]byte) [][]byte) error {
-	src, err := parseSource(d.name, d.text)
-	if err != nil {
-		return err
-	}
+	src := d.source()
 	if n := src.count("emitter"); index < 0 || index >= n {
 		return &Error{File: d.name, Key: "emitter", Problem: "no such emitter; the scene has " + strconv.Itoa(n)}
 	}
@@ -148,7 +142,7 @@ func (d *Document) moveEmitters(index int, arrange func([][]byte) [][]byte) erro
 	if err != nil {
 		return err
 	}
-	d.text, d.scene = text, fresh
+	d.text, d.scene, d.taken = text, fresh, nil
 	return nil
 }
 

@@ -56,7 +56,7 @@ func (d *Document) SetAll(assignments ...Assignment) error {
 		err.Setting, err.File, err.Line, err.Column, err.Excerpt = given, "", 0, 0, ""
 		return err
 	}
-	d.text, d.scene = text, scene
+	d.text, d.scene, d.taken = text, scene, nil
 	return nil
 }
 

@@ -7,8 +7,10 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/dialog"
+	"fyne.io/fyne/v2/theme"
 
 	"annulet/app/desk/imaging"
+	"annulet/app/desk/overlay"
 	"annulet/app/desk/state"
 	"annulet/app/tone"
 	"annulet/assets"
@@ -25,11 +27,26 @@ type commands struct {
 	view   *view
 	log    *log
 	maker  *imaging.Maker
-	prober *imaging.Prober
+	asker  *imaging.Latest[inquiry, finding]
 
-	asked     dialog.Dialog // the last one shown
-	spot      *image.Point  // column and row of the pixel that the readings are of; nil for none yet
-	requested int           // Serial of the last order
+	asked      dialog.Dialog // the last one shown
+	checks     []func() bool // bring check marks of the menu up to date; true if one changed
+	tool       tool
+	pointer    *pixel           // under the pointer, nil for elsewhere
+	requested  int              // Serial of the last order
+	appearance state.Appearance // of it
+	frame      *imaging.Frame
+	found      *finding
+
+	frameShown time.Duration  // from the order to the picture
+	traceError string         // why the latest scene could not be traced
+	whole      raytrace.Field // the scene's, at the picture's pixels
+}
+
+// pixel is one pixel of the picture.
+type pixel struct {
+	at          [2]float64
+	column, row int
 }
 
 func newCommands(a fyne.App, w fyne.Window, s *state.State, l *log) *commands {
@@ -39,120 +56,122 @@ func newCommands(a fyne.App, w fyne.Window, s *state.State, l *log) *commands {
 	c.maker = imaging.NewMaker(func(o imaging.Order) (imaging.View, error) { return ready.of(o) },
 		func(f imaging.Frame) { inbox.put(func(n *news) { n.frame = &f }) },
 		func(done, tiles int) { inbox.put(func(n *news) { n.done, n.tiles = done, tiles }) })
-	c.prober = imaging.NewProber(ready.probe,
-		func(f imaging.Found) { inbox.put(func(n *news) { n.found = &f }) })
-	c.view = newView(w, s, c)
+	c.asker = imaging.NewLatest(ready.inquire, func(f finding) { inbox.put(func(n *news) { n.found = &f }) })
+	c.build()
 	return c
+}
+
+// build makes the widgets, anew when the theme has changed.
+func (c *commands) build() {
+	c.view = newView(c.window, c.state, c)
+	c.sync()
 }
 
 // start begins to work, until ctx ends.
 func (c *commands) start(ctx context.Context) {
 	go c.maker.Run(ctx)
-	go c.prober.Run(ctx)
+	go c.asker.Run(ctx)
 }
 
-func (c *commands) slide(k *state.Control, position float64) {
-	if c.state.Slide(k, position) {
-		c.request()
-	}
-	c.view.sync(c.state)
-}
-
-func (c *commands) step(k *state.Control, stops int) {
-	if c.state.Step(k, stops) {
-		c.request()
-	}
-	c.view.sync(c.state)
-}
-
-func (c *commands) typed(k *state.Control, text string) {
-	c.state.Type(k, text)
-	c.view.sync(c.state)
-}
-
-func (c *commands) submit(k *state.Control, text string) {
-	if c.state.Submit(k, text) {
-		c.request()
-	}
-	if k.Wrong != "" {
-		c.log.wrong(k.Key, text, k.Wrong)
-	}
-	c.view.sync(c.state)
-}
-
-func (c *commands) restore(k *state.Control) {
-	c.state.Restore(k)
-	c.view.sync(c.state)
-}
-
-func (c *commands) choose(k *state.Choice, option int) {
-	if c.state.Choose(k, option) {
-		c.request()
-	}
-	c.view.sync(c.state)
-}
-
-func (c *commands) setTone(curve tone.Curve) {
-	if curve == c.state.Tone {
+// sync shows the state, and orders what is not yet shown.
+func (c *commands) sync() {
+	if c.view == nil {
 		return
 	}
-	c.state.Tone = curve
+	c.view.sync(c.state, c.tool)
 	c.request()
-	c.view.sync(c.state)
-}
-
-func (c *commands) help(text string) { c.view.setHelp(text) }
-
-func (c *commands) dismiss() {
-	c.state.Notice = ""
-	c.view.sync(c.state)
-}
-
-func (c *commands) space(columns, rows int) {
-	if c.state.Resize(columns, rows) && c.view != nil {
-		c.request()
-		c.view.picture.want(c.state.Picture())
-	}
-}
-
-func (c *commands) point(column, row int) {
-	c.spot = &image.Point{X: column, Y: row}
-	c.probe()
+	c.showTable()
+	c.syncMenu()
 }
 
 // order asks for the picture of the scene as it is now.
 func (c *commands) order() imaging.Order {
 	columns, rows := c.state.Picture()
-	curve := c.state.Tone
-	return imaging.Order{
-		Serial: c.state.Serial(), Scene: c.state.Scene(), Folder: c.state.Folder(), Columns: columns, Rows: rows, Asked: time.Now(),
-		Develop: func(p *raytrace.Plate) *image.RGBA { return develop(p, curve) },
+	l := c.state.Look
+	scene := c.state.Scene()
+	o := imaging.Order{
+		Serial: c.state.Serial(), Scene: scene, Folder: c.state.Folder(), Columns: columns, Rows: rows, Asked: time.Now(),
+		Shown: imaging.Window{Center: [2]float64{l.Window.Alpha, l.Window.Beta}, Width: l.Window.Width},
+		Own:   l.Own, Layers: layersOf(l),
+		Develop: func(p *raytrace.Plate) imaging.Developed {
+			return imaging.Develop(imaging.Values(p, l.Layer, l.Order), p.Columns, p.Rows, toneOf(l), coloursOf(l.Layer))
+		},
 	}
+	if l.Overlays != (state.Overlays{}) {
+		font, scale := theme.DefaultTheme().Font(fyne.TextStyle{}).Content(), float64(c.window.Canvas().Scale())
+		o.Ink = func(p *raytrace.Plate, of, shown raytrace.Field) *image.RGBA {
+			drawn, err := overlay.Draw(overlay.Order{Scene: scene, Look: l, Plate: p, Of: of, Shown: shown, Font: font, Scale: scale})
+			if err != nil {
+				panic("desk: " + err.Error()) // only the font could be wrong
+			}
+			return drawn
+		}
+	}
+	return o
 }
 
-// request orders the picture, and the readings of the pixel that was pointed
-// at.
+// layersOf are the layers that a look needs beside the total.
+func layersOf(l state.Look) []raytrace.Layer {
+	layers := []raytrace.Layer{}
+	if l.Layer != raytrace.Intensity || l.Order != state.AllOrders {
+		layers = append(layers, l.Layer)
+	}
+	return append(layers, overlay.Layers(l.Overlays)...)
+}
+
+// coloursOf returns the colour map of a layer.
+func coloursOf(l raytrace.Layer) *assets.Map {
+	name := "ember"
+	if l == raytrace.Redshift {
+		name = "shift"
+	}
+	m, ok := assets.Lookup(name)
+	if !ok {
+		panic("desk: the colour map " + name + " is missing")
+	}
+	return m
+}
+
+// toneOf returns the tone of the layer shown.
+func toneOf(l state.Look) tone.Tone {
+	set := l.Tone()
+	t := tone.Tone{Curve: set.Curve}
+	if l.Layer != raytrace.Intensity {
+		t.CountZeros = true
+		t.LowPercent, t.HighPercent = 0.2, 99.8 // without a few extremes
+	}
+	if l.Layer == raytrace.Redshift && set.Curve == tone.Linear {
+		t.Centre = 1
+	}
+	if set.Fixed {
+		t.Low, t.High, t.Centre = set.Low, set.High, 0
+	}
+	return t
+}
+
+// request orders the picture, and the readings.
 func (c *commands) request() {
 	o := c.order()
 	if o.Columns == 0 || o.Rows == 0 {
 		return // the window has no size yet
 	}
-	c.maker.Ask(o)
+	if seen := c.state.Look.Appearance(); c.requested != o.Serial || seen != c.appearance {
+		c.appearance = seen
+		c.maker.Ask(o)
+	}
 	if c.requested != o.Serial {
 		c.requested = o.Serial
-		c.probe()
+		c.inquire(o)
 	}
 }
 
-// probe orders the readings of the pixel that was pointed at.
-func (c *commands) probe() {
-	if c.spot == nil {
-		return
+// inquire asks for the readings.
+func (c *commands) inquire(o imaging.Order) {
+	q := inquiry{order: o, look: c.state.Look}
+	if p := c.pointer; p != nil {
+		q.pointer, q.column, q.row = &p.at, p.column, p.row
 	}
-	spot := imaging.Spot{Order: c.order(), Column: c.spot.X, Row: c.spot.Y}
-	if spot.Column < spot.Order.Columns && spot.Row < spot.Order.Rows {
-		c.prober.Ask(&spot)
-	}
+	c.asker.Ask(q)
 }
 
 // receive shows what work has brought.
@@ -174,43 +193,47 @@ func (c *commands) receiveFrame(f imaging.Frame) {
 	if f.Err != nil {
 		if latest {
 			c.state.Notice = f.Err.Error()
-			c.view.sync(c.state)
+			c.traceError = f.Err.Error()
+			c.view.sync(c.state, c.tool)
 			c.view.setPicked("not traced")
 		}
 		c.log.frame(f, name, latest)
 		return
 	}
-	c.view.picture.show(f.Image)
+	if latest && c.traceError != "" { // it belongs to an earlier scene
+		if c.state.Notice == c.traceError {
+			c.state.Notice = ""
+		}
+		c.traceError = ""
+		c.view.sync(c.state, c.tool)
+	}
+	shown := time.Since(f.Order.Asked)
+	c.frame, c.frameShown = &f, shown
+	c.view.picture.show(f.Image, f.Ink, f.Shown)
+	l := c.state.Look
+	c.view.tones.show(f.Developed, toneOf(l), coloursOf(l.Layer))
 	c.view.setPicked(state.Picture{
-		Scene: f.Order.Scene, Width: f.Width,
+		Scene: f.Order.Scene, Width: f.Shown.Width,
 		Columns: f.Plate.Columns, Rows: f.Plate.Rows, Coarsening: f.Coarsening,
 		Traced: f.Traced, WorstBound: f.Plate.WorstBound,
 	}.Describe())
+	if c.state.Look.Tab == state.TabNumerics && f.Settled() {
+		c.showTable()
+	}
+	if c.state.Look.Graph == state.GraphOrders && f.Settled() {
+		c.showGraphNow()
+	}
 	if c.log.on() {
 		afterPaint(func() { c.log.frame(f, name, latest) })
 	}
 }
 
-func (c *commands) receiveFound(f imaging.Found) {
-	if f.Err != nil {
-		c.view.setReadings("no reading:\n" + f.Err.Error())
-		return
+func (c *commands) receiveFound(f finding) {
+	if f.err == nil {
+		c.whole = f.whole
 	}
-	c.view.setReadings(state.Readings(f.Spot.Order.Scene, state.Sight{
-		Alpha: f.Alpha, Beta: f.Beta, Impact: f.Impact, Readings: f.Readings,
-	}))
+	c.found = &f
+	c.showTable()
+	c.showGraphNow()
 	c.log.found(f)
-}
-
-// develop colours a plate; it runs off the window's thread.
-func develop(p *raytrace.Plate, curve tone.Curve) *image.RGBA {
-	ember, ok := assets.Lookup("ember")
-	if !ok {
-		panic("desk: the colour map ember is missing")
-	}
-	out := image.NewRGBA(image.Rect(0, 0, p.Columns, p.Rows))
-	if err := (tone.Tone{Curve: curve, FromZero: true}).Apply(out, p.Total, p.Columns, p.Rows, ember); err != nil {
-		panic("desk: " + err.Error()) // sizes fit by construction
-	}
-	return out
 }

@@ -15,7 +15,9 @@ type entry struct {
 	onDone    func(text string) // Enter, or the focus left
 	onStep    func(stops int)   // arrow and page keys
 	onRestore func()            // Escape
+	onFocus   func(has bool)    // nil for nobody
 	setting   bool              // the program, not the hand, changes the text
+	shown     string            // the last text that the program set
 	focused   bool
 	fresh     bool // the mouse button that goes up has given the focus
 }
@@ -39,6 +41,7 @@ func newEntry() *entry {
 
 // set shows a text.
 func (e *entry) set(text string) {
+	e.shown = text
 	if text == e.Text {
 		return
 	}
@@ -83,6 +86,9 @@ func (e *entry) FocusGained() {
 	e.focused = true
 	e.Entry.FocusGained()
 	e.selectAll()
+	if e.onFocus != nil {
+		e.onFocus(true)
+	}
 }
 
 // selectAll makes the next key replace the value.
@@ -92,4 +98,7 @@ func (e *entry) FocusLost() {
 	e.focused = false
 	e.Entry.FocusLost()
 	e.onDone(e.Text)
+	if e.onFocus != nil {
+		e.onFocus(false)
+	}
 }

@@ -11,7 +11,7 @@ import (
 // news is what work has to tell the window: the latest of each kind.
 type news struct {
 	frame       *imaging.Frame
-	found       *imaging.Found
+	found       *finding
 	done, tiles int // of a long trace; tiles is 0 for no news
 }
 

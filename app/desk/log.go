@@ -54,10 +54,19 @@ func (l *log) frame(f imaging.Frame, scene string, latest bool) {
 		f.Traced.Milliseconds(), time.Since(f.Order.Asked).Milliseconds())
 }
 
-// found logs the readings of a pixel that are being shown.
-func (l *log) found(f imaging.Found) {
-	l.line("reading column=%d row=%d alpha=%.6g beta=%.6g b=%.6g crossings=%d",
-		f.Spot.Column, f.Spot.Row, f.Alpha, f.Beta, f.Impact, len(f.Readings))
+// found logs the readings of the pixel under the pointer that are being
+// shown.
+func (l *log) found(f finding) {
+	if p := f.pointer; p != nil {
+		l.line("reading column=%d row=%d alpha=%.6g beta=%.6g b=%.6g crossings=%d",
+			f.inquiry.column, f.inquiry.row, p.Alpha, p.Beta, p.Impact, len(p.Readings))
+	}
+	if m := f.marker; m != nil {
+		l.line("marked alpha=%.6g beta=%.6g crossings=%d", m.Alpha, m.Beta, len(m.Readings))
+	}
+	if g := f.graph; g != nil {
+		l.line("graphed title=%q curves=%d", g.Title, len(g.Curves))
+	}
 }
 
 // logPlaces logs where the hand finds things, in screen pixels from the
@@ -69,9 +78,25 @@ func (v *view) logPlaces(l *log) {
 		at, size := driver.AbsolutePositionForObject(o), o.Size()
 		return fmt.Sprintf("%.0f,%.0f,%.0f,%.0f", at.X*scale, at.Y*scale, size.Width*scale, size.Height*scale)
 	}
-	for _, r := range v.rows {
-		l.line("place key=%s entry=%s slider=%s", r.control.Key, place(r.entry), place(r.slider))
+	for _, r := range v.panel.rows {
+		if r.entry != nil && !v.panel.folded[r.control.Group] {
+			l.line("place key=%s entry=%s slider=%s", r.control.Key, place(r.entry), place(r.slider))
+		}
+		for k, o := range r.control.Options {
+			if !v.panel.folded[r.control.Group] {
+				l.line("place key=%s option=%q word=%s", r.control.Key, o.Label, place(r.choice.words[k]))
+			}
+		}
 	}
+	for _, s := range []*segments{v.top.layers, v.top.orders, v.top.overlays, v.top.tools, v.tones.curves, v.side.tabs, v.side.graphs} {
+		for _, w := range s.all() {
+			l.line("place say=%q word=%s", w.label, place(w))
+		}
+	}
+	for _, w := range []*word{v.top.whole, v.tones.automatic} {
+		l.line("place say=%q word=%s", w.label, place(w))
+	}
+	l.line("place stations=%s", place(v.side.radii))
 	l.line("place picture=%s", place(v.picture.image))
 }
 

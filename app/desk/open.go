@@ -5,6 +5,7 @@ import (
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/storage"
 
+	"annulet/raytrace"
 	"annulet/scenes"
 )
 
@@ -17,14 +18,14 @@ func (c *commands) openNamed(name string) {
 		return
 	}
 	c.state.Open(doc, name)
-	c.request()
-	c.view.sync(c.state)
+	c.found, c.frame, c.whole = nil, nil, raytrace.Field{}
+	c.sync()
 }
 
 // tell shows an error above the picture.
 func (c *commands) tell(err error) {
 	c.state.Notice = err.Error()
-	c.view.sync(c.state)
+	c.view.sync(c.state, c.tool)
 	c.log.line("refused error=%q", err.Error())
 }
 

@@ -15,6 +15,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 
+	"annulet/app/desk/imaging"
 	"annulet/app/files"
 	"annulet/raytrace"
 )
@@ -47,7 +48,7 @@ func (c *commands) saveTo(path string) {
 		return
 	}
 	c.state.Saved(path)
-	c.view.sync(c.state)
+	c.sync()
 	c.log.line("saved scene=%q", path)
 }
 
@@ -62,7 +63,10 @@ func (c *commands) saveImageTo(path string) {
 		c.tell(err)
 		return
 	}
-	scene, folder, text, curve := c.state.Scene(), c.state.Folder(), c.state.Text(), c.state.Tone
+	text := c.state.Text()
+	o := c.order()
+	pixels := o.Scene.Field.Pixels
+	o.Shown, o.Own, o.Columns, o.Rows = imaging.Window{}, true, pixels[0], pixels[1]
 	ctx, cancel := context.WithCancel(context.Background())
 	bar := widget.NewProgressBarInfinite()
 	waiting := dialog.NewCustom("Saving "+filepath.Base(path), "Stop", bar, c.window)
@@ -70,13 +74,13 @@ func (c *commands) saveImageTo(path string) {
 	waiting.Show()
 	go func() {
 		var plate *raytrace.Plate
-		view, err := prepare(scene, folder)
+		view, err := prepare(o)
 		if err == nil {
-			plate, err = view.Trace(ctx, 1, nil)
+			plate, err = view.Render(ctx, view.options(nil))
 		}
 		if err == nil {
 			err = files.Write(ctx, path, newFileMode, func(w io.Writer) error {
-				return files.EncodePNG(w, develop(plate, curve), []files.Text{{Keyword: sceneKeyword, Value: string(text)}})
+				return files.EncodePNG(w, o.Develop(plate).Image, []files.Text{{Keyword: sceneKeyword, Value: string(text)}})
 			})
 		}
 		fyne.Do(func() { // once a save: no need of the funnel
@@ -156,6 +160,9 @@ func remarkOn(path string) string {
 	}
 	return err.Error()
 }
+
+// base is a path's file name.
+func base(path string) string { return filepath.Base(path) }
 
 // expand makes a typed path absolute; ~/ is the home folder.
 func expand(path string) string {

@@ -1,22 +1,23 @@
 package desk
 
 import (
+	"image/color"
+
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
-	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 )
 
-// segments is a row of words of which one is chosen.
+// segments is a row of words of which one, or several, are chosen.
 type segments struct {
 	words []*word
 	row   *fyne.Container
 }
 
 func newSegments(labels []string, onChosen func(k int)) *segments {
-	s := &segments{row: container.NewHBox()}
+	s := &segments{row: hbox(1)}
 	for k, label := range labels {
 		w := newWord(label, func() { onChosen(k) })
 		s.words = append(s.words, w)
@@ -28,10 +29,7 @@ func newSegments(labels []string, onChosen func(k int)) *segments {
 // set shows which word is chosen.
 func (s *segments) set(chosen int) {
 	for k, w := range s.words {
-		if is := k == chosen; is != w.chosen {
-			w.chosen = is
-			w.Refresh()
-		}
+		w.choose(k == chosen)
 	}
 }
 
@@ -41,20 +39,48 @@ var (
 	_ desktop.Hoverable = (*word)(nil)
 )
 
-// word is one word of segments: a click, or Enter or the space bar while it
-// has the focus, chooses it.
+// word is a word to click: a click, or Enter or the space bar while it has
+// the focus, chooses it.
 type word struct {
 	widget.BaseWidget
 
 	label                    string
+	size, inset              float32
+	unlined                  bool // it does something and is not chosen
+	heading                  bool // of what it folds
+	skipped                  bool // by the Tab key: the same can be done elsewhere
 	chosen, focused, hovered bool
 	onChosen                 func()
+	onHover, onFocus         func(over bool) // nil for nobody
 }
 
 func newWord(label string, onChosen func()) *word {
-	w := &word{label: label, onChosen: onChosen}
+	w := &word{label: label, onChosen: onChosen, size: rowTextSize, inset: 7}
 	w.ExtendBaseWidget(w)
 	return w
+}
+
+// newAction returns a word that does something.
+func newAction(label string, act func()) *word {
+	w := newWord(label, act)
+	w.unlined = true
+	return w
+}
+
+// choose shows whether the word is chosen.
+func (w *word) choose(is bool) {
+	if is != w.chosen {
+		w.chosen = is
+		w.Refresh()
+	}
+}
+
+// rename changes the word.
+func (w *word) rename(label string) {
+	if label != w.label {
+		w.label = label
+		w.Refresh()
+	}
 }
 
 func (w *word) Tapped(*fyne.PointEvent) { w.onChosen() }
@@ -68,12 +94,28 @@ func (w *word) TypedKey(e *fyne.KeyEvent) {
 
 func (w *word) TypedRune(rune) {}
 
-func (w *word) FocusGained() { w.focused = true; w.Refresh() }
-func (w *word) FocusLost()   { w.focused = false; w.Refresh() }
+func (w *word) FocusGained() { w.focus(true) }
+func (w *word) FocusLost()   { w.focus(false) }
 
-func (w *word) MouseIn(*desktop.MouseEvent)    { w.hovered = true; w.Refresh() }
+func (w *word) focus(has bool) {
+	w.focused = has
+	w.Refresh()
+	if w.onFocus != nil {
+		w.onFocus(has)
+	}
+}
+
+func (w *word) MouseIn(*desktop.MouseEvent)    { w.hover(true) }
 func (w *word) MouseMoved(*desktop.MouseEvent) {}
-func (w *word) MouseOut()                      { w.hovered = false; w.Refresh() }
+func (w *word) MouseOut()                      { w.hover(false) }
+
+func (w *word) hover(over bool) {
+	w.hovered = over
+	w.Refresh()
+	if w.onHover != nil {
+		w.onHover(over)
+	}
+}
 
 func (w *word) CreateRenderer() fyne.WidgetRenderer {
 	r := &wordRenderer{
@@ -82,7 +124,6 @@ func (w *word) CreateRenderer() fyne.WidgetRenderer {
 		back: canvas.NewRectangle(ground),
 		line: canvas.NewRectangle(edge),
 	}
-	r.text.TextSize = theme.Size(theme.SizeNameText)
 	r.text.Alignment = fyne.TextAlignCenter
 	r.back.CornerRadius = theme.Size(theme.SizeNameInputRadius)
 	r.Refresh()
@@ -95,10 +136,7 @@ type wordRenderer struct {
 	back, line *canvas.Rectangle
 }
 
-const (
-	wordInset     = 8
-	wordUnderline = 2
-)
+const wordUnderline = 2
 
 func (r *wordRenderer) Layout(size fyne.Size) {
 	r.back.Resize(size)
@@ -108,16 +146,28 @@ func (r *wordRenderer) Layout(size fyne.Size) {
 }
 
 func (r *wordRenderer) MinSize() fyne.Size {
-	return r.text.MinSize().AddWidthHeight(2*wordInset, 2*wordUnderline+4)
+	r.text.Text, r.text.TextSize, r.text.TextStyle.Bold = r.word.label, r.word.size, r.word.heading
+	return r.text.MinSize().AddWidthHeight(2*r.word.inset, 2*wordUnderline+3)
 }
 
 func (r *wordRenderer) Refresh() {
-	r.text.Color, r.back.FillColor, r.line.FillColor = quiet, ground, edge
+	r.text.Text, r.text.TextSize = r.word.label, r.word.size
+	r.text.Color, r.back.FillColor, r.line.FillColor = quiet, color.Transparent, edge
+	if r.word.unlined {
+		r.line.FillColor = color.Transparent
+		r.text.Color = words
+	}
+	if r.word.heading {
+		r.text.Color = accent
+	}
 	if r.word.chosen {
 		r.text.Color, r.back.FillColor, r.line.FillColor = words, field, accent
 	}
 	if r.word.hovered {
 		r.text.Color = words
+		if r.word.unlined {
+			r.line.FillColor = quiet
+		}
 	}
 	if r.word.focused {
 		r.back.FillColor = withAlpha(accent, 0x48)
@@ -130,3 +180,8 @@ func (r *wordRenderer) Objects() []fyne.CanvasObject {
 }
 
 func (*wordRenderer) Destroy() {}
+
+// Enable, Disable and Disabled let the Tab key skip a word.
+func (w *word) Enable()        { w.skipped = false }
+func (w *word) Disable()       { w.skipped = true }
+func (w *word) Disabled() bool { return w.skipped }

@@ -12,60 +12,70 @@ import (
 
 	"annulet/app/desk/state"
 	"annulet/app/tone"
+	"annulet/raytrace"
 )
 
 // hands is what the view does with what the user does.
 type hands interface {
+	onPicture
+
 	slide(c *state.Control, position float64)
 	step(c *state.Control, stops int)
 	typed(c *state.Control, text string)
 	submit(c *state.Control, text string)
 	restore(c *state.Control)
-	choose(c *state.Choice, option int)
+	reset(c *state.Control)
+	choose(c *state.Control, option int)
+	addEmitter(kind string)
+	arrange(emitter int, what state.Arrangement)
+
+	showLayer(l raytrace.Layer)
+	showOrder(order int)
+	turnOverlay(k int)
+	turnOwn()
+	take(t tool)
+	fit()
 	setTone(curve tone.Curve)
+	setLimit(which int, value float64)
+	automaticLimits()
+
+	showTab(t state.Tab)
+	showGraph(g state.Graph)
+	setStations(text string)
+	copyText()
+	copyCSV()
+	saveGraphCSV()
+	saveGraphPNG()
+
 	help(text string)
 	dismiss()
-	space(columns, rows int)
-	point(column, row int)
 }
 
 // view turns the state into widgets. It decides nothing.
 type view struct {
 	window fyne.Window
 
-	picture  *picture
-	rows     []*controlRow
-	choices  []*choiceRow
-	tone     *segments
-	readings *widget.Label
-	help     *widget.Label
-	picked   *canvas.Text // the state of the picture
-	notice   *widget.Label
-	noticed  fyne.CanvasObject // the notice with its surroundings
+	panel   *panel
+	top     *topBar
+	picture *picture
+	tones   *toneBar
+	side    *sidebar
+	picked  *canvas.Text // the state of the picture
+	notice  *widget.Label
+	noticed fyne.CanvasObject // the notice with its surroundings
 }
-
-const (
-	panelWidth    = 330
-	readingsWidth = 204
-	helpHeight    = 84 // five lines
-)
 
 func newView(w fyne.Window, s *state.State, h hands) *view {
 	v := &view{
-		window:   w,
-		picture:  newPicture(),
-		readings: widget.NewLabel("Point at the image."),
-		help:     widget.NewLabel(""),
-		picked:   canvas.NewText("", words),
-		notice:   widget.NewLabel(""),
+		window:  w,
+		panel:   newPanel(h),
+		top:     newTopBar(h),
+		picture: newPicture(h),
+		tones:   newToneBar(h),
+		side:    newSidebar(h),
+		picked:  canvas.NewText("", words),
+		notice:  widget.NewLabel(""),
 	}
-	v.picture.onSpace, v.picture.onPoint, v.picture.onLeave = h.space, h.point, func() {}
-	v.readings.TextStyle.Monospace = true
-	v.readings.SizeName = theme.SizeNameCaptionText
-	v.readings.Selectable = true
-	v.help.SizeName = theme.SizeNameCaptionText
-	v.help.Importance = widget.LowImportance
-	v.help.Wrapping = fyne.TextWrapWord
 	v.picked.TextSize = theme.Size(theme.SizeNameCaptionText)
 	v.notice.TextStyle.Monospace = true
 	v.notice.SizeName = theme.SizeNameCaptionText
@@ -75,46 +85,14 @@ func newView(w fyne.Window, s *state.State, h hands) *view {
 	close := widget.NewButton("Dismiss", h.dismiss)
 	v.noticed = container.NewStack(canvas.NewRectangle(raised),
 		container.NewBorder(nil, nil, nil, container.NewCenter(close), v.notice))
-
-	middle := container.NewBorder(v.noticed, nil, nil, nil, v.picture)
+	middle := container.NewBorder(container.New(tightColumn{}, v.top.content), v.tones.content, nil, nil,
+		container.NewBorder(v.noticed, nil, nil, nil, v.picture))
 	content := container.NewBorder(nil, v.strip(),
-		column(panelWidth, v.panel(s, h)),
-		column(readingsWidth, v.side()),
+		container.NewHBox(column(panelWidth, v.panel.content()), widget.NewSeparator()),
+		container.NewHBox(widget.NewSeparator(), column(sidebarWidth, v.side.content)),
 		middle)
-	w.SetContent(content)
-	v.sync(s)
+	w.SetContent(container.NewStack(canvas.NewRectangle(ground), content))
 	return v
-}
-
-// panel holds the controls under their headings.
-func (v *view) panel(s *state.State, h hands) fyne.CanvasObject {
-	groups := map[string]*fyne.Container{}
-	list := container.NewVBox()
-	for _, name := range []string{state.Observer, state.Disk, state.Image} {
-		groups[name] = container.NewVBox()
-		list.Add(container.New(layout.NewCustomPaddedLayout(4, 2, 0, 0), heading(name)))
-		list.Add(groups[name])
-	}
-	for _, c := range s.Controls {
-		row := newControlRow(c, h)
-		v.rows = append(v.rows, row)
-		groups[c.Group].Add(row)
-	}
-	for _, c := range s.Choices {
-		row := newChoiceRow(c, h)
-		v.choices = append(v.choices, row)
-		groups[c.Group].Add(row.content)
-	}
-	v.tone = newSegments(state.Tones(), func(k int) { h.setTone(tone.Curve(k)) })
-	groups[state.Image].Add(named("Tone", v.tone.row))
-	return container.NewVScroll(padded(list))
-}
-
-// side holds the readings, and what the control under the pointer means.
-func (v *view) side() fyne.CanvasObject {
-	inset := theme.Size(theme.SizeNameInnerPadding)
-	title := container.New(layout.NewCustomPaddedLayout(4, 0, inset, inset), heading("Reading"))
-	return container.NewBorder(title, room(helpHeight, v.help), nil, nil, container.NewVScroll(v.readings))
 }
 
 // strip says what the model leaves out and what the picture is.
@@ -130,19 +108,21 @@ func (v *view) strip() fyne.CanvasObject {
 }
 
 // sync shows the state as it is now.
-func (v *view) sync(s *state.State) {
-	for _, r := range v.rows {
-		r.sync()
-	}
-	for _, r := range v.choices {
-		r.sync()
-	}
-	v.tone.set(int(s.Tone))
-	v.picture.want(s.Picture())
+func (v *view) sync(s *state.State, t tool) {
+	v.panel.sync(s)
+	v.top.sync(s, t)
+	v.tones.sync(s)
+	v.side.sync(s)
+	v.picture.tool = t
+	columns, rows := s.Picture()
+	v.picture.want(columns, rows, s.Look)
 	if v.notice.Text != s.Notice {
 		v.notice.SetText(s.Notice)
 	}
 	setVisible(v.noticed, s.Notice != "")
+	if s.Remark != "" {
+		v.panel.setHelp(s.Remark)
+	}
 	if title := s.Title(); title != v.window.Title() {
 		v.window.SetTitle(title)
 	}
@@ -160,33 +140,6 @@ func setVisible(o fyne.CanvasObject, show bool) {
 
 // setPicked tells the state of the picture.
 func (v *view) setPicked(text string) { setText(v.picked, text) }
-
-// setHelp tells what the control under the pointer means.
-func (v *view) setHelp(text string) {
-	if v.help.Text != text {
-		v.help.SetText(text)
-	}
-}
-
-// setReadings shows the quantities of a line of sight.
-func (v *view) setReadings(text string) {
-	if v.readings.Text != text {
-		v.readings.SetText(text)
-	}
-}
-
-func heading(text string) fyne.CanvasObject {
-	t := canvas.NewText(text, accent)
-	t.TextSize = theme.Size(theme.SizeNameCaptionText)
-	t.TextStyle.Bold = true
-	return t
-}
-
-// padded keeps an object off the window's edges.
-func padded(o fyne.CanvasObject) fyne.CanvasObject {
-	const left, right, top, bottom = 10, 10, 4, 4
-	return container.New(layout.NewCustomPaddedLayout(top, bottom, left, right), o)
-}
 
 // room keeps a height free for an object, so that nothing moves when its text
 // grows.

@@ -2,35 +2,35 @@ package desk
 
 import (
 	"context"
-	"math"
 	"runtime"
 	"sync"
 
 	"annulet/app/desk/imaging"
 	"annulet/raytrace"
-	"annulet/scenes"
 )
 
 // sight is a scene made ready to trace.
 type sight struct {
 	*raytrace.View
-	kept *keptPaths
+	whole  raytrace.Field // of the scene, at the picture's pixels
+	shown  raytrace.Field // of the picture
+	layers []raytrace.Layer
+	kept   *keptPaths
 }
 
-// totalOnly keeps nothing but the picture: readings are traced anew, in
-// float64.
-func totalOnly(report func(raytrace.Progress)) raytrace.Options {
-	return raytrace.Options{Workers: workers(), Report: report, Layers: []raytrace.Layer{}}
+func (s sight) options(report func(raytrace.Progress)) raytrace.Options {
+	return raytrace.Options{Workers: workers(), Report: report, Layers: s.layers}
 }
 
 func (s sight) Trace(ctx context.Context, coarsening int, report func(raytrace.Progress)) (*raytrace.Plate, error) {
 	if coarsening == 1 {
-		return s.kept.render(ctx, s.View, totalOnly(report))
+		return s.kept.render(ctx, s.View, s.options(report))
 	}
-	return s.Coarsened(coarsening).Render(ctx, totalOnly(report))
+	return s.Coarsened(coarsening).Render(ctx, s.options(report))
 }
 
-func (s sight) Width() float64 { return s.Field.Width }
+func (s sight) Of() raytrace.Field    { return s.Field }
+func (s sight) Shown() raytrace.Field { return s.shown }
 
 // keptPaths keeps the paths of the picture while the hand changes only what
 // shines, so that these are shaded and not traced again.
@@ -40,6 +40,9 @@ type keptPaths struct {
 	traced *raytrace.Traced
 }
 
+// mostKept is how many pixels' paths are kept, at 150 bytes each. Taste.
+const mostKept = 3_000_000
+
 func (k *keptPaths) render(ctx context.Context, v *raytrace.View, o raytrace.Options) (*raytrace.Plate, error) {
 	k.mu.Lock()
 	defer k.mu.Unlock()
@@ -48,8 +51,8 @@ func (k *keptPaths) render(ctx context.Context, v *raytrace.View, o raytrace.Opt
 	}
 	again := k.last != nil && k.last.Observer == v.Observer && k.last.Field == v.Field
 	k.last = v
-	if k.traced == nil && !again { // the first look from here: keeping may not pay
-		return v.Render(ctx, o)
+	if k.traced == nil && (!again || v.Field.Columns*v.Field.Rows > mostKept) {
+		return v.Render(ctx, o) // the first look from here: keeping may not pay
 	}
 	if k.traced == nil {
 		traced, err := v.Trace(ctx, o)
@@ -65,12 +68,6 @@ func (k *keptPaths) render(ctx context.Context, v *raytrace.View, o raytrace.Opt
 // them.
 func workers() int { return runtime.NumCPU() }
 
-// prepare makes a scene ready to trace; folder is that of its file.
-func prepare(s scenes.Scene, folder string) (sight, error) {
-	v, err := raytrace.NewViewIn(s, folder)
-	return sight{v, new(keptPaths)}, err
-}
-
 // views makes each scene ready once, for the picture and the readings alike:
 // finding the width of an automatic field takes longer than a preview may.
 // Its methods run off the window's thread, on any goroutine.
@@ -85,12 +82,13 @@ func (v *views) of(o imaging.Order) (sight, error) {
 	v.mu.Lock()
 	defer v.mu.Unlock()
 	if v.serial != o.Serial+1 {
-		s := o.Scene
-		s.Field.Pixels = [2]int{o.Columns, o.Rows}
-		latest, err := prepare(s, o.Folder)
-		if err == nil && v.latest.View != nil {
-			latest.Follow(v.latest.View)
-			latest.kept = v.latest.kept
+		latest, err := prepare(o)
+		if err == nil {
+			latest.kept = new(keptPaths)
+			if v.latest.View != nil {
+				latest.Follow(v.latest.View)
+				latest.kept = v.latest.kept
+			}
 		}
 		v.latest, v.err = latest, err
 		v.serial = o.Serial + 1
@@ -98,21 +96,24 @@ func (v *views) of(o imaging.Order) (sight, error) {
 	return v.latest, v.err
 }
 
-// probe reads the centre of a pixel.
-func (v *views) probe(ctx context.Context, at imaging.Spot) imaging.Found {
-	found := imaging.Found{Spot: at, Impact: math.NaN()}
-	view, err := v.of(at.Order)
+// prepare makes the scene of an order ready to trace.
+func prepare(o imaging.Order) (sight, error) {
+	s := o.Scene
+	if !o.Own {
+		s.Field.Pixels = [2]int{o.Columns, o.Rows}
+	}
+	v, err := raytrace.NewViewIn(s, o.Folder)
 	if err != nil {
-		found.Err = err
-		return found
+		return sight{}, err
 	}
-	found.Alpha, found.Beta = view.Field.PixelCenter(at.Column, at.Row)
-	found.Readings, found.Err = view.Probe(ctx, [][2]float64{{found.Alpha, found.Beta}})
-	switch {
-	case view.Field.IsParallel():
-		found.Impact = math.Hypot(found.Alpha, found.Beta)
-	case len(found.Readings) > 0:
-		found.Impact = found.Readings[0].Impact
+	seen := sight{View: v, whole: v.Field, shown: v.Field, layers: o.Layers}
+	seen.whole.Columns, seen.whole.Rows = o.Columns, o.Rows
+	seen.shown.Columns, seen.shown.Rows = o.Columns, o.Rows
+	if o.Shown.Width > 0 {
+		seen.shown.Center, seen.shown.Width = o.Shown.Center, o.Shown.Width
 	}
-	return found
+	if !o.Own {
+		v.Field = seen.shown
+	}
+	return seen, nil
 }

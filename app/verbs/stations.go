@@ -12,6 +12,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"annulet/geodesic"
+	"annulet/raytrace"
 	"annulet/scenes"
 )
 
@@ -165,15 +166,7 @@ func flaggedObject(o placing) (scenes.Object, error) {
 }
 
 // spacetimeOf returns an object's spacetime.
-func spacetimeOf(o scenes.Object) (*geodesic.Round, error) {
-	switch o.Kind {
-	case "star":
-		return geodesic.NewStar(o.Radius, o.Interior == "uniform")
-	case "shell":
-		return geodesic.NewShell(o.Radius)
-	}
-	return geodesic.NewHole(o.Charge)
-}
+func spacetimeOf(o scenes.Object) (*geodesic.Round, error) { return raytrace.NewObject(o) }
 
 // stationRow is one station as it is printed.
 type stationRow struct {

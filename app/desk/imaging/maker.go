@@ -24,21 +24,49 @@ type Order struct {
 	Columns, Rows int
 	Asked         time.Time // when the hand moved
 
-	// Develop turns a plate into an image of the plate's size. It runs
-	// off the window's thread.
-	Develop func(*raytrace.Plate) *image.RGBA
+	// Shown is the part of the field that the picture shows, in screen
+	// coordinates; the zero Window is the whole.
+	Shown Window
+	// Own asks for the scene's own pixels, each magnified.
+	Own bool
+	// Layers are those that Develop needs beside the total.
+	Layers []raytrace.Layer
+
+	// Develop turns a plate into an image of the plate's size, and Ink
+	// draws what lies over it, on the picture's field; nil for nothing. Both
+	// run off the window's thread.
+	Develop func(*raytrace.Plate) Developed
+	Ink     func(p *raytrace.Plate, of, shown raytrace.Field) *image.RGBA
+}
+
+// Window is a part of a field.
+type Window struct {
+	Center [2]float64
+	Width  float64 // 0 for the whole
+}
+
+// Developed is a plate in colours.
+type Developed struct {
+	Image     *image.RGBA
+	Low, High float64 // values at the ends of the colours
+	// Axis is the range of the histogram Counts, along which values lie as
+	// the tone's curve has them.
+	Axis   [2]float64
+	Counts []int
 }
 
 // Frame is a picture ready to show.
 type Frame struct {
 	Order      Order
 	Plate      *raytrace.Plate
-	Width      float64       // of the field: M, or radians on an angular field
-	Image      *image.RGBA   // Order.Columns × Order.Rows, top row first
-	Coarsening int           // 1 when every pixel was traced
-	Traced     time.Duration // how long this plate took
-	Retoned    bool          // the plate had been shown before with another tone
-	Err        error         // the scene cannot be traced; then Plate and Image are nil
+	Of         raytrace.Field // of the plate, if it were traced in full
+	Shown      raytrace.Field // of the picture
+	Developed                 // with Image of Order.Columns × Order.Rows, top row first
+	Ink        *image.RGBA    // over it, of the same size; nil for nothing
+	Coarsening int            // 1 when every pixel was traced
+	Traced     time.Duration  // how long this plate took
+	Retoned    bool           // the plate had been shown before with another tone
+	Err        error          // the scene cannot be traced; then Plate and Image are nil
 }
 
 // Settled says whether nothing finer will follow.
@@ -49,8 +77,10 @@ type View interface {
 	// Trace makes a plate with the picture's pixels divided by the
 	// coarsening, rounded up.
 	Trace(ctx context.Context, coarsening int, report func(raytrace.Progress)) (*raytrace.Plate, error)
-	// Width is that of the field: M, or radians on an angular field.
-	Width() float64
+	// Of is the field that a plate holds, and Shown the one that the
+	// picture shows.
+	Of() raytrace.Field
+	Shown() raytrace.Field
 }
 
 // Prepare makes a view of an order's scene, of Order.Columns × Order.Rows
@@ -140,7 +170,7 @@ func (m *Maker) traceLatest(ctx context.Context, speed *pace) bool {
 		m.keep(Frame{Order: o, Err: err})
 		return m.stale(o)
 	}
-	rungs := speed.rungs(o.Columns, o.Rows, time.Since(begun))
+	rungs := speed.rungs(view.Of().Columns, view.Of().Rows, time.Since(begun))
 	for k, coarsening := range rungs {
 		frame, err := m.traceRung(ctx, view, o, coarsening, k == 0 && len(rungs) > 1)
 		switch {
@@ -180,7 +210,7 @@ func (m *Maker) traceRung(ctx context.Context, view View, o Order, coarsening in
 		m.mu.Unlock()
 	}()
 	plate, err := view.Trace(ctx, coarsening, m.throttled(begun))
-	return Frame{Order: o, Plate: plate, Width: view.Width(), Coarsening: coarsening, Traced: time.Since(begun)}, err
+	return Frame{Order: o, Plate: plate, Of: view.Of(), Shown: view.Shown(), Coarsening: coarsening, Traced: time.Since(begun)}, err
 }
 
 // throttled returns a progress callback that passes on at most ten reports a
@@ -229,8 +259,18 @@ func (m *Maker) toneLoop(ctx context.Context) {
 		f.Retoned = shown == latest
 		shown = latest
 		if f.Err == nil {
-			f.Order.Develop = order.Develop // the tone may be newer than the plate
-			f.Image = fit(f.Order.Develop(f.Plate), f.Coarsening, f.Order.Columns, f.Order.Rows)
+			if order.Serial == f.Order.Serial { // the tone may be newer than the plate
+				f.Order.Develop, f.Order.Ink = order.Develop, order.Ink
+			}
+			f.Developed = f.Order.Develop(f.Plate)
+			if f.Of == f.Shown {
+				f.Image = fit(f.Image, f.Coarsening, f.Order.Columns, f.Order.Rows)
+			} else {
+				f.Image = magnify(f.Image, f.Coarsening, f.Of, f.Shown)
+			}
+			if f.Order.Ink != nil {
+				f.Ink = f.Order.Ink(f.Plate, f.Of, f.Shown)
+			}
 		}
 		m.show(f)
 	}

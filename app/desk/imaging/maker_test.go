@@ -26,7 +26,11 @@ type benchView struct {
 	order Order
 }
 
-func (v benchView) Width() float64 { return 1 }
+func (v benchView) Of() raytrace.Field {
+	return raytrace.Field{Width: 1, Columns: v.order.Columns, Rows: v.order.Rows}
+}
+
+func (v benchView) Shown() raytrace.Field { return v.Of() }
 
 func (v benchView) Trace(ctx context.Context, coarsening int, _ func(raytrace.Progress)) (*raytrace.Plate, error) {
 	v.begun <- coarsening
@@ -42,7 +46,9 @@ func (v benchView) Trace(ctx context.Context, coarsening int, _ func(raytrace.Pr
 	return &raytrace.Plate{Columns: columns, Rows: rows, Total: make([]float32, columns*rows)}, nil
 }
 
-func blank(p *raytrace.Plate) *image.RGBA { return image.NewRGBA(image.Rect(0, 0, p.Columns, p.Rows)) }
+func blank(p *raytrace.Plate) Developed {
+	return Developed{Image: image.NewRGBA(image.Rect(0, 0, p.Columns, p.Rows))}
+}
 
 // side of the ordered pictures, in pixels: too many for one quick trace at the
 // guessed speed.
@@ -130,7 +136,7 @@ func TestToneDoesNotTrace(t *testing.T) {
 		<-frames
 	}
 	developed := make(chan struct{}, 1)
-	o.Develop = func(p *raytrace.Plate) *image.RGBA { developed <- struct{}{}; return blank(p) }
+	o.Develop = func(p *raytrace.Plate) Developed { developed <- struct{}{}; return blank(p) }
 	m.Ask(o)
 	select {
 	case k := <-b.begun:
@@ -184,4 +190,49 @@ func TestFitKeepsTheBottomLeftCorner(t *testing.T) {
 			t.Errorf("pixel %d, %d is %d, want %d", k.x, k.y, got, k.want)
 		}
 	}
+}
+
+// A pixel of the scene covers its own rectangle of the picture, whatever part
+// of the field that shows.
+func TestMagnifyShowsOwnPixels(t *testing.T) {
+	of := raytrace.Field{Width: 8, Columns: 4, Rows: 4}
+	m := image.NewRGBA(image.Rect(0, 0, 4, 4))
+	m.SetRGBA(3, 0, color.RGBA{R: 0xff, A: 0xff}) // α from 2 to 4, β from 2 to 4
+	shown := raytrace.Field{Width: 4, Center: [2]float64{3, 3}, Columns: 100, Rows: 100}
+	out := magnify(m, 1, of, shown) // α and β from 1 to 5
+	for _, k := range []struct {
+		x, y int
+		want color.RGBA
+	}{
+		{26, 26, color.RGBA{R: 0xff, A: 0xff}}, {73, 73, color.RGBA{R: 0xff, A: 0xff}}, {24, 50, color.RGBA{}}, {50, 76, color.RGBA{}}, {76, 50, color.RGBA{}},
+	} {
+		if got := out.RGBAAt(k.x, k.y); got != k.want {
+			t.Errorf("pixel %d, %d is %v, want %v", k.x, k.y, got, k.want)
+		}
+	}
+}
+
+func TestLatestAnswersTheLatest(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	begun, answers := make(chan int), make(chan int)
+	l := NewLatest(func(ctx context.Context, q int) int {
+		begun <- q
+		if q == 1 {
+			<-ctx.Done()
+		}
+		return q
+	}, func(a int) { answers <- a })
+	var running sync.WaitGroup
+	running.Go(func() { l.Run(ctx) })
+	l.Ask(1)
+	<-begun
+	l.Ask(2)
+	if q := <-begun; q != 2 {
+		t.Errorf("answers %d", q)
+	}
+	if a := <-answers; a != 2 {
+		t.Errorf("shows %d, the question was replaced", a)
+	}
+	cancel()
+	running.Wait()
 }

@@ -1,6 +1,7 @@
 package state
 
 import (
+	"fmt"
 	"math"
 	"slices"
 	"strconv"
@@ -9,214 +10,242 @@ import (
 	"annulet/scenes"
 )
 
-// Headings, in the order in which the window shows them.
-const (
-	Observer = "Observer"
-	Disk     = "Disk"
-	Image    = "Image"
-)
-
-// Keys of the scene file that have a control.
-const (
-	Radius      = "observer.radius"
-	Inclination = "observer.inclination"
-	Width       = "field.width"
-	Inner       = "emitter.inner"
-	Outer       = "emitter.outer"
-	Index       = "emitter.index"
-	MaxOrder    = "trace.max_order"
-	Sense       = "emitter.sense"
-	Depth       = "emitter.optical_depth"
-)
-
-// Control is one quantity of the scene, shown as a slider and an entry.
+// Control is one key of the scene: an entry, with a slider where its numbers
+// have a scale, or a choice.
 type Control struct {
-	Key   string // of the scene file
+	Key   string // as the document takes it: "emitter.2.outer"
+	Group string // heading it stands under
 	Name  string // the trade's word for it
 	Range string // what may be typed
 	Help  string // what it means, one line
-	Group string // heading it stands under
+	Given bool   // the scene says it; else it is a default
 
-	Axis     Axis
+	Options []Option // a choice; nil for an entry
+	Many    bool     // any number of the options may be chosen
+
+	Axis     Axis    // of the slider; nil for none
 	Position float64 // of the slider, 0 to Axis.Last()
 	Text     string  // in the entry, possibly being typed
 	Wrong    string  // what is wrong with Text; "" when nothing is known to be
 
-	read func(scenes.Scene) Stop           // the scene's value, with its text
-	axis func(scenes.Scene) (Axis, string) // stops and Range
+	key  scenes.Key
+	axis func(*State) Axis // nil for none
 }
 
-// Choice is one property of the scene with few values.
-type Choice struct {
-	Key, Name, Help, Group string
-	Options                []Option
-	Chosen                 int
-
-	read func(scenes.Scene) int
-}
-
-// Option is one value of a Choice.
+// Option is one value of a choice.
 type Option struct {
-	Label string
-	text  string // in the scene file
+	Label  string
+	Chosen bool
+	text   string // in the scene file
 }
 
-// Where the sliders end. Taste: the entries take everything the scene file
-// takes.
-const (
-	nearestObserver, farthestObserver = 3.15, 1e5 // M; a parallel field needs r > 3 M
-	narrowestField, widestField       = 4, 1000   // M
-	narrowestAngle, widestAngle       = 1, 150    // deg
-	leastOuter, greatestOuter         = 3, 1000   // M
-	greatestInner                     = 100       // M
-	horizon, isco                     = 2, 6      // M, of an uncharged hole
-	steepest                          = 10        // emissivity index
-	highestOrder                      = 5
-)
+// Default returns the text that the key has when the scene does not say it.
+func (c *Control) Default() string { return c.key.DefaultText() }
 
-func newControls() []*Control {
-	all := []*Control{
-		{
-			Group: Observer, Key: Radius, Name: "Observer radius",
-			axis: always(logarithmic(nearestObserver, farthestObserver, "M").with(math.Inf(1), "infinity"),
-				"above 2 M (parallel: 3 M), infinity"),
-			read: func(s scenes.Scene) Stop { return length(s.Observer.Radius) },
-		}, {
-			Group: Observer, Key: Inclination, Name: "Inclination",
-			axis: always(linear(0, 180, 1, 0, "deg"), "0 to 180 deg"),
-			read: func(s scenes.Scene) Stop { return quantity(s.Observer.Inclination, "deg") },
-		}, {
-			Group: Image, Key: Width, Name: "Field width",
-			axis: func(s scenes.Scene) (Axis, string) {
-				if angular(s) {
-					return logarithmic(narrowestAngle, widestAngle, "deg").with(math.Inf(-1), "auto"), "auto, or below 180 deg"
-				}
-				if _, ok := ThetaG(s); ok {
-					return lengthsOrAuto, "auto, or a length (M, µas)"
-				}
-				return lengthsOrAuto, "auto, or a length (M)"
-			},
-			read: func(s scenes.Scene) Stop {
-				switch {
-				case s.Field.AutoWidth:
-					return Stop{math.Inf(-1), "auto"}
-				case angular(s):
-					return quantity(s.Field.Width, "deg")
-				}
-				return length(s.Field.Width)
-			},
-		}, {
-			Group: Disk, Key: Inner, Name: "Disk inner radius",
-			axis: always(logarithmic(horizon, greatestInner, "M").with(horizon, "horizon").with(isco, "isco"),
-				"horizon, isco, or from 2 M"),
-			read: func(s scenes.Scene) Stop {
-				rim := disk(s).Inner
-				if rim.Name != "" {
-					return Stop{rim.Radius, rim.Name}
-				}
-				return length(rim.Radius)
-			},
-		}, {
-			Group: Disk, Key: Outer, Name: "Disk outer radius",
-			axis: always(logarithmic(leastOuter, greatestOuter, "M"), "above the inner radius"),
-			read: func(s scenes.Scene) Stop { return length(disk(s).Outer) },
-		}, {
-			Group: Disk, Key: Index, Name: "Emissivity index",
-			axis: always(linear(0, steepest, 0.1, 1, ""), "emissivity (r/M)^−index"),
-			read: func(s scenes.Scene) Stop { return quantity(disk(s).Index, "") },
-		}, {
-			Group: Image, Key: MaxOrder, Name: "Highest image order",
-			axis: always(linear(0, highestOrder, 1, 0, ""), "0 direct, 1 first lensed, …"),
-			read: func(s scenes.Scene) Stop { return quantity(float64(s.Trace.MaxOrder), "") },
-		},
-	}
-	for _, c := range all {
-		c.Help = help(c.Key)
-	}
-	return all
-}
+// IsChoice says whether the control is a row of options.
+func (c *Control) IsChoice() bool { return c.Options != nil }
 
-var lengthsOrAuto = logarithmic(narrowestField, widestField, "M").with(math.Inf(-1), "auto")
+// hidden are the keys without a control: the version of the file.
+var hidden = []string{"schema"}
 
-func newChoices() []*Choice {
-	all := []*Choice{
-		{
-			Group: Disk, Key: Sense, Name: "Gas turns",
-			Options: []Option{{"counter-clockwise", "counter-clockwise"}, {"clockwise", "clockwise"}},
-			read:    func(s scenes.Scene) int { return index(disk(s).Clockwise) },
-		}, {
-			Group: Disk, Key: Depth, Name: "Disk depth",
-			Options: []Option{{"thin", "thin"}, {"thick", "thick"}},
-			read:    func(s scenes.Scene) int { return index(disk(s).Thick) },
-		},
+// controls returns the controls of the scene as it is, in the order of the
+// key table; those that are there already are kept.
+func (s *State) controls() []*Control {
+	var all []*Control
+	scene := s.doc.Scene()
+	old := map[string]*Control{}
+	for _, c := range s.Controls {
+		old[c.Key] = c
 	}
-	for _, c := range all {
-		c.Help = help(c.Key)
-	}
-	return all
-}
-
-// help returns the scene file's one-line text for a key.
-func help(path string) string {
-	for _, k := range scenes.Keys() {
-		if k.Path() == path {
-			return k.Text
+	for _, section := range sections() {
+		instances := 1
+		if section == emitterSection {
+			instances = len(scene.Emitters)
+		}
+		for n := range instances {
+			for _, k := range scenes.Keys() {
+				if k.Section != section || !s.shows(k, scene, n) {
+					continue
+				}
+				c := newControl(k, n)
+				if kept := old[c.Key]; kept != nil {
+					c = kept
+				}
+				c.Group = groupOf(section, n, scene)
+				all = append(all, c)
+			}
 		}
 	}
-	return ""
+	return all
 }
 
-func always(a Axis, limits string) func(scenes.Scene) (Axis, string) {
-	return func(scenes.Scene) (Axis, string) { return a, limits }
-}
+const emitterSection = "emitter"
 
-// firstDisk returns the index of the emitter that the controls edit: the
-// first disk; 0 when there is none.
-func firstDisk(s scenes.Scene) int {
-	return max(0, slices.IndexFunc(s.Emitters, func(e scenes.Emitter) bool { return e.Kind == "disk" }))
-}
-
-// disk returns the emitter that the controls edit.
-func disk(s scenes.Scene) scenes.Emitter {
-	if len(s.Emitters) == 0 {
-		return scenes.Emitter{}
+// sections returns the tables of the scene file, in the order of its
+// reference.
+func sections() []string {
+	var all []string
+	for _, k := range scenes.Keys() {
+		if !slices.Contains(all, k.Section) {
+			all = append(all, k.Section)
+		}
 	}
-	return s.Emitters[firstDisk(s)]
+	return all
 }
 
-// address returns a control's key as the document takes it: emitters but the
-// first are numbered.
-func address(key string, s scenes.Scene) string {
-	const section = "emitter."
-	if rest, ok := strings.CutPrefix(key, section); ok && firstDisk(s) > 0 {
-		return section + strconv.Itoa(firstDisk(s)+1) + "." + rest
+// shows says whether a key has a meaning for the scene as it is.
+func (s *State) shows(k scenes.Key, scene scenes.Scene, n int) bool {
+	if k.Later || slices.Contains(hidden, k.Path()) {
+		return false
 	}
-	return key
+	kind := scene.Object.Kind
+	switch k.Section {
+	case emitterSection:
+		kind = scene.Emitters[n].Kind
+	case "field":
+		if scene.Field.Projection == allSky && (k.Name == "width" || k.Name == "center") {
+			return false // it is every direction
+		}
+		return true
+	}
+	return len(k.Kinds) == 0 || slices.Contains(k.Kinds, kind)
 }
 
-// angular says whether the field is in angles, not in M.
-func angular(s scenes.Scene) bool { return s.Field.Projection != "parallel" }
-
-func length(m float64) Stop {
-	if math.IsInf(m, 1) {
-		return Stop{m, "infinity"}
+// newControl returns the control of a key, in the nth table of its section.
+func newControl(k scenes.Key, n int) *Control {
+	c := &Control{Key: pathOf(k, n), Name: nameOf(k), Help: k.Text, Range: k.Allowed(), key: k, axis: axisOf(k)}
+	switch {
+	case k.Type == scenes.Choice, k.Type == scenes.ChoiceList:
+		c.Many = k.Type == scenes.ChoiceList
+		for _, word := range k.Choices {
+			c.Options = append(c.Options, Option{Label: word, text: word})
+		}
 	}
-	return quantity(m, "M")
+	return c
 }
 
-// quantity writes a value with at most seven digits.
-func quantity(v float64, unit string) Stop {
-	const digits = 7
-	text := strconv.FormatFloat(v, 'g', -1, 64)
-	if short := strconv.FormatFloat(v, 'g', digits, 64); len(short) < len(text) {
-		text = short
+// pathOf returns a key's path in the nth table of its section.
+func pathOf(k scenes.Key, n int) string {
+	if k.Section == emitterSection && n > 0 {
+		return fmt.Sprintf("%s.%d.%s", k.Section, n+1, k.Name)
 	}
-	return Stop{v, withUnit(text, unit)}
+	return k.Path()
 }
 
-func index(b bool) int {
-	if b {
-		return 1
+// EmitterOf returns which emitter, from 0, a control belongs to.
+func EmitterOf(c *Control) (n int, ok bool) {
+	rest, ok := strings.CutPrefix(c.Key, emitterSection+".")
+	if !ok {
+		return 0, false
 	}
-	return 0
+	number, _, found := strings.Cut(rest, ".")
+	if !found {
+		return 0, true
+	}
+	k, err := strconv.Atoi(number)
+	return k - 1, err == nil
+}
+
+// groupOf returns the heading of a section's nth table.
+func groupOf(section string, n int, scene scenes.Scene) string {
+	switch section {
+	case "":
+		return "Scene"
+	case emitterSection:
+		return fmt.Sprintf("Emitter %d: %s", n+1, scene.Emitters[n].Kind)
+	case "trace":
+		return "Numerics"
+	}
+	return strings.ToUpper(section[:1]) + section[1:]
+}
+
+// names are those that the key's own word does not say well enough.
+var names = map[string]string{
+	"object.theta_g":          "GM/(c²D)",
+	"field.center":            "Centre",
+	"emitter.inner":           "Inner radius",
+	"emitter.outer":           "Outer radius",
+	"emitter.sense":           "Gas turns",
+	"emitter.index":           "Emissivity index",
+	"emitter.optical_depth":   "Depth",
+	"measured.ring_diameter":  "Ring diameter",
+	"trace.max_order":         "Highest order",
+	"emitter.light":           "Light",
+	"emitter.emission_angle":  "Limb",
+	"emitter.seed":            "Seed of stars",
+	"emitter.accretion_rate":  "Accretion rate",
+	"observer.position_angle": "Position angle",
+}
+
+// nameOf returns the trade's word for a key.
+func nameOf(k scenes.Key) string {
+	if name, ok := names[k.Path()]; ok {
+		return name
+	}
+	word := strings.ReplaceAll(k.Name, "_", " ")
+	return strings.ToUpper(word[:1]) + word[1:]
+}
+
+// Control returns the control of a key, nil if the scene shows none.
+func (s *State) Control(key string) *Control {
+	at := slices.IndexFunc(s.Controls, func(c *Control) bool { return c.Key == key })
+	if at < 0 {
+		return nil
+	}
+	return s.Controls[at]
+}
+
+// update shows the scene's value, unless a text that cannot be taken stands
+// there.
+func (c *Control) update(s *State) {
+	text, given := s.doc.Written(c.Key)
+	if !given {
+		text = c.Default()
+	}
+	c.Given = given
+	if c.axis != nil {
+		c.Axis = c.axis(s)
+	}
+	if c.IsChoice() {
+		for k, o := range c.Options {
+			c.Options[k].Chosen = o.text == text
+			if c.Many {
+				c.Options[k].Chosen = strings.Contains(text, strconv.Quote(o.text))
+			}
+		}
+		return
+	}
+	if c.Wrong == "" {
+		c.Text = shown(text, c.key)
+		c.Position = c.Axis.Position(c.stop(s).Value)
+	}
+}
+
+// stop returns the scene's value on the axis; what has no number there lies
+// at its end.
+func (c *Control) stop(s *State) Stop {
+	text, given := s.doc.Written(c.Key)
+	if !given {
+		text = c.Default()
+	}
+	for _, at := range c.Axis {
+		if at.Text == text {
+			return at
+		}
+	}
+	x, _, _ := s.doc.Number(c.Key)
+	return Stop{x, shown(text, c.key)}
+}
+
+// shown writes a value as an entry has it: on one line, a bare number with
+// the unit it is in.
+func shown(text string, k scenes.Key) string {
+	text = strings.Join(strings.Fields(text), " ")
+	if k.Unit == "" || k.Section == "field" {
+		return text
+	}
+	if x, err := strconv.ParseFloat(text, 64); err != nil || math.IsInf(x, 0) {
+		return text
+	}
+	return text + " " + k.Unit
 }

@@ -6,6 +6,7 @@ import (
 	"strconv"
 	"strings"
 
+	"annulet/geodesic"
 	"annulet/raytrace"
 	"annulet/scenes"
 )
@@ -17,43 +18,78 @@ type Sight struct {
 	Readings    []raytrace.Reading
 }
 
-// Readings writes a line of sight for the panel beside the picture, one
-// quantity a line, with no more digits than its bound supports.
-func Readings(s scenes.Scene, at Sight) string {
-	var b strings.Builder
-	theta, sky := ThetaG(s)
-	line := func(name, value, unit string) {
-		value = strings.Replace(value, "-", "−", 1)
-		fmt.Fprintf(&b, "%-6s%12s %s\n", name, value, unit)
-	}
+// Readings lists a line of sight for the panel beside the picture, with no
+// more digits than its bounds support.
+func Readings(s scenes.Scene, at Sight) Table {
+	var t Table
+	t.section("Line of sight")
+	theta, sky := s.ThetaG()
 	screen := func(name string, v float64) {
 		switch {
 		case angular(s):
-			line(name, fixed(v*180/math.Pi, 4), "deg")
+			degrees := v * 180 / math.Pi
+			if s.Field.Projection != allSky { // a gnomonic plane holds tangents
+				degrees = math.Atan(v) * 180 / math.Pi
+			}
+			t.add(name, fixed(degrees, 4), "deg", degrees)
 		default:
-			line(name, fixed(v, 4), "M")
+			t.add(name, fixed(v, 4), "M", v)
 			if sky && math.IsInf(s.Observer.Radius, 1) {
-				line("", figures(v*theta, 4), "µas")
+				t.add("", figures(v*theta, 4), "µas", v*theta)
 			}
 		}
 	}
 	screen("α", at.Alpha)
 	screen("β", at.Beta)
 	if !math.IsNaN(at.Impact) {
-		line("b", fixed(at.Impact, 4), "M")
+		t.add("b", fixed(at.Impact, 4), "M", at.Impact)
 	}
 	if len(at.Readings) == 0 {
-		b.WriteString("\nmeets no gas\n")
+		t.say("meets", "nothing that shines")
 	}
 	for _, r := range at.Readings {
-		n := supported(r.RBound)
-		fmt.Fprintf(&b, "\nOrder %d\n", r.Order)
-		line("r", figures(r.R, n), "M")
-		line("φ", fixed(r.Phi*180/math.Pi, 3), "deg")
-		line("g", figures(r.G, n), "")
-		line("delay", fixed(r.Delay, delayDecimals(r)), "M")
+		t.section(fmt.Sprintf("Order %d, %s", r.Order, surfaceName(r.Surface)))
+		t.crossing(r)
 	}
-	return b.String()
+	return t
+}
+
+func surfaceName(s geodesic.Surface) string {
+	switch s {
+	case geodesic.Star:
+		return "surface"
+	case geodesic.Sky:
+		return "sky"
+	}
+	return "disk"
+}
+
+// crossing lists what a path meets.
+func (t *Table) crossing(r raytrace.Reading) {
+	degrees := func(x float64) float64 { return x * 180 / math.Pi }
+	angle := func(name string, x float64) {
+		t.add(name, fixed(degrees(x), angleDecimals(degrees(r.AngleBound))), "deg", degrees(x))
+	}
+	n := supported(math.Max(r.RBound, r.AngleBound))
+	switch r.Surface {
+	case geodesic.Sky:
+		t.say("r", "infinity")
+	default:
+		t.add("r", figures(r.R, supported(r.RBound)), "M", r.R)
+	}
+	if r.Surface != geodesic.Plane {
+		angle("θ", math.Acos(math.Max(-1, math.Min(1, r.CosTheta))))
+	}
+	angle("φ", r.Phi)
+	t.add("Lz/E", figures(r.Ell, mostFigures), "M", r.Ell)
+	t.add("g", figures(r.G, n), "", r.G)
+	if !math.IsNaN(r.Mu) {
+		t.add("µ", figures(r.Mu, n), "", r.Mu)
+	}
+	if !math.IsNaN(r.Delay) {
+		t.add("delay", fixed(r.Delay, delayDecimals(r)), "M", r.Delay)
+	}
+	t.add("I", strconv.FormatFloat(r.Intensity, 'e', 3, 64), "", r.Intensity)
 }
 
 // mostFigures is how many figures a reading may have. Taste.
@@ -67,12 +103,22 @@ func supported(bound float64) int {
 	return clamp(int(math.Floor(-math.Log10(bound))), 1, mostFigures)
 }
 
+// angleDecimals returns how many decimals of an angle a bound in its unit
+// supports.
+func angleDecimals(bound float64) int {
+	const most = 4
+	if !(bound > 0) {
+		return most
+	}
+	return clamp(int(math.Floor(-math.Log10(bound))), 0, most)
+}
+
 // delayDecimals returns how many decimals of the delay, in M, the bound on r
 // supports: near the crossing dt/dr is of order 1/(1 - 2/r).
 func delayDecimals(r raytrace.Reading) int {
 	const mostDecimals = 4
 	slope := 1 / math.Max(1-2/r.R, 1e-3)
-	bound := r.RBound * r.R * slope
+	bound := math.Max(r.RBound, r.AngleBound) * r.R * slope
 	if !(bound > 0) {
 		return mostDecimals
 	}
@@ -90,8 +136,13 @@ func fixed(v float64, decimals int) string {
 // figures writes v with n significant figures and no exponent where that is
 // short.
 func figures(v float64, n int) string {
-	if v == 0 {
+	switch {
+	case v == 0:
 		return "0"
+	case math.IsInf(v, 1):
+		return "infinity"
+	case math.IsNaN(v):
+		return "none"
 	}
 	decimals := n - 1 - int(math.Floor(math.Log10(math.Abs(v))))
 	if decimals < 0 || decimals > 9 {

@@ -2,31 +2,31 @@ package state
 
 import (
 	"path/filepath"
+	"slices"
 	"strings"
+	"time"
 
-	"annulet/app/tone"
 	"annulet/scenes"
 )
 
-// Document is a scene file being edited; *scenes.Document is one. A failed
-// Set changes nothing.
-type Document interface {
-	Set(key, value string) error
-	Text() []byte
-	Scene() scenes.Scene
-	Dir() string
-}
-
 // State is everything the window shows except the picture's pixels.
 type State struct {
-	Controls []*Control
-	Choices  []*Choice
-	Tone     tone.Curve
-	Notice   string // an error to show above the picture; "" for none
+	Controls  []*Control
+	Structure int    // changes with the list of Controls and their headings
+	Look      Look   // how the scene is looked at
+	Notice    string // an error to show above the picture; "" for none
+	Remark    string // what an edit has changed besides; "" for nothing
 
-	doc   Document
-	name  string // "@first-light", or the path of a file
-	saved string // the document's text when it was opened or saved
+	doc   *scenes.Document
+	scene scenes.Scene // of doc
+	name  string       // "@first-light", or the path of a file
+	saved string       // the document's text when it was opened or saved
+
+	past    []moment // what can be undone, the present last
+	future  []moment // what can be redone, the next last
+	gesture string   // what further changes of the last moment may be part of
+	acted   time.Time
+	now     func() time.Time
 
 	serial                  int
 	spaceColumns, spaceRows int // screen pixels for the picture; 0 before the window has a size
@@ -35,21 +35,31 @@ type State struct {
 
 // New returns the state of a window that has just opened a scene. Name is
 // "@first-light", or the path of a file.
-func New(doc Document, name string) *State {
-	s := &State{Controls: newControls(), Choices: newChoices(), Tone: tone.SquareRoot}
+func New(doc *scenes.Document, name string) *State {
+	s := &State{now: time.Now, Look: newLook()}
 	s.Open(doc, name)
 	return s
 }
 
 // Open replaces the scene.
-func (s *State) Open(doc Document, name string) {
+func (s *State) Open(doc *scenes.Document, name string) {
 	s.doc, s.name, s.saved = doc, name, string(doc.Text())
-	s.Notice = ""
-	for _, c := range s.Controls {
-		c.Wrong = ""
-	}
+	s.Notice, s.Remark = "", ""
+	s.Look = s.Look.forScene()
+	s.Controls, s.past, s.future, s.gesture = nil, nil, nil, ""
 	s.changed()
+	s.note("open", "")
 }
+
+// Recover replaces the scene by one that was being edited when the program
+// ended: its file and the text that the file held are those from before.
+func (s *State) Recover(doc *scenes.Document, name, saved string) {
+	s.Open(doc, name)
+	s.saved = saved
+}
+
+// SavedText returns the text that the file held when it was opened or saved.
+func (s *State) SavedText() string { return s.saved }
 
 // Saved notes that the scene is now in the file of that path.
 func (s *State) Saved(path string) {
@@ -92,6 +102,9 @@ func (s *State) Title() string {
 	return filepath.Base(s.name) + mark + " — Annulet"
 }
 
+// Label returns what messages call the scene: "@first-light" or a file name.
+func (s *State) Label() string { return filepath.Base(s.name) }
+
 // Suggested returns a file name to offer for saving, with that extension.
 func (s *State) Suggested(extension string) string {
 	base := strings.TrimPrefix(filepath.Base(s.name), "@")
@@ -102,22 +115,15 @@ func (s *State) Suggested(extension string) string {
 // that are wrong stay, or what was typed would be lost.
 func (s *State) changed() {
 	s.serial++
+	s.scene = s.doc.Scene()
 	s.fit()
-	scene := s.doc.Scene()
+	controls := s.controls()
+	if !slices.EqualFunc(controls, s.Controls, func(a, b *Control) bool { return a == b }) {
+		s.Structure++
+	}
+	s.Controls = controls
 	for _, c := range s.Controls {
-		c.Axis, c.Range = c.axis(scene)
-		if c.Wrong == "" {
-			c.show(c.read(scene))
-		}
+		c.update(s)
 	}
-	for _, c := range s.Choices {
-		c.Chosen = c.read(scene)
-	}
+	s.Look.suit(s.scene)
 }
-
-func (c *Control) show(at Stop) {
-	c.Position, c.Text = c.Axis.Position(at.Value), at.Text
-}
-
-// Label returns what messages call the scene: "@first-light" or a file name.
-func (s *State) Label() string { return filepath.Base(s.name) }

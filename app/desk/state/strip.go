@@ -48,11 +48,15 @@ func power(x float64) string {
 
 // field tells how wide the field is.
 func (p Picture) field() string {
-	if angular(p.Scene) {
+	switch p.Scene.Field.Projection {
+	case allSky:
+		return "field: the whole sky"
+	case parallel:
+	default:
 		return fmt.Sprintf("field %.4g deg", 2*math.Atan(p.Width/2)*180/math.Pi)
 	}
 	text := fmt.Sprintf("field %.4g M", p.Width)
-	if theta, ok := ThetaG(p.Scene); ok && math.IsInf(p.Scene.Observer.Radius, 1) {
+	if theta, ok := p.Scene.ThetaG(); ok && math.IsInf(p.Scene.Observer.Radius, 1) {
 		text += fmt.Sprintf(" = %.4g µas", p.Width*theta)
 	}
 	return text

@@ -2,8 +2,10 @@ package windowtest
 
 import (
 	"bufio"
+	"image"
 	"io"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -13,7 +15,7 @@ import (
 
 // patience is how long a line may take to come, on a machine that is busy
 // with other things. Not a statement about speed.
-const patience = 120 * time.Second
+const patience = 60 * time.Second
 
 // line is one line of the program's log.
 type line struct {
@@ -124,3 +126,55 @@ func settledAt(inclination string) func(line) bool {
 
 // picture suits any picture.
 func picture(l line) bool { return l.word == "settled" || l.word == "preview" }
+
+// placesOf holds where things are, by "key=… entry" and the like.
+type placesOf map[string]string
+
+// places waits for the window and returns where things are in it.
+func (b *logbook) places(t *testing.T) (placesOf, line) {
+	t.Helper()
+	p := placesOf{}
+	shown := b.wait(t, "the window", func(l line) bool {
+		if l.word == "place" {
+			p.add(strings.TrimPrefix(l.text, "annulet: place "))
+		}
+		return l.word == "window"
+	})
+	return p, shown
+}
+
+// add takes in a line such as "key=a entry=… slider=…" or "say="b" word=…".
+func (p placesOf) add(text string) {
+	var name []string
+	for _, m := range pair.FindAllStringSubmatch(text, -1) {
+		switch m[1] {
+		case "key", "say", "option":
+			name = append(name, m[0])
+		default:
+			p[strings.Join(append(slices.Clone(name), m[1]), " ")] = m[2]
+		}
+	}
+}
+
+func (p placesOf) of(t *testing.T, name string) image.Rectangle {
+	t.Helper()
+	text, ok := p[name]
+	if !ok {
+		t.Fatalf("nobody said where %s is", name)
+	}
+	return rectangle(t, text)
+}
+
+// end waits until the program has ended.
+func (b *logbook) end(t *testing.T) {
+	t.Helper()
+	deadline := time.AfterFunc(patience, b.more.Broadcast)
+	defer deadline.Stop()
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	for from := time.Now(); !b.ended; b.more.Wait() {
+		if time.Since(from) > patience {
+			t.Fatal("the program does not end")
+		}
+	}
+}

@@ -17,6 +17,8 @@ func TestWindow(t *testing.T) {
 	need(t, "go", "gcc", "pkg-config", "Xvfb", "openbox", "xdotool", "import")
 	program := build(t)
 	t.Run("follows the hand", func(t *testing.T) { followsTheHand(t, program) })
+	t.Run("opens every scene", func(t *testing.T) { opensEveryScene(t, program) })
+	t.Run("is an instrument", func(t *testing.T) { isAnInstrument(t, program) })
 	t.Run("refuses in words", func(t *testing.T) { refusesInWords(t, program) })
 }
 
@@ -25,17 +27,12 @@ func followsTheHand(t *testing.T, program string) {
 	started := time.Now()
 	log := s.run(program)
 
-	places := map[string]line{}
-	shown := log.wait(t, "the window", func(l line) bool {
-		if l.word == "place" {
-			places[l.fields["key"]] = l
-		}
-		return l.word == "window"
-	})
-	log.read = 0 // the first picture may have come before
+	places, shown := log.places(t)
+	log.read = 0 // the first picture may have come before, and be the settled one
 	first := log.wait(t, "a first picture", picture)
 	t.Logf("window shown %d ms after the start, first picture %d ms after the window",
 		shown.at.Sub(started).Milliseconds(), first.at.Sub(shown.at).Milliseconds())
+	log.read = 0
 	settled := log.wait(t, "a settled picture", word("settled"))
 	if settled.fields["inclination"] != "20" || settled.fields["scene"] != "@first-light" {
 		t.Errorf("opened on %q", settled.text)
@@ -44,9 +41,9 @@ func followsTheHand(t *testing.T, program string) {
 
 	w := window{s, s.do("search", "--onlyvisible", "--name", "Annulet")}
 	at := w.place()
-	slider := rectangle(t, places["observer.inclination"].fields["slider"])
-	entry := rectangle(t, places["observer.inclination"].fields["entry"])
-	shownImage := rectangle(t, places[""].fields["picture"])
+	slider := places.of(t, "key=observer.inclination slider")
+	entry := places.of(t, "key=observer.inclination entry")
+	shownImage := places.of(t, "picture")
 	onScreen := shownImage.Add(at)
 	before := s.shot("1-opened")
 
@@ -56,16 +53,19 @@ func followsTheHand(t *testing.T, program string) {
 	w.move(from)
 	s.do("mousedown", "1")
 	last := ""
+	var dragged line
 	for k := 1; k <= 5; k++ {
 		log.now()
 		moved := time.Now()
-		w.move(from.Add(point(k*16, 0)))
+		w.move(from.Add(point(k*5, 0)))
 		p := log.wait(t, "a picture while dragging", func(l line) bool { return picture(l) && l.fields["inclination"] != last })
-		last = p.fields["inclination"]
+		last, dragged = p.fields["inclination"], p
 		t.Logf("drag: %d ms to the picture: %s", p.at.Sub(moved).Milliseconds(), p.text)
 	}
 	s.do("mouseup", "1")
-	dragged := log.wait(t, "the dragged scene settled", word("settled"))
+	if dragged.word != "settled" {
+		dragged = log.wait(t, "the dragged scene settled", word("settled"))
+	}
 	if dragged.number(t, "inclination") < 40 {
 		t.Errorf("dragging by a quarter of the slider led to: %s", dragged.text)
 	}
@@ -179,6 +179,172 @@ func readFile(t *testing.T, path string) string {
 		t.Fatal(err)
 	}
 	return string(text)
+}
+
+// opensEveryScene opens the built-in scenes: stars, shells, moving observers
+// and skies have a picture, controls, readings and a strip.
+func opensEveryScene(t *testing.T, program string) {
+	s := newScreen(t)
+	for k, name := range []string{"@two-caps", "@slow-room", "@last-look", "@behind-glass"} {
+		log := s.run(program, name)
+		places, _ := log.places(t)
+		log.read = 0
+		if l := log.wait(t, name+" settled", word("settled")); l.fields["scene"] != name {
+			t.Errorf("%s opened as %s", name, l.text)
+		}
+		w := window{s, s.do("search", "--onlyvisible", "--name", name)}
+		image := places.of(t, "picture")
+		w.move(image.Min) // so that the next is a movement
+		log.now()
+		w.move( // off the middle, where a shadow may be
+			image.Min.Add(point(image.Dx()*3/5, image.Dy()*2/3)))
+		if l := log.wait(t, "a reading of "+name, word("reading")); l.number(t, "crossings") < 1 {
+			t.Errorf("%s: %s", name, l.text)
+		}
+		s.shot(fmt.Sprintf("scene-%d%s", k, name))
+		s.do("key", "ctrl+q")
+		log.end(t)
+	}
+}
+
+// isAnInstrument drives layers, overlays, zoom, marks, tables, graphs and the
+// history by mouse and keys.
+func isAnInstrument(t *testing.T, program string) {
+	s := newScreen(t)
+	log := s.run(program)
+	places, _ := log.places(t)
+	log.read = 0
+	log.wait(t, "a settled picture", word("settled"))
+	w := window{s, s.do("search", "--onlyvisible", "--name", "Annulet")}
+	image := places.of(t, "picture")
+	screen := image.Add(w.place())
+	last := s.shot("10-opened")
+	differs := func(name string, least float64) {
+		t.Helper()
+		now := s.shot(name)
+		if share := changed(last, now, screen); share < least {
+			t.Errorf("%s changed %.2f %% of the image", name, 100*share)
+		}
+		last = now
+	}
+	settled := func(what string) line { t.Helper(); return log.wait(t, what, word("settled")) }
+	press := func(label string) {
+		t.Helper()
+		log.now()
+		w.click(middle(places.of(t, "say="+strconv.Quote(label)+" word")))
+	}
+
+	press("g")
+	settled("the layer g")
+	differs("11-layer-g", 0.2)
+	press("g lines")
+	settled("contours")
+	differs("12-contours", 0.005)
+	press("Intensity")
+	settled("intensity")
+	press("rims")
+	log.wait(t, "rims", word("toned"))
+	press("critical curve")
+	log.wait(t, "the critical curve", word("toned"))
+	differs("13-rims", 0.01)
+
+	// The wheel zooms about the pointer, whose readings stay.
+	at := middle(image).Add(point(image.Dx()/12, 0))
+	w.move(at)
+	before := log.wait(t, "a reading", word("reading")).number(t, "alpha")
+	log.now()
+	for range 6 {
+		s.do("click", "4")
+	}
+	settled("a zoomed picture")
+	log.now()
+	w.move(at.Add(point(0, 1)))
+	after := log.wait(t, "a reading of the zoomed picture", word("reading")).number(t, "alpha")
+	if diff := after - before; diff > 0.2 || diff < -0.2 {
+		t.Errorf("zooming moved what is under the pointer from alpha = %g to %g", before, after)
+	}
+	differs("14-zoomed", 0.05)
+
+	// Dragging pans: the picture goes with the hand.
+	log.now()
+	s.drag(w, at, at.Add(point(-60, 20)))
+	settled("a panned picture")
+	log.now()
+	w.move(at.Add(point(-60, 21)))
+	panned := log.wait(t, "a reading of the panned picture", word("reading")).number(t, "alpha")
+	if diff := panned - after; diff > 0.3 || diff < -0.3 {
+		t.Errorf("the hand took alpha = %g along and holds %g", after, panned)
+	}
+	press("fit")
+	settled("the whole field")
+
+	// A click marks a point, keys move it; the brightest pixel is a key away.
+	log.now()
+	w.click(at)
+	log.wait(t, "a marker", word("marker"))
+	log.now()
+	s.do("key", "Right")
+	log.wait(t, "a marker moved", word("marker"))
+	log.now()
+	s.do("type", "m")
+	moved := log.wait(t, "the marker on the brightest pixel", word("marker"))
+	brightest := log.wait(t, "the brightest pixel's reading", func(l line) bool {
+		return l.word == "marked" && l.fields["alpha"] == moved.fields["alpha"]
+	})
+	if brightest.number(t, "alpha") >= 0 || brightest.number(t, "crossings") < 1 {
+		t.Errorf("the left side is not the bright one: %s", brightest.text)
+	}
+	s.shot("15-brightest")
+
+	// A cut and a circle are drawn by hand.
+	press("cut")
+	log.now()
+	left, right := point(image.Min.X+20, middle(image).Y), point(image.Max.X-20, middle(image).Y)
+	s.drag(w, left, right)
+	log.wait(t, "a cut", word("cut"))
+	log.wait(t, "the cut's graph", func(l line) bool {
+		return l.word == "graphed" && strings.Contains(l.fields["title"], "cut") && l.number(t, "curves") == 3
+	})
+	s.shot("16-cut")
+	press("circle")
+	log.now()
+	s.drag(w, middle(image), middle(image).Add(point(image.Dx()/11, 0)))
+	circle := log.wait(t, "a circle", word("circle"))
+	if r := circle.number(t, "radius"); r < 3 || r > 10 {
+		t.Errorf("a circle of the ring's size measures %g M", r)
+	}
+	s.shot("17-circle")
+
+	// Tables are copied as text and CSV.
+	for _, tab := range []string{"Rings", "Observer", "Stations", "Numerics", "Pixel"} {
+		press(tab)
+		log.wait(t, "the table "+tab, word("tab"))
+		s.shot("18-" + strings.ToLower(tab))
+	}
+
+	// Everything is undone, one change after another, and done again.
+	for range 4 {
+		log.now()
+		s.do("key", "ctrl+z")
+		log.wait(t, "an undone change", word("undone"))
+	}
+	log.now()
+	s.do("key", "ctrl+shift+z")
+	log.wait(t, "a change done again", word("redone"))
+	s.shot("19-undone")
+}
+
+// drag holds the left button from one point to another, in steps that a hand
+// would make.
+func (s *screen) drag(w window, from, to image.Point) {
+	s.t.Helper()
+	w.move(from)
+	s.do("mousedown", "1")
+	const steps = 5
+	for k := 1; k <= steps; k++ {
+		w.move(from.Add(to.Sub(from).Mul(k).Div(steps)))
+	}
+	s.do("mouseup", "1")
 }
 
 func refusesInWords(t *testing.T, program string) {
