@@ -21,7 +21,6 @@ type panel struct {
 	help      *widget.Label
 	structure int
 	folded    map[string]bool
-	shown     string // the help shown
 }
 
 const (

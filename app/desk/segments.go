@@ -75,14 +75,6 @@ func (w *word) choose(is bool) {
 	}
 }
 
-// rename changes the word.
-func (w *word) rename(label string) {
-	if label != w.label {
-		w.label = label
-		w.Refresh()
-	}
-}
-
 func (w *word) Tapped(*fyne.PointEvent) { w.onChosen() }
 
 func (w *word) TypedKey(e *fyne.KeyEvent) {
