@@ -10,6 +10,7 @@ import (
 	"fyne.io/fyne/v2/theme"
 
 	"annulet/app/desk/imaging"
+	"annulet/app/desk/keep"
 	"annulet/app/desk/overlay"
 	"annulet/app/desk/state"
 	"annulet/app/tone"
@@ -26,6 +27,8 @@ type commands struct {
 	state  *state.State
 	view   *view
 	log    *log
+	home   *home
+	inbox  *funnel
 	maker  *imaging.Maker
 	asker  *imaging.Latest[inquiry, finding]
 
@@ -39,6 +42,9 @@ type commands struct {
 	found      *finding
 
 	frameShown time.Duration  // from the order to the picture
+	keeping    bool           // unsaved work will soon be kept
+	kept       string         // the text last kept, or opened
+	lost       *keep.Work     // of another window, not yet brought back
 	traceError string         // why the latest scene could not be traced
 	whole      raytrace.Field // the scene's, at the picture's pixels
 }
@@ -49,22 +55,19 @@ type pixel struct {
 	column, row int
 }
 
-func newCommands(a fyne.App, w fyne.Window, s *state.State, l *log) *commands {
-	c := &commands{app: a, window: w, state: s, log: l, requested: -1}
+func newCommands(a fyne.App, w fyne.Window, s *state.State, h *home, l *log) *commands {
+	c := &commands{app: a, window: w, state: s, home: h, log: l, requested: -1, kept: string(s.Text())}
+	setWorkers(h.settings.Workers)
 	inbox := &funnel{deliver: c.receive}
+	c.inbox = inbox
 	ready := &views{}
 	c.maker = imaging.NewMaker(func(o imaging.Order) (imaging.View, error) { return ready.of(o) },
 		func(f imaging.Frame) { inbox.put(func(n *news) { n.frame = &f }) },
 		func(done, tiles int) { inbox.put(func(n *news) { n.done, n.tiles = done, tiles }) })
 	c.asker = imaging.NewLatest(ready.inquire, func(f finding) { inbox.put(func(n *news) { n.found = &f }) })
-	c.build()
-	return c
-}
-
-// build makes the widgets, anew when the theme has changed.
-func (c *commands) build() {
 	c.view = newView(c.window, c.state, c)
 	c.sync()
+	return c
 }
 
 // start begins to work, until ctx ends.
@@ -82,6 +85,9 @@ func (c *commands) sync() {
 	c.request()
 	c.showTable()
 	c.syncMenu()
+	if string(c.state.Text()) != c.kept {
+		c.keepSoon()
+	}
 }
 
 // order asks for the picture of the scene as it is now.
@@ -135,7 +141,7 @@ func coloursOf(l raytrace.Layer) *assets.Map {
 // toneOf returns the tone of the layer shown.
 func toneOf(l state.Look) tone.Tone {
 	set := l.Tone()
-	t := tone.Tone{Curve: set.Curve}
+	t := tone.Tone{Curve: set.Curve, FromZero: l.Layer == raytrace.Intensity && set.Curve != tone.Logarithmic}
 	if l.Layer != raytrace.Intensity {
 		t.CountZeros = true
 		t.LowPercent, t.HighPercent = 0.2, 99.8 // without a few extremes
@@ -185,6 +191,9 @@ func (c *commands) receive(n news) {
 	if n.found != nil {
 		c.receiveFound(*n.found)
 	}
+	if n.keep {
+		c.keepNow()
+	}
 }
 
 func (c *commands) receiveFrame(f imaging.Frame) {
@@ -192,7 +201,7 @@ func (c *commands) receiveFrame(f imaging.Frame) {
 	name := c.state.Name()
 	if f.Err != nil {
 		if latest {
-			c.state.Notice = f.Err.Error()
+			c.state.Notice, c.state.Calm = f.Err.Error(), false
 			c.traceError = f.Err.Error()
 			c.view.sync(c.state, c.tool)
 			c.view.setPicked("not traced")
@@ -209,9 +218,7 @@ func (c *commands) receiveFrame(f imaging.Frame) {
 	}
 	shown := time.Since(f.Order.Asked)
 	c.frame, c.frameShown = &f, shown
-	c.view.picture.show(f.Image, f.Ink, f.Shown)
-	l := c.state.Look
-	c.view.tones.show(f.Developed, toneOf(l), coloursOf(l.Layer))
+	c.showFrame(f)
 	c.view.setPicked(state.Picture{
 		Scene: f.Order.Scene, Width: f.Shown.Width,
 		Columns: f.Plate.Columns, Rows: f.Plate.Rows, Coarsening: f.Coarsening,
@@ -227,6 +234,16 @@ func (c *commands) receiveFrame(f imaging.Frame) {
 		afterPaint(func() { c.log.frame(f, name, latest) })
 	}
 }
+
+// showFrame shows a picture and its histogram.
+func (c *commands) showFrame(f imaging.Frame) {
+	c.view.picture.show(f.Image, f.Ink, f.Shown)
+	l := c.state.Look
+	c.view.tones.show(f.Developed, toneOf(l), coloursOf(l.Layer))
+}
+
+// forget drops what is known of another scene.
+func (c *commands) forget() { c.found, c.frame, c.whole = nil, nil, raytrace.Field{} }
 
 func (c *commands) receiveFound(f finding) {
 	if f.err == nil {

@@ -12,7 +12,8 @@ import (
 type news struct {
 	frame       *imaging.Frame
 	found       *finding
-	done, tiles int // of a long trace; tiles is 0 for no news
+	done, tiles int  // of a long trace; tiles is 0 for no news
+	keep        bool // it is time to keep unsaved work
 }
 
 // funnel carries news to the window's thread. However fast it comes, at most

@@ -67,6 +67,8 @@ func (c *commands) arrange(n int, what state.Arrangement) {
 
 func (c *commands) help(text string) { c.view.panel.setHelp(text) }
 
+func (c *commands) turnSide(readings bool) { c.view.turnSide(readings) }
+
 func (c *commands) dismiss() {
 	c.state.Notice = ""
 	c.sync()

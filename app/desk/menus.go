@@ -31,6 +31,7 @@ func (c *commands) actions() []action {
 		{menu: "File", label: "Save scene", do: c.save, shortcut: control(fyne.KeyS)},
 		{menu: "File", label: "Save scene as…", do: c.saveAs, shortcut: controlShift(fyne.KeyS)},
 		{menu: "File", label: "Go back to saved", do: c.revert},
+		{menu: "File", label: "Recover unsaved work", do: c.recoverLost},
 		{menu: "File", label: "Save image…", do: c.saveImage, shortcut: control(fyne.KeyE), gap: true},
 		{menu: "File", label: "Save the graph's values as CSV…", do: c.saveGraphCSV},
 		{menu: "File", label: "Save the graph as PNG…", do: c.saveGraphPNG},
@@ -84,9 +85,15 @@ func (c *commands) actions() []action {
 		all = append(all, action{menu: "Window", label: "Graph: " + name, do: func() { c.showGraph(state.Graph(k)) }, gap: k == 0,
 			checked: func() bool { return look().Graph == state.Graph(k) }})
 	}
+	for k, path := range c.home.settings.Recent {
+		all = append(all, action{menu: "File", label: "Open " + path, do: func() { c.openKept(path) }, gap: k == 0})
+	}
 	return append(all,
+		action{menu: "Window", label: "Show or hide the scene", do: func() { c.turnSide(false) }, shortcut: control(fyne.KeyL), gap: true},
+		action{menu: "Window", label: "Show or hide the readings", do: func() { c.turnSide(true) }, shortcut: control(fyne.KeyR)},
 		action{menu: "Window", label: "Go to the image", do: func() { c.window.Canvas().Focus(c.view.picture) }, shortcut: control(fyne.KeyI), gap: true},
 		action{menu: "Window", label: "Find an action or a key…", do: c.find, shortcut: control(fyne.KeyK)},
+		action{menu: "Window", label: "Settings…", do: c.askSettings, shortcut: control(fyne.KeyComma)},
 	)
 }
 

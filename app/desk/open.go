@@ -5,7 +5,6 @@ import (
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/storage"
 
-	"annulet/raytrace"
 	"annulet/scenes"
 )
 
@@ -18,13 +17,18 @@ func (c *commands) openNamed(name string) {
 		return
 	}
 	c.state.Open(doc, name)
-	c.found, c.frame, c.whole = nil, nil, raytrace.Field{}
+	c.forget()
+	c.kept = ""
 	c.sync()
+	if path := c.state.Path(); path != "" {
+		c.used(path)
+	}
+	c.log.line("opened scene=%q", name)
 }
 
 // tell shows an error above the picture.
 func (c *commands) tell(err error) {
-	c.state.Notice = err.Error()
+	c.state.Notice, c.state.Calm = err.Error(), false
 	c.view.sync(c.state, c.tool)
 	c.log.line("refused error=%q", err.Error())
 }

@@ -19,8 +19,11 @@ type panel struct {
 	list      *fyne.Container
 	scroll    *container.Scroll
 	help      *widget.Label
+	below     fyne.CanvasObject // the help with its line
 	structure int
 	folded    map[string]bool
+	hint      string // what the control under the pointer means; "" for none
+	standing  string // told otherwise
 }
 
 const (
@@ -47,12 +50,19 @@ func newPanel(h hands) *panel {
 
 // content is the panel with, under it, what the key under the pointer means.
 func (p *panel) content() fyne.CanvasObject {
-	help := room(helpHeight, container.NewVScroll(p.help))
-	return container.NewBorder(nil, container.NewVBox(widget.NewSeparator(), help), nil, nil, p.scroll)
+	p.below = container.New(tightColumn{}, line1(), room(helpHeight, container.NewVScroll(container.New(layout.NewCustomPaddedLayout(0, 0, panelInset-4, 4), p.help))))
+	return container.NewBorder(nil, p.below, nil, nil, p.scroll)
 }
 
-// setHelp tells what the control under the pointer means.
+// compact leaves the help out.
+func (p *panel) compact(is bool) { setVisible(p.below, !is) }
+
+// setHelp tells what the control under the pointer means; without one, what
+// stands there always.
 func (p *panel) setHelp(text string) {
+	if p.hint = text; text == "" {
+		text = p.standing
+	}
 	if p.help.Text != text {
 		p.help.SetText(text)
 	}

@@ -59,9 +59,9 @@ type picture struct {
 	look          state.Look
 	tool          tool
 
-	across, down        [2]*canvas.Line // the marker's cross
-	cut                 *canvas.Line
-	circle              *canvas.Circle
+	across, down        [2]*stroke // the marker's cross
+	cut                 *stroke
+	circle, underCircle *canvas.Circle
 	grips               [4]*canvas.Rectangle // ends of the cut, middle and rim of the circle
 	frame               *canvas.Rectangle    // tells that the picture has the focus
 	held                grip
@@ -100,17 +100,16 @@ func newPicture(on onPicture) *picture {
 		return m
 	}
 	p.image, p.ink = blank(), blank()
-	stroke := func() *canvas.Line {
-		l := canvas.NewLine(overInk)
-		l.StrokeWidth = 1.4
-		return l
-	}
 	for k := range 2 {
-		p.across[k], p.down[k] = stroke(), stroke()
+		p.across[k], p.down[k] = newStroke(), newStroke()
 	}
-	p.cut = stroke()
-	p.circle = canvas.NewCircle(color.Transparent)
-	p.circle.StrokeColor, p.circle.StrokeWidth = overInk, 1.4
+	p.cut = newStroke()
+	ring := func(c color.Color, width float32) *canvas.Circle {
+		o := canvas.NewCircle(color.Transparent)
+		o.StrokeColor, o.StrokeWidth = c, width
+		return o
+	}
+	p.underCircle, p.circle = ring(underInk, underWidth), ring(overInk, overWidth)
 	for k := range p.grips {
 		g := canvas.NewRectangle(withAlpha(color.NRGBA{A: 0xff}, 0x70))
 		g.StrokeColor, g.StrokeWidth = overInk, 1.4
@@ -124,6 +123,34 @@ func newPicture(on onPicture) *picture {
 
 // overInk is the colour of what can be taken hold of, on any image.
 var overInk = color.NRGBA{0xff, 0xe9, 0xa8, 0xff}
+
+// underInk is drawn beneath it, wider, so that it shows on light images too.
+var underInk = color.NRGBA{0, 0, 0, 0xa0}
+
+const (
+	overWidth  = 1.4
+	underWidth = 3.6
+)
+
+// stroke is a line that shows on any image.
+type stroke struct{ under, over *canvas.Line }
+
+func newStroke() *stroke {
+	s := &stroke{canvas.NewLine(underInk), canvas.NewLine(overInk)}
+	s.under.StrokeWidth, s.over.StrokeWidth = underWidth, overWidth
+	return s
+}
+
+// set draws it between two points, or not at all.
+func (s *stroke) set(a, b fyne.Position, show bool) {
+	for _, l := range []*canvas.Line{s.under, s.over} {
+		if show {
+			l.Position1, l.Position2 = a, b
+		}
+		setVisible(l, show)
+		l.Refresh()
+	}
+}
 
 // show replaces the image and what is drawn over it; nil for nothing.
 func (p *picture) show(m, ink *image.RGBA, field raytrace.Field) {
@@ -179,6 +206,9 @@ func (p *picture) place(size fyne.Size) {
 
 // at returns where screen coordinates of the field lie in the widget.
 func (p *picture) at(c [2]float64) fyne.Position {
+	if p.field.Columns == 0 {
+		return fyne.Position{}
+	}
 	f, s := p.field, float64(p.scale())
 	pitch := f.Pitch()
 	x := (c[0]-f.Center[0])/pitch + float64(f.Columns)/2
@@ -208,46 +238,36 @@ func (p *picture) placeMarks() {
 		size := p.image.Size()
 		return at.X >= 0 && at.Y >= 0 && at.X <= size.Width && at.Y <= size.Height
 	}
-	shows := ready && p.look.Marker.On
-	if shows {
-		at := p.at(p.look.Marker.At)
-		shows = inside(at)
-		for k, side := range []float32{-1, 1} {
-			p.across[k].Position1, p.across[k].Position2 = at.AddXY(side*crossGap, 0), at.AddXY(side*crossArm, 0)
-			p.down[k].Position1, p.down[k].Position2 = at.AddXY(0, side*crossGap), at.AddXY(0, side*crossArm)
-		}
-	}
-	for k := range 2 {
-		setVisible(p.across[k], shows)
-		setVisible(p.down[k], shows)
-		p.across[k].Refresh()
-		p.down[k].Refresh()
+	marker := p.at(p.look.Marker.At)
+	shows := ready && p.look.Marker.On && inside(marker)
+	for k, side := range []float32{-1, 1} {
+		p.across[k].set(marker.AddXY(side*crossGap, 0), marker.AddXY(side*crossArm, 0), shows)
+		p.down[k].set(marker.AddXY(0, side*crossGap), marker.AddXY(0, side*crossArm), shows)
 	}
 	hold := func(g *canvas.Rectangle, at fyne.Position, on bool) {
 		g.Move(at.SubtractXY(gripSize/2, gripSize/2))
 		g.Resize(fyne.NewSize(gripSize, gripSize))
 		setVisible(g, on && inside(at))
 	}
-	cut := ready && p.look.Cut.On
-	if cut {
-		from, to := p.at(p.look.Cut.From), p.at(p.look.Cut.To)
+	if cut := p.look.Cut; ready && cut.On {
+		from, to := p.at(cut.From), p.at(cut.To)
 		hold(p.grips[0], from, true)
 		hold(p.grips[1], to, true)
 		a, b, some := p.clip(from, to)
-		p.cut.Position1, p.cut.Position2 = a, b
-		cut = some
+		p.cut.set(a, b, some)
 	} else {
+		p.cut.set(fyne.Position{}, fyne.Position{}, false)
 		p.grips[0].Hide()
 		p.grips[1].Hide()
 	}
-	setVisible(p.cut, cut)
-	p.cut.Refresh()
 	circle := ready && p.look.Circle.On
 	if circle {
 		middle := p.at(p.look.Circle.Centre)
 		radius := float32(p.look.Circle.Radius/p.field.Pitch()) / p.scale()
-		p.circle.Move(middle.SubtractXY(radius, radius))
-		p.circle.Resize(fyne.NewSize(2*radius, 2*radius))
+		for _, o := range []*canvas.Circle{p.circle, p.underCircle} {
+			o.Move(middle.SubtractXY(radius, radius))
+			o.Resize(fyne.NewSize(2*radius, 2*radius))
+		}
 		circle = p.fits(middle, radius)
 		hold(p.grips[2], middle, true)
 		hold(p.grips[3], middle.AddXY(radius, 0), true)
@@ -255,8 +275,10 @@ func (p *picture) placeMarks() {
 		p.grips[2].Hide()
 		p.grips[3].Hide()
 	}
-	setVisible(p.circle, circle)
-	p.circle.Refresh()
+	for _, o := range []*canvas.Circle{p.circle, p.underCircle} {
+		setVisible(o, circle)
+		o.Refresh()
+	}
 }
 
 // fits says whether a circle lies within the widget, so that it is not drawn
@@ -434,9 +456,9 @@ func (r pictureRenderer) Refresh() { canvas.Refresh(r.picture) }
 
 func (r pictureRenderer) Objects() []fyne.CanvasObject {
 	p := r.picture
-	all := []fyne.CanvasObject{p.image, p.ink, p.circle, p.cut}
-	for k := range 2 {
-		all = append(all, p.across[k], p.down[k])
+	all := []fyne.CanvasObject{p.image, p.ink, p.underCircle, p.circle}
+	for _, s := range []*stroke{p.cut, p.across[0], p.across[1], p.down[0], p.down[1]} {
+		all = append(all, s.under, s.over)
 	}
 	for _, g := range p.grips {
 		all = append(all, g)

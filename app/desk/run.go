@@ -5,6 +5,7 @@ import (
 	"io"
 	"os"
 	"runtime"
+	"strconv"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/app"
@@ -17,6 +18,9 @@ import (
 // LogVariable is the environment variable that, set to 1, makes the window
 // tell on stderr what has become visible, one line each.
 const LogVariable = "ANNULET_LOG"
+
+// scaleVariable is the toolkit's environment variable for the scale.
+const scaleVariable = "FYNE_SCALE"
 
 // firstSize is the window's on a screen of 1280 × 800.
 var firstSize = fyne.NewSize(1240, 740)
@@ -33,6 +37,11 @@ func Run(doc *scenes.Document, name string, stderr io.Writer) {
 	if os.Getenv(LogVariable) == "1" {
 		l.to = stderr
 	}
+	h := newHome(l)
+	if scale := h.settings.Scale; scale > 0 && os.Getenv(scaleVariable) == "" {
+		os.Setenv(scaleVariable, strconv.FormatFloat(scale, 'g', -1, 64))
+	}
+	h.palette().use()
 	a := app.NewWithID("annulet")
 	a.Settings().SetTheme(look{})
 	a.SetIcon(fyne.NewStaticResource("annulet.png", assets.IconPNG))
@@ -41,8 +50,9 @@ func Run(doc *scenes.Document, name string, stderr io.Writer) {
 	ctx, stop := context.WithCancel(context.Background())
 	defer stop()
 
-	c := newCommands(a, w, state.New(doc, name), l)
+	c := newCommands(a, w, state.New(doc, name), h, l)
 	w.SetMainMenu(c.menu())
+	c.recover()
 	w.SetOnDropped(c.dropped)
 	w.Canvas().SetOnTypedKey(func(e *fyne.KeyEvent) {
 		if e.Name == fyne.KeyEscape {
@@ -61,4 +71,6 @@ func Run(doc *scenes.Document, name string, stderr io.Writer) {
 	})
 	c.start(ctx)
 	w.ShowAndRun()
+	c.keepNow()
+	h.close()
 }

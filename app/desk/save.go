@@ -48,7 +48,9 @@ func (c *commands) saveTo(path string) {
 		return
 	}
 	c.state.Saved(path)
+	c.kept = ""
 	c.sync()
+	c.used(path)
 	c.log.line("saved scene=%q", path)
 }
 

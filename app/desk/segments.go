@@ -81,6 +81,15 @@ func (w *word) TypedKey(e *fyne.KeyEvent) {
 	switch e.Name {
 	case fyne.KeyReturn, fyne.KeyEnter, fyne.KeySpace:
 		w.onChosen()
+	default:
+		passOn(w, e)
+	}
+}
+
+// passOn gives the window a key that a widget with the focus has no use for.
+func passOn(o fyne.CanvasObject, e *fyne.KeyEvent) {
+	if c := fyne.CurrentApp().Driver().CanvasForObject(o); c != nil && c.OnTypedKey() != nil {
+		c.OnTypedKey()(e)
 	}
 }
 

@@ -26,11 +26,17 @@ type sidebar struct {
 	graphs   *segments
 	graph    *graphView
 	reading  *canvas.Text
+	tables   fyne.CanvasObject // all that is shown of a table
+	file     *widget.Entry     // the scene's text
+	fault    *widget.Label     // what is wrong with it
+	editor   fyne.CanvasObject // both
+	setting  bool              // the program, not the hand, changes the text
+	lower    fyne.CanvasObject // the graph
 	content  fyne.CanvasObject
 }
 
 const (
-	sidebarWidth = 306
+	sidebarWidth = 318
 	graphHeight  = 232
 )
 
@@ -71,12 +77,32 @@ func newSidebar(h hands) *sidebar {
 		container.NewVBox(widget.NewSeparator(), row(b.graphs.row)),
 		container.NewVBox(container.New(layout.NewCustomPaddedLayout(0, 0, 10, 6), container.NewStack(spacer(16), b.reading)), row(saved)),
 		nil, nil, room(graphHeight, b.graph))
-	upper := container.NewBorder(row(b.tabs.row), row(copied), nil, nil,
-		container.NewVScroll(container.NewVBox(
-			container.New(layout.NewCustomPaddedLayout(0, 0, 8, 8), b.radiiRow), b.text, b.remark)))
+	b.tables = container.NewBorder(nil, row(copied), nil, nil, container.NewVScroll(container.NewVBox(
+		container.New(layout.NewCustomPaddedLayout(0, 0, 10, 8), b.radiiRow),
+		container.New(layout.NewCustomPaddedLayout(0, 0, 8, 4), b.text),
+		container.New(layout.NewCustomPaddedLayout(0, 0, 8, 4), b.remark))))
+	b.file = widget.NewMultiLineEntry()
+	b.file.TextStyle.Monospace = true
+	b.file.Wrapping = fyne.TextWrapOff
+	b.file.OnChanged = func(text string) {
+		if !b.setting {
+			h.editText(text)
+		}
+	}
+	b.fault = widget.NewLabel("")
+	b.fault.SizeName = theme.SizeNameCaptionText
+	b.fault.Wrapping = fyne.TextWrapWord
+	b.fault.Importance = widget.DangerImportance
+	b.fault.Selectable = true
+	b.editor = container.NewBorder(nil, b.fault, nil, nil, container.NewThemeOverride(b.file, smallText{}))
+	upper := container.NewBorder(row(b.tabs.row), nil, nil, nil, container.NewStack(b.tables, b.editor))
+	b.lower = lower
 	b.content = container.NewBorder(nil, lower, nil, nil, upper)
 	return b
 }
+
+// compact leaves the graph out.
+func (b *sidebar) compact(is bool) { setVisible(b.lower, !is) }
 
 // row insets a line of words.
 func row(o fyne.CanvasObject) fyne.CanvasObject {
@@ -101,6 +127,30 @@ func (b *sidebar) sync(s *state.State) {
 	b.tabs.set(int(s.Look.Tab))
 	b.graphs.set(int(s.Look.Graph))
 	setVisible(b.radiiRow, s.Look.Tab == state.TabStations)
+	setVisible(b.tables, s.Look.Tab != state.TabText)
+	setVisible(b.editor, s.Look.Tab == state.TabText)
+	if s.Look.Tab != state.TabText {
+		return
+	}
+	if text := string(s.Text()); text != b.file.Text && s.TextWrong == "" {
+		b.setting = true
+		b.file.SetText(text)
+		b.setting = false
+	}
+	if b.fault.Text != s.TextWrong {
+		b.fault.SetText(s.TextWrong)
+	}
+	setVisible(b.fault, s.TextWrong != "")
+}
+
+// smallText is the window's theme with text as small as captions.
+type smallText struct{ look }
+
+func (smallText) Size(name fyne.ThemeSizeName) float32 {
+	if name == theme.SizeNameText {
+		name = theme.SizeNameCaptionText
+	}
+	return look{}.Size(name)
 }
 
 // show shows a table.

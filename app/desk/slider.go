@@ -123,6 +123,8 @@ func (s *slider) TypedKey(e *fyne.KeyEvent) {
 		s.onSlide(0)
 	case fyne.KeyEnd:
 		s.onSlide(s.last)
+	default:
+		passOn(s, e)
 	}
 }
 

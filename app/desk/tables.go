@@ -37,6 +37,7 @@ func (c *commands) table() state.Table {
 				Traced: f.Traced, Shown: c.frameShown, Workers: workers(), Coarsening: f.Coarsening,
 			})
 		}
+	case state.TabText:
 	default:
 		return c.pixelTable()
 	}
@@ -75,7 +76,8 @@ func (c *commands) pixelTable() state.Table {
 	return t
 }
 
-func (c *commands) showTable() { c.view.side.show(c.table()) }
+// showTable shows it, with lengths as the settings have them.
+func (c *commands) showTable() { c.view.side.show(c.table().In(c.home.settings.Length)) }
 
 func (c *commands) showTab(t state.Tab) {
 	if c.state.Look.Tab == t {
@@ -100,8 +102,28 @@ func (c *commands) setStations(text string) {
 	c.showTable()
 }
 
-func (c *commands) copyText() { c.copied(c.table().Text()) }
-func (c *commands) copyCSV()  { c.copied(c.table().CSV()) }
+// editText takes the scene's text as it is typed.
+func (c *commands) editText(text string) {
+	changed := c.state.SetText(text)
+	if c.state.TextWrong != "" {
+		c.log.line("text error=%q", c.state.TextWrong)
+	}
+	if changed {
+		c.sync()
+		return
+	}
+	c.view.sync(c.state, c.tool)
+}
+
+func (c *commands) copyText() {
+	if c.state.Look.Tab == state.TabText {
+		c.copied(string(c.state.Text()))
+		return
+	}
+	c.copied(c.table().In(c.home.settings.Length).Text())
+}
+
+func (c *commands) copyCSV() { c.copied(c.table().CSV()) }
 
 func (c *commands) copied(text string) {
 	c.app.Clipboard().SetContent(text)

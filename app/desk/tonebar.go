@@ -37,6 +37,7 @@ type toneBar struct {
 	curves    *segments
 	automatic *word
 	unit      *canvas.Text
+	flow      *flowRow
 	content   fyne.CanvasObject
 }
 
@@ -91,10 +92,14 @@ func newToneBar(h hands) *toneBar {
 		return container.New(fixedWidth{limitEntry}, e)
 	}
 	bar := container.NewBorder(nil, nil, entryBox(b.low), entryBox(b.high), b)
-	words := container.NewBorder(nil, nil, hbox(1, b.curves.row), hbox(4, b.unit, b.automatic))
-	b.content = container.New(layout.NewCustomPaddedLayout(3, 2, 8, 8), container.NewVBox(bar, words))
+	b.flow = &flowRow{gap: 4, lastRight: true}
+	words := container.New(b.flow, b.curves.row, hbox(4, b.unit, b.automatic))
+	b.content = container.New(layout.NewCustomPaddedLayout(3, 2, barInset, barInset), container.New(tightColumn{}, bar, spacer(3), words))
 	return b
 }
+
+// setWidth says how wide the bar will be.
+func (b *toneBar) setWidth(width float32) { b.flow.width = width - 2*barInset }
 
 // fixedWidth gives objects a width, centred vertically at their own height.
 type fixedWidth struct{ width float32 }

@@ -12,13 +12,15 @@ import (
 
 // topBar holds, above the image, what it shows and what the hand does.
 type topBar struct {
-	layers, orders *segments
-	ordersRow      *fyne.Container
-	overlays       *segments
-	tools          *segments
-	whole          *word // shows the whole field
-	hands          hands
-	content        fyne.CanvasObject
+	layers, orders  *segments
+	ordersRow       *fyne.Container
+	overlays        *segments
+	tools           *segments
+	whole           *word // shows the whole field
+	scene, readings *word // turn the sides on and off
+	first, second   *flowRow
+	hands           hands
+	content         fyne.CanvasObject
 }
 
 func newTopBar(h hands) *topBar {
@@ -38,18 +40,42 @@ func newTopBar(h hands) *topBar {
 	}
 	fit := newAction("fit", h.fit)
 	b.whole = fit
-	own := newAction("own pixels", h.turnOwn)
-	own.unlined = false
+	own := newWord("own pixels", h.turnOwn)
+	own.inset = 6
 	b.overlays.words = append(b.overlays.words, own)
 	helpful(h, fit, "Show the whole field again.")
 	helpful(h, own, "Show the pixels that the scene asks for, each magnified.")
 	helpful(h, b.tools.words[0], "Dragging moves the image, the wheel zooms, a click marks a point.")
 	helpful(h, b.tools.words[1], "Dragging draws a line; its values are in the graph Cut.")
 	helpful(h, b.tools.words[2], "Dragging draws a circle from its middle; its diameter is in the table Pixel.")
-	first := container.NewBorder(nil, nil, hbox(8, b.layers.row, b.ordersRow), nil)
-	second := container.NewBorder(nil, nil, hbox(4, b.overlays.row, own), hbox(4, b.tools.row, fit))
-	b.content = container.New(layout.NewCustomPaddedLayout(3, 3, 8, 6), container.New(tightColumn{}, first, second))
+	b.scene = newWord("scene", func() { h.turnSide(false) })
+	b.readings = newWord("readings", func() { h.turnSide(true) })
+	helpful(h, b.scene, "Show or hide the scene's keys.")
+	helpful(h, b.readings, "Show or hide readings and graph.")
+	b.scene.chosen, b.readings.chosen = true, true
+	b.first = &flowRow{gap: 8, lastRight: true}
+	b.second = &flowRow{gap: 1, lastRight: true}
+	first := container.New(b.first, b.layers.row, b.ordersRow, hbox(1, b.scene, b.readings))
+	second := container.New(b.second)
+	for _, w := range b.overlays.words {
+		second.Add(w)
+	}
+	second.Add(hbox(4, b.tools.row, fit))
+	b.content = container.New(layout.NewCustomPaddedLayout(3, 3, barInset, barInset), container.New(tightColumn{}, first, second))
 	return b
+}
+
+const barInset = 7
+
+// setWidth says how wide the bar will be.
+func (b *topBar) setWidth(width float32) {
+	b.first.width, b.second.width = width-2*barInset, width-2*barInset
+}
+
+// sides shows which sides are shown.
+func (b *topBar) sides(scene, readings bool) {
+	b.scene.choose(scene)
+	b.readings.choose(readings)
 }
 
 // helpful gives a word its help.

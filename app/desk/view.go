@@ -42,6 +42,7 @@ type hands interface {
 	showTab(t state.Tab)
 	showGraph(g state.Graph)
 	setStations(text string)
+	editText(text string)
 	copyText()
 	copyCSV()
 	saveGraphCSV()
@@ -49,6 +50,7 @@ type hands interface {
 
 	help(text string)
 	dismiss()
+	turnSide(readings bool)
 }
 
 // view turns the state into widgets. It decides nothing.
@@ -63,6 +65,10 @@ type view struct {
 	picked  *canvas.Text // the state of the picture
 	notice  *widget.Label
 	noticed fyne.CanvasObject // the notice with its surroundings
+
+	content     *fyne.Container
+	arrangement *arrangement
+	stripFlow   *flowRow
 }
 
 func newView(w fyne.Window, s *state.State, h hands) *view {
@@ -80,31 +86,58 @@ func newView(w fyne.Window, s *state.State, h hands) *view {
 	v.notice.TextStyle.Monospace = true
 	v.notice.SizeName = theme.SizeNameCaptionText
 	v.notice.Importance = widget.DangerImportance
-	v.notice.Wrapping = fyne.TextWrapBreak
+	v.notice.Wrapping = fyne.TextWrapWord
 	v.notice.Selectable = true
 	close := widget.NewButton("Dismiss", h.dismiss)
 	v.noticed = container.NewStack(canvas.NewRectangle(raised),
 		container.NewBorder(nil, nil, nil, container.NewCenter(close), v.notice))
-	middle := container.NewBorder(container.New(tightColumn{}, v.top.content), v.tones.content, nil, nil,
-		container.NewBorder(v.noticed, nil, nil, nil, v.picture))
-	content := container.NewBorder(nil, v.strip(),
-		container.NewHBox(column(panelWidth, v.panel.content()), widget.NewSeparator()),
-		container.NewHBox(widget.NewSeparator(), column(sidebarWidth, v.side.content)),
-		middle)
-	w.SetContent(container.NewStack(canvas.NewRectangle(ground), content))
+	middle := container.New(middleColumn{v}, v.top.content, v.noticed, v.picture, v.tones.content)
+	line := func() fyne.CanvasObject { return canvas.NewRectangle(edge) }
+	v.arrangement = &arrangement{view: v, scene: true, readings: true}
+	v.content = container.New(v.arrangement, v.panel.content(), line(), middle, line(), v.side.content, v.strip())
+	w.SetContent(container.NewStack(canvas.NewRectangle(ground), v.content))
 	return v
 }
 
+// turnSide shows or hides the scene (or the readings).
+func (v *view) turnSide(readings bool) {
+	a := v.arrangement
+	wanted := &a.scene
+	if readings {
+		wanted = &a.readings
+	}
+	shown := v.panelShown()
+	if readings {
+		shown = v.side.content.Visible()
+	}
+	*wanted = !shown
+	if *wanted {
+		a.preferred = readings
+	} else {
+		a.preferred = !readings
+	}
+	v.content.Layout.Layout(v.content.Objects, v.content.Size())
+	v.content.Refresh()
+}
+
+func (v *view) panelShown() bool { return v.content.Objects[0].Visible() }
+
 // strip says what the model leaves out and what the picture is.
 func (v *view) strip() fyne.CanvasObject {
-	out := widget.NewLabel(state.LeftOut)
-	out.SizeName = theme.SizeNameCaptionText
-	out.Importance = widget.LowImportance
-	out.Truncation = fyne.TextTruncateEllipsis
-	picked := container.New(layout.NewCustomPaddedLayout(0, 0, 0, 10), container.NewCenter(v.picked))
-	inset := canvas.NewRectangle(color.Transparent)
-	inset.SetMinSize(fyne.NewSize(2, 0))
-	return container.NewVBox(widget.NewSeparator(), container.NewBorder(nil, nil, inset, picked, out))
+	v.stripFlow = &flowRow{lastRight: true, gap: 10}
+	left := canvas.NewText(state.LeftOut, quiet)
+	left.TextSize = v.picked.TextSize
+	pad := func(o fyne.CanvasObject) fyne.CanvasObject {
+		return container.New(layout.NewCustomPaddedLayout(3, 3, 10, 10), o)
+	}
+	return container.New(tightColumn{}, line1(), container.New(v.stripFlow, pad(left), pad(v.picked)))
+}
+
+// line1 is a line across.
+func line1() fyne.CanvasObject {
+	l := canvas.NewRectangle(edge)
+	l.SetMinSize(fyne.NewSize(0, lineWidth))
+	return l
 }
 
 // sync shows the state as it is now.
@@ -117,11 +150,23 @@ func (v *view) sync(s *state.State, t tool) {
 	columns, rows := s.Picture()
 	v.picture.want(columns, rows, s.Look)
 	if v.notice.Text != s.Notice {
+		v.notice.Importance = widget.DangerImportance
+		if s.Calm {
+			v.notice.Importance = widget.MediumImportance
+		}
 		v.notice.SetText(s.Notice)
 	}
-	setVisible(v.noticed, s.Notice != "")
-	if s.Remark != "" {
-		v.panel.setHelp(s.Remark)
+	if shows := s.Notice != ""; shows != v.noticed.Visible() {
+		setVisible(v.noticed, shows)
+		v.content.Layout.Layout(v.content.Objects, v.content.Size())
+		v.content.Objects[2].Refresh()
+	}
+	v.panel.standing = s.Remark
+	if s.Remark == "" {
+		v.panel.standing = s.Scene().Title
+	}
+	if v.panel.hint == "" {
+		v.panel.setHelp("")
 	}
 	if title := s.Title(); title != v.window.Title() {
 		v.window.SetTitle(title)
@@ -139,7 +184,12 @@ func setVisible(o fyne.CanvasObject, show bool) {
 }
 
 // setPicked tells the state of the picture.
-func (v *view) setPicked(text string) { setText(v.picked, text) }
+func (v *view) setPicked(text string) {
+	if v.picked.Text != text {
+		setText(v.picked, text)
+		v.content.Layout.Layout(v.content.Objects, v.content.Size()) // it stands at the right end
+	}
+}
 
 // room keeps a height free for an object, so that nothing moves when its text
 // grows.

@@ -4,6 +4,7 @@ import (
 	"context"
 	"runtime"
 	"sync"
+	"sync/atomic"
 
 	"annulet/app/desk/imaging"
 	"annulet/raytrace"
@@ -64,9 +65,19 @@ func (k *keptPaths) render(ctx context.Context, v *raytrace.View, o raytrace.Opt
 	return k.traced.Shade(ctx, v, o)
 }
 
-// workers is one for each core. Run makes room for the window's thread beside
-// them.
-func workers() int { return runtime.NumCPU() }
+// fewer is how many workers the user wants; 0 for one a core.
+var fewer atomic.Int64
+
+func setWorkers(n int) { fewer.Store(int64(n)) }
+
+// workers is one for each core, or fewer as the user wants. Run makes room
+// for the window's thread beside them.
+func workers() int {
+	if n := int(fewer.Load()); n > 0 {
+		return n
+	}
+	return runtime.NumCPU()
+}
 
 // views makes each scene ready once, for the picture and the readings alike:
 // finding the width of an automatic field takes longer than a preview may.

@@ -97,7 +97,7 @@ func Draw(g Graph, columns, rows int, p Paint) (*Plot, error) {
 	if g.Title != "" {
 		top += line
 	}
-	yTicks, yDecimals := g.ticks(plot.y, g.LogY, int((bottom-top)/(3*line)))
+	yTicks, yDecimals := g.ticks(plot.y, g.LogY, int((bottom-top)/(2.2*line)))
 	widest := 0.
 	for _, v := range yTicks {
 		widest = max(widest, face.Width(ink.Decimal(v, yDecimals)))
@@ -105,7 +105,7 @@ func Draw(g Graph, columns, rows int, p Paint) (*Plot, error) {
 	left, right := margin*px+line+widest+6*px, float64(columns)-margin*px
 	if g.SameScale { // make the frame as wide as the axes ask for
 		plot.equalise((right-left)/(bottom-top), g)
-		yTicks, yDecimals = g.ticks(plot.y, g.LogY, int((bottom-top)/(3*line)))
+		yTicks, yDecimals = g.ticks(plot.y, g.LogY, int((bottom-top)/(2.2*line)))
 	}
 	plot.frame = [4]float64{left, right, top, bottom}
 	plot.locate = func(x, y float64) ink.Point {
@@ -265,7 +265,7 @@ func (plot *Plot) equalise(shape float64, g Graph) {
 
 func (g Graph) ticks(axis [2]float64, log bool, n int) ([]float64, int) {
 	if !log {
-		return ink.Ticks(axis[0], axis[1], max(2, n))
+		return ink.Ticks(axis[0], axis[1], max(3, n))
 	}
 	var all []float64
 	decades := math.Log10(axis[1] / axis[0])
@@ -274,7 +274,7 @@ func (g Graph) ticks(axis [2]float64, log bool, n int) ([]float64, int) {
 		all = append(all, math.Pow(10, k))
 	}
 	if len(all) < 2 {
-		return ink.Ticks(axis[0], axis[1], max(2, n))
+		return ink.Ticks(axis[0], axis[1], max(3, n))
 	}
 	return all, 0
 }

@@ -33,7 +33,7 @@ func Stroke(dst *image.RGBA, pen Pen, lines ...[]Point) {
 	fill(dst, dashed, pen.Width, pen.Colour)
 }
 
-// fill draws all segments as one area, so that where they meet nothing is
+// fill draws each line as one strip, so that where its pieces meet nothing is
 // drawn twice.
 func fill(dst *image.RGBA, lines [][]Point, width float64, colour color.NRGBA) {
 	size := dst.Rect.Size()
@@ -43,37 +43,94 @@ func fill(dst *image.RGBA, lines [][]Point, width float64, colour color.NRGBA) {
 	r := vector.NewRasterizer(size.X, size.Y)
 	r.DrawOp = draw.Over
 	for _, line := range lines {
-		for k := 1; k < len(line); k++ {
-			segment(r, line[k-1], line[k], width, size)
+		margin := width + 1
+		for _, piece := range visible(line, float64(size.X)+2*margin, float64(size.Y)+2*margin) {
+			strip(r, piece, width/2)
 		}
 	}
 	r.Draw(dst, dst.Rect, image.NewUniform(colour), image.Point{})
 }
 
-// segment adds the rectangle of one piece of a line, half a width longer at
-// both ends so that pieces join. All go round in the same sense.
-func segment(r *vector.Rasterizer, a, b Point, width float64, size image.Point) {
-	margin := width + 1
-	if max(a.X, b.X) < -margin || max(a.Y, b.Y) < -margin || min(a.X, b.X) > float64(size.X)+margin || min(a.Y, b.Y) > float64(size.Y)+margin {
-		return
+// shortest is how near, in pixels, two points of a line may be; nearer ones
+// are left out.
+const shortest = 0.7
+
+// visible returns the pieces of a line within a rectangle about the picture.
+func visible(line []Point, right, bottom float64) [][]Point {
+	var all [][]Point
+	var piece []Point
+	for k := 1; k < len(line); k++ {
+		a, b, some := clip(line[k-1], line[k], right, bottom)
+		if !some {
+			continue
+		}
+		if len(piece) == 0 || piece[len(piece)-1] != a && a != line[k-1] {
+			if len(piece) > 1 {
+				all = append(all, piece)
+			}
+			piece = []Point{a}
+		}
+		if last := piece[len(piece)-1]; math.Hypot(b.X-last.X, b.Y-last.Y) >= shortest || k == len(line)-1 && len(piece) == 1 {
+			piece = append(piece, b)
+		}
 	}
-	a, b, ok := clip(a, b, float64(size.X)+2*margin, float64(size.Y)+2*margin)
-	if !ok {
-		return
+	if len(piece) > 1 {
+		all = append(all, piece)
 	}
-	length := math.Hypot(b.X-a.X, b.Y-a.Y)
-	if !(length > 0) {
-		return
+	return all
+}
+
+// sharpest bounds how far the corner of a strip reaches, in half widths.
+const sharpest = 1.5
+
+// strip adds the outline of a line: along it on one side, back on the other.
+func strip(r *vector.Rasterizer, line []Point, half float64) {
+	n := len(line)
+	closed := n > 3 && line[0] == line[n-1]
+	side := make([]Point, n) // from each point to its left edge
+	for k := range line {
+		var before, after Point // directions
+		if k > 0 || closed {
+			before = direction(line[(k-1+n)%n], line[k])
+			if k == 0 {
+				before = direction(line[n-2], line[0])
+			}
+		}
+		if k < n-1 || closed {
+			after = direction(line[k], line[(k+1)%n])
+			if k == n-1 {
+				after = direction(line[0], line[1])
+			}
+		}
+		if k == 0 && !closed {
+			before = after
+		}
+		if k == n-1 && !closed {
+			after = before
+		}
+		mean := direction(Point{}, Point{before.X + after.X, before.Y + after.Y})
+		cos := mean.X*after.X + mean.Y*after.Y
+		reach := half * min(sharpest, 1/max(cos, 1e-9))
+		side[k] = Point{-mean.Y * reach, mean.X * reach}
 	}
-	half := width / 2
-	ux, uy := (b.X-a.X)/length*half, (b.Y-a.Y)/length*half
-	ends := min(1, length/width) / 2 // short pieces of a curve overlap less
-	a.X, a.Y, b.X, b.Y = a.X-ux*ends, a.Y-uy*ends, b.X+ux*ends, b.Y+uy*ends
-	r.MoveTo(float32(a.X-uy), float32(a.Y+ux))
-	r.LineTo(float32(b.X-uy), float32(b.Y+ux))
-	r.LineTo(float32(b.X+uy), float32(b.Y-ux))
-	r.LineTo(float32(a.X+uy), float32(a.Y-ux))
+	r.MoveTo(float32(line[0].X+side[0].X), float32(line[0].Y+side[0].Y))
+	for k := 1; k < n; k++ {
+		r.LineTo(float32(line[k].X+side[k].X), float32(line[k].Y+side[k].Y))
+	}
+	for k := n - 1; k >= 0; k-- {
+		r.LineTo(float32(line[k].X-side[k].X), float32(line[k].Y-side[k].Y))
+	}
 	r.ClosePath()
+}
+
+// direction returns the unit vector from a to b, of length 0 where they are
+// one.
+func direction(a, b Point) Point {
+	length := math.Hypot(b.X-a.X, b.Y-a.Y)
+	if length == 0 {
+		return Point{}
+	}
+	return Point{(b.X - a.X) / length, (b.Y - a.Y) / length}
 }
 
 // clip cuts a segment to the rectangle from -limit to limit, so that far

@@ -158,21 +158,24 @@ func EmitterKinds() []string {
 	return keys[at].Choices
 }
 
-// SetText replaces the scene's text, as its own entry in the history; err
-// says what is wrong with it, and then nothing has changed.
-func (s *State) SetText(text string) error {
+// SetText replaces the scene's text while it is being typed; TextWrong then
+// says what is wrong with it, and the scene is as it was. It reports whether
+// the scene changed.
+func (s *State) SetText(text string) bool {
+	s.TextWrong = ""
 	if text == string(s.doc.Text()) {
-		return nil
+		return false
 	}
 	if err := s.doc.SetText([]byte(text)); err != nil {
-		return err
+		s.TextWrong = err.Error()
+		return false
 	}
 	for _, c := range s.Controls {
 		c.Wrong = ""
 	}
 	s.changed()
 	s.note("text", "text")
-	return nil
+	return true
 }
 
 // edit changes the document and tells in Notice what stands against it.

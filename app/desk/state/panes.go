@@ -10,11 +10,12 @@ const (
 	TabObserver
 	TabStations
 	TabNumerics
+	TabText // the scene file
 )
 
 // TabNames returns the names of the tables, in the order of Tab.
 func TabNames() []string {
-	return []string{TabPixel: "Pixel", TabRings: "Rings", TabObserver: "Observer", TabStations: "Stations", TabNumerics: "Numerics"}
+	return []string{TabPixel: "Pixel", TabRings: "Rings", TabObserver: "Observer", TabStations: "Stations", TabNumerics: "Numerics", TabText: "Text"}
 }
 
 // Graph is one of the graphs under the tables.

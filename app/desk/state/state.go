@@ -15,6 +15,8 @@ type State struct {
 	Structure int    // changes with the list of Controls and their headings
 	Look      Look   // how the scene is looked at
 	Notice    string // an error to show above the picture; "" for none
+	Calm      bool   // the notice is no error
+	TextWrong string // what is wrong with the text being typed; "" when it is the scene's
 	Remark    string // what an edit has changed besides; "" for nothing
 
 	doc   *scenes.Document
@@ -44,7 +46,7 @@ func New(doc *scenes.Document, name string) *State {
 // Open replaces the scene.
 func (s *State) Open(doc *scenes.Document, name string) {
 	s.doc, s.name, s.saved = doc, name, string(doc.Text())
-	s.Notice, s.Remark = "", ""
+	s.Notice, s.Remark, s.TextWrong = "", "", ""
 	s.Look = s.Look.forScene()
 	s.Controls, s.past, s.future, s.gesture = nil, nil, nil, ""
 	s.changed()
@@ -115,6 +117,7 @@ func (s *State) Suggested(extension string) string {
 // that are wrong stay, or what was typed would be lost.
 func (s *State) changed() {
 	s.serial++
+	s.TextWrong, s.Calm = "", false
 	s.scene = s.doc.Scene()
 	s.fit()
 	controls := s.controls()

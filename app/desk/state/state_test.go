@@ -395,14 +395,14 @@ func TestUndoAndRedo(t *testing.T) {
 
 func TestTextIsEditedAsAWhole(t *testing.T) {
 	s := open(t, commented)
-	if err := s.SetText("schema = 1\n[observer]\ninclination = 17\n"); err != nil {
-		t.Fatal(err)
+	if !s.SetText("schema = 1\n[observer]\ninclination = 17\n") || s.TextWrong != "" {
+		t.Fatal(s.TextWrong)
 	}
 	if s.Scene().Observer.Inclination != 17 || s.Control(Outer) != nil {
 		t.Error("the controls do not follow the text")
 	}
-	if err := s.SetText("schema = 1\ninner = 3\n"); err == nil || s.Scene().Observer.Inclination != 17 {
-		t.Errorf("a wrong text is taken: %v", err)
+	if s.SetText("schema = 1\ninner = 3\n") || !strings.Contains(s.TextWrong, "test.toml:2:1") || s.Scene().Observer.Inclination != 17 {
+		t.Errorf("a wrong text is taken: %q", s.TextWrong)
 	}
 	if !s.Undo() || string(s.Text()) != commented {
 		t.Error("the text is not undone")

@@ -3,6 +3,7 @@ package state
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode/utf8"
@@ -42,6 +43,26 @@ func (t *Table) say(name, words string) {
 }
 
 func (t *Table) section(title string) { t.Sections = append(t.Sections, Section{Title: title}) }
+
+// In returns the table with lengths in M written with another word for it,
+// as rg.
+func (t Table) In(length string) Table {
+	if length == "M" {
+		return t
+	}
+	sections := make([]Section, len(t.Sections))
+	for k, s := range t.Sections {
+		rows := slices.Clone(s.Rows)
+		for j := range rows {
+			if rows[j].Unit == "M" {
+				rows[j].Unit = length
+			}
+		}
+		sections[k] = Section{s.Title, rows}
+	}
+	t.Sections = sections
+	return t
+}
 
 // Text writes the table in columns of one width, for a monospaced face.
 func (t Table) Text() string {

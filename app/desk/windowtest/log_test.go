@@ -4,6 +4,7 @@ import (
 	"bufio"
 	"image"
 	"io"
+	"os"
 	"regexp"
 	"slices"
 	"strconv"
@@ -40,7 +41,9 @@ type logbook struct {
 	more  *sync.Cond
 	lines []line
 	ended bool
-	read  int // lines before this one have been waited for
+
+	process *os.Process // that writes it
+	read    int         // lines before this one have been waited for
 }
 
 func newLogbook(r io.Reader) *logbook {

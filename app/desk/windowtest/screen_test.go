@@ -109,7 +109,7 @@ func (s *screen) env() []string {
 	for _, e := range os.Environ() {
 		name, _, _ := strings.Cut(e, "=")
 		switch name {
-		case "DISPLAY", "WAYLAND_DISPLAY", "FYNE_SCALE", "FYNE_THEME", "LANG", "LC_ALL", "HOME", "XDG_CONFIG_HOME", "ANNULET_LOG":
+		case "DISPLAY", "WAYLAND_DISPLAY", "FYNE_SCALE", "FYNE_THEME", "LANG", "LC_ALL", "HOME", "XDG_CONFIG_HOME", "XDG_STATE_HOME", "ANNULET_LOG":
 		default:
 			env = append(env, e)
 		}
@@ -129,7 +129,9 @@ func (s *screen) run(program string, args ...string) *logbook {
 	cmd.Stderr = w
 	startUntilEnd(s.t, cmd)
 	w.Close()
-	return newLogbook(stderr)
+	log := newLogbook(stderr)
+	log.process = cmd.Process
+	return log
 }
 
 // do runs xdotool.

@@ -19,6 +19,7 @@ func TestWindow(t *testing.T) {
 	t.Run("follows the hand", func(t *testing.T) { followsTheHand(t, program) })
 	t.Run("opens every scene", func(t *testing.T) { opensEveryScene(t, program) })
 	t.Run("is an instrument", func(t *testing.T) { isAnInstrument(t, program) })
+	t.Run("keeps work", func(t *testing.T) { keepsWork(t, program) })
 	t.Run("refuses in words", func(t *testing.T) { refusesInWords(t, program) })
 }
 
@@ -332,6 +333,83 @@ func isAnInstrument(t *testing.T, program string) {
 	s.do("key", "ctrl+shift+z")
 	log.wait(t, "a change done again", word("redone"))
 	s.shot("19-undone")
+}
+
+// keepsWork kills the program while the scene is changed and finds the
+// change again; text, finder and settings are driven by keys alone.
+func keepsWork(t *testing.T, program string) {
+	s := newScreen(t)
+	log := s.run(program)
+	log.places(t)
+	log.read = 0
+	log.wait(t, "a settled picture", word("settled"))
+	s.do("search", "--onlyvisible", "--name", "Annulet", "windowfocus")
+
+	// The finder goes to a key by its name.
+	log.now()
+	s.do("key", "ctrl+k")
+	s.do("type", "inclination observer")
+	s.do("key", "Return")
+	log.wait(t, "the key found", word("found"))
+	s.do("type", "66deg")
+	s.do("key", "Return")
+	log.wait(t, "66 deg settled", settledAt("66"))
+	s.shot("30-found")
+	log.wait(t, "unsaved work kept", word("kept"))
+	s.kill(log)
+
+	again := s.run(program)
+	places, _ := again.places(t)
+	again.read = 0
+	if l := again.wait(t, "the work back", word("recovered")); l.fields["scene"] != "@first-light" {
+		t.Errorf("recovered %s", l.text)
+	}
+	again.wait(t, "66 deg settled again", settledAt("66"))
+	s.shot("31-recovered")
+	again.now()
+	s.do("search", "--onlyvisible", "--name", "Annulet", "windowfocus")
+	s.do("key", "ctrl+z")
+	again.wait(t, "20 deg settled after undo", settledAt("20"))
+
+	// The file's text is edited beside its keys; what is wrong is said.
+	w := window{s, s.do("search", "--onlyvisible", "--name", "Annulet")}
+	again.now()
+	w.click(middle(places.of(t, `say="Text" word`)))
+	again.wait(t, "the text", word("tab"))
+	tables := middle(places.of(t, `say="Observer" word`)).Add(point(0, 60))
+	w.click(tables)
+	s.do("key", "ctrl+a")
+	s.do("type", "schema = 1")
+	s.do("key", "Return")
+	again.now()
+	s.do("type", "observer.inclination = 181")
+	again.wait(t, "a fault of the text", func(l line) bool { return l.word == "text" && strings.Contains(l.fields["error"], "0 to 180") })
+	s.shot("32-fault")
+	again.now()
+	for range 2 {
+		s.do("key", "BackSpace")
+	}
+	s.do("type", "2")
+	again.wait(t, "12 deg settled", settledAt("12"))
+	s.shot("33-text")
+
+	// Settings: the light theme.
+	again.now()
+	s.do("key", "ctrl+comma")
+	s.do("key", "Tab")
+	s.do("key", "Return")
+	if l := again.wait(t, "a setting", word("setting")); l.fields["value"] != "light" {
+		t.Errorf("the next theme is %s", l.text)
+	}
+	s.do("key", "Escape")
+	s.shot("34-light")
+}
+
+// kill ends the program that writes the log as a crash would.
+func (s *screen) kill(log *logbook) {
+	s.t.Helper()
+	log.process.Kill()
+	log.end(s.t)
 }
 
 // drag holds the left button from one point to another, in steps that a hand
