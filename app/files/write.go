@@ -51,11 +51,43 @@ func Write(ctx context.Context, path string, mode fs.FileMode, fill func(io.Writ
 	if target.exists {
 		mode = target.mode
 	}
-	return describe(path, replace(ctx, target, mode, fill))
+	return describe(path, replace(ctx, target, mode, func(file *os.File) error { return pour(ctx, file, fill) }))
+}
+
+// WriteAt is Write for formats that are not written from front to back. What
+// is neither file nor folder is refused.
+func WriteAt(ctx context.Context, path string, mode fs.FileMode, fill func(io.WriterAt) error) error {
+	if err := ctx.Err(); err != nil {
+		return fmt.Errorf("%s: not written: %w", path, err)
+	}
+	target, err := examine(path)
+	if err != nil {
+		return err
+	}
+	if target.direct {
+		return fmt.Errorf("%s: this format can only be written to a file", path)
+	}
+	if target.exists {
+		mode = target.mode
+	}
+	return describe(path, replace(ctx, target, mode, func(file *os.File) error { return fill(atWhileLive{ctx, file}) }))
+}
+
+// atWhileLive passes writes on until ctx ends.
+type atWhileLive struct {
+	ctx context.Context
+	w   io.WriterAt
+}
+
+func (l atWhileLive) WriteAt(p []byte, offset int64) (int, error) {
+	if err := l.ctx.Err(); err != nil {
+		return 0, err
+	}
+	return l.w.WriteAt(p, offset)
 }
 
 // replace is Write for an ordinary file.
-func replace(ctx context.Context, target place, mode fs.FileMode, fill func(io.Writer) error) (err error) {
+func replace(ctx context.Context, target place, mode fs.FileMode, fill func(*os.File) error) (err error) {
 	file, err := unfinished.create(target.path, mode)
 	if err != nil {
 		return err
@@ -71,7 +103,7 @@ func replace(ctx context.Context, target place, mode fs.FileMode, fill func(io.W
 			return err
 		}
 	}
-	if err := pour(ctx, file, fill); err != nil {
+	if err := fill(file); err != nil {
 		return err
 	}
 	if err := file.Sync(); err != nil {
