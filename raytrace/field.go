@@ -42,12 +42,12 @@ func (f Field) IsParallel() bool { return f.Projection == Parallel }
 // square but for an all-sky field with another number of rows than half its
 // columns.
 func (f Field) Pitch() float64 {
-	across, _ := f.pitches()
+	across, _ := f.Pitches()
 	return across
 }
 
-// pitches returns the width and height of a pixel in screen coordinates.
-func (f Field) pitches() (across, up float64) {
+// Pitches returns the width and height of a pixel in screen coordinates.
+func (f Field) Pitches() (across, up float64) {
 	if f.Projection == AllSky {
 		return 2 * math.Pi / float64(f.Columns), math.Pi / float64(f.Rows)
 	}
@@ -58,7 +58,7 @@ func (f Field) pitches() (across, up float64) {
 // PixelCenter returns the screen coordinates of the centre of a pixel; row 0
 // is the bottom row.
 func (f Field) PixelCenter(column, row int) (alpha, beta float64) {
-	across, up := f.pitches()
+	across, up := f.Pitches()
 	alpha = (float64(column) + 0.5 - float64(f.Columns)/2) * across
 	beta = (float64(row) + 0.5 - float64(f.Rows)/2) * up
 	if f.Projection == AllSky {
@@ -70,7 +70,7 @@ func (f Field) PixelCenter(column, row int) (alpha, beta float64) {
 // SolidAngle returns the exact solid angle of a pixel, sr; on a parallel
 // field its area, M².
 func (f Field) SolidAngle(column, row int) float64 {
-	across, up := f.pitches()
+	across, up := f.Pitches()
 	x, y := f.PixelCenter(column, row)
 	switch f.Projection {
 	case Parallel:

@@ -17,7 +17,7 @@ func (b *bench) cover() error {
 	if err := b.unfold(); err != nil {
 		return err
 	}
-	across, up := v.Field.pitches()
+	across, up := v.Field.Pitches()
 	if err := b.differ(across/2, 0, b.pixels.Column); err != nil {
 		return err
 	}

@@ -403,3 +403,21 @@ func checkText(sum uint32) string {
 
 // checkExcluded are the characters between digits and letters.
 const checkExcluded = ":;<=>?@[\\]^_`"
+
+// Set replaces the value of a card that the unit's header has already, before
+// Close: what is only known when all rows are written. Texts that take more
+// than one line cannot be set.
+func (f *FITS) Set(unit int, c Card) error {
+	lines, err := c.lines()
+	if err != nil {
+		return err
+	}
+	u := f.units[unit]
+	for at := 0; at < len(u.header); at += fitsCard {
+		if strings.TrimRight(string(u.header[at:at+8]), " ") == c.Key && len(lines) == fitsCard {
+			copy(u.header[at:], lines)
+			return nil
+		}
+	}
+	return fmt.Errorf("keyword %s is not in the header, or its text too long: %w", c.Key, ErrFITS)
+}

@@ -85,8 +85,14 @@ func (p *PNGRows) Write(row []byte) error {
 	return err
 }
 
-// Close ends the PNG; it fails if rows are missing.
-func (p *PNGRows) Close() error {
+// Close ends the PNG, with what is to be said only now; it fails if rows are
+// missing.
+func (p *PNGRows) Close(texts ...Text) error {
+	for _, t := range texts {
+		if err := t.check(); err != nil {
+			return err
+		}
+	}
 	if p.rows != 0 {
 		return fmt.Errorf("PNG: %d rows are missing: %w", p.rows, ErrRows)
 	}
@@ -95,6 +101,11 @@ func (p *PNGRows) Close() error {
 	}
 	if err := p.chunks.Flush(); err != nil {
 		return err
+	}
+	for _, t := range texts {
+		if err := putChunk(p.out, typeText, t.data()); err != nil {
+			return err
+		}
 	}
 	return putChunk(p.out, typeEnd, nil)
 }

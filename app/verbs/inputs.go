@@ -2,7 +2,6 @@ package verbs
 
 import (
 	"context"
-	"image"
 	"io"
 	"io/fs"
 	"strings"
@@ -55,22 +54,4 @@ const newFileMode fs.FileMode = 0o666
 // writeFile makes a whole file or none.
 func writeFile(ctx context.Context, path string, fill func(io.Writer) error) error {
 	return files.Write(ctx, path, newFileMode, fill)
-}
-
-// sceneKeyword marks the scene among the texts of a picture.
-const sceneKeyword = "Annulet scene"
-
-// encodePNG writes a picture that carries its scene.
-func encodePNG(w io.Writer, img image.Image, d *scenes.Document) error {
-	return files.EncodePNG(w, img, pngTexts(d))
-}
-
-// pngTexts are the texts of a picture.
-func pngTexts(d *scenes.Document) []files.Text {
-	return []files.Text{
-		{Keyword: "Title", Value: d.Scene().Title},
-		{Keyword: "Software", Value: "Annulet " + Version},
-		{Keyword: "Comment", Value: notIncludedLine},
-		{Keyword: sceneKeyword, Value: string(d.Text())},
-	}
 }

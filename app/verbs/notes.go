@@ -1,9 +1,13 @@
 package verbs
 
-import "strings"
+import (
+	"strings"
+
+	"annulet/app/output"
+)
 
 // notIncluded is what the model leaves out. Every output says so.
-var notIncluded = []string{"returning radiation", "self-occultation by thickness", "scattering"}
+var notIncluded = output.NotIncluded
 
 // notIncludedLine is the same for people.
 var notIncludedLine = "Not included: " + strings.Join(notIncluded, ", ") + "."

@@ -13,6 +13,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"annulet/app/output"
 	"annulet/app/tone"
 	"annulet/assets"
 	"annulet/raytrace"
@@ -76,6 +77,7 @@ type rendering struct {
 	depth, workers              int
 	curve, limits, layer, order string
 	colours                     string
+	keep                        string
 	json                        bool
 }
 
@@ -84,22 +86,27 @@ func newRender(s streams) *cobra.Command {
 	cmd := &cobra.Command{
 		Use:   "render SCENE -o FILE [-o FILE ...]",
 		Short: "trace a scene and write its image",
-		Long: "Traces every pixel of the scene's field and writes PNG files that carry the\n" +
-			"scene. A file appears whole or not at all. Layers other than intensity belong to\n" +
-			"one image order: g, r (M), phi (deg), delay (M), mu; --limits are in these units.",
+		Long: "Traces every pixel of the scene's field and writes it. The extension chooses the\n" +
+			"format: PNG and TIFF are pictures of one layer, FITS and NPZ hold the numbers of\n" +
+			"all of them. Every file carries the scene (see scene recover) and appears whole\n" +
+			"or not at all. Layers other than intensity belong to one image order: g, r (M),\n" +
+			"phi (deg), delay (M), mu; --limits are in these units. Images too large for the\n" +
+			"memory go to PNG and FITS in strips.",
 		Example: "  " + programName() + " render @first-light -o first-light.png\n" +
-			"  " + programName() + " render scene.toml --set observer.inclination=75deg --layer g --order 0 -o g.png",
+			"  " + programName() + " render scene.toml --set observer.inclination=75deg --layer g --order 0 -o g.png\n" +
+			"  " + programName() + " render scene.toml --keep intensity,g -o scene.fits -o scene.npz",
 		Args: takes(1, "one SCENE"),
 		RunE: func(cmd *cobra.Command, args []string) error { return render(cmd, s, o, args[0]) },
 	}
 	f := cmd.Flags()
-	f.StringArrayVarP(&o.out, "output", "o", nil, "PNG `FILE` to write; repeatable")
+	f.StringArrayVarP(&o.out, "output", "o", nil, "`FILE` to write: "+formatWords+"; repeatable")
 	addSet(f, &o.set)
 	f.StringVar(&o.layer, "layer", "intensity", "what to show: "+layerWords())
 	f.StringVar(&o.order, "order", "", "image `ORDER` 0, 1, …; intensity also total (its default; else 0)")
 	f.StringVar(&o.curve, "curve", "", "value to colour: "+strings.Join(tone.CurveWords(), ", ")+" (default by layer)")
 	f.StringVar(&o.limits, "limits", "", "ends of the colour map, `LOW:HIGH` or P1%:P2% (default 0%:99.9%, an intensity from 0)")
 	f.StringVar(&o.colours, "map", "", "colour map: "+strings.Join(assets.Names(), ", ")+" (default by layer)")
+	f.StringVar(&o.keep, "keep", "", "`LAYER,…` that FITS and NPZ hold beside the total (default all)")
 	f.IntVar(&o.depth, "depth", 8, "bits a component, 8 or 16")
 	f.IntVar(&o.workers, "workers", 0, "tiles traced at a time; 0 means one a processor")
 	f.BoolVar(&o.json, "json", false, "print a summary as one JSON document on stdout")
@@ -202,15 +209,15 @@ func (p picture) paint(values []float32, columns, rows int) (image.Image, error)
 // is done.
 func checkOutputs(paths []string, scenePath string) error {
 	if len(paths) == 0 {
-		return refuse("render needs an output: -o FILE.png")
+		return refuse("render needs an output: -o FILE.png, say; allowed: %s", formatWords)
 	}
 	var seen []string
 	for _, path := range paths {
 		if path == "" {
 			return refuse("-o: the name of the file is empty")
 		}
-		if extension := filepath.Ext(path); !strings.EqualFold(extension, ".png") {
-			return refuse("-o %s: extension %q is not in this version; allowed: .png", path, extension)
+		if formatOf(path) == "" {
+			return refuse("-o %s: extension %q is not in this version; allowed: %s", path, filepath.Ext(path), formatWords)
 		}
 		clean := filepath.Clean(path)
 		if slices.Contains(seen, clean) {
@@ -265,6 +272,10 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	if err := checkOutputs(o.out, scenePath); err != nil {
 		return err
 	}
+	data, err := output.ParseLayers(o.keep)
+	if err != nil {
+		return refuse("--keep: %w", err)
+	}
 	for _, n := range scene.Notes() {
 		s.note("%s", n)
 	}
@@ -273,7 +284,7 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 		return usage{err}
 	}
 	begun := time.Now()
-	job := renderJob{s: s, view: view, picture: p, document: document, options: raytrace.Options{Workers: o.workers, Layers: p.layers()}, hold: holdBytes}
+	job := renderJob{s: s, view: view, picture: p, document: document, options: raytrace.Options{Workers: o.workers}, data: data, hold: holdBytes}
 	plate, err := job.write(cmd.Context(), o.out)
 	if err != nil {
 		return err

@@ -71,7 +71,7 @@ func TestRender(t *testing.T) {
 		t.Errorf("bounds %v", img.Bounds())
 	}
 	// The scene inside is the one that was traced, overrides and all.
-	at := slices.IndexFunc(texts, func(x files.Text) bool { return x.Keyword == sceneKeyword })
+	at := slices.IndexFunc(texts, func(x files.Text) bool { return x.Keyword == "Annulet scene" })
 	if at < 0 {
 		t.Fatal("the picture carries no scene")
 	}

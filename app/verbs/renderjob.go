@@ -2,19 +2,24 @@ package verbs
 
 import (
 	"context"
+	"fmt"
 	"image"
 	"io"
+	"path/filepath"
+	"strings"
 
 	"annulet/app/files"
+	"annulet/app/output"
 	"annulet/raytrace"
 	"annulet/scenes"
 )
 
-// renderJob traces a scene and writes pictures of it.
+// renderJob traces a scene and writes what is asked for.
 type renderJob struct {
 	s        streams
 	view     *raytrace.View
-	picture  picture // its tone has fixed limits afterwards
+	picture  picture          // its tone has fixed limits afterwards
+	data     []raytrace.Layer // that FITS and NPZ hold
 	document *scenes.Document
 	options  raytrace.Options
 	hold     int64 // holdBytes
@@ -24,10 +29,49 @@ type renderJob struct {
 // rendered in strips. Taste.
 const holdBytes = 512 << 20
 
+// format is that of a file, by its extension.
+type format string
+
+const (
+	formatPNG  format = ".png"
+	formatTIFF format = ".tiff"
+	formatFITS format = ".fits"
+	formatNPZ  format = ".npz"
+)
+
+const formatWords = ".png, .tiff, .fits, .npz"
+
+// formatOf returns "" for an extension that cannot be written.
+func formatOf(path string) format {
+	switch f := format(strings.ToLower(filepath.Ext(path))); f {
+	case ".tif":
+		return formatTIFF
+	case formatPNG, formatTIFF, formatFITS, formatNPZ:
+		return f
+	}
+	return ""
+}
+
+// holds says whether a format holds the numbers of the plate.
+func (f format) holds() bool { return f == formatFITS || f == formatNPZ }
+
 // write makes the files. The plate that it returns tells counts and bounds;
 // it may have no pixels.
 func (j *renderJob) write(ctx context.Context, paths []string) (*raytrace.Plate, error) {
-	if j.view.PlateBytes(j.options)+j.pictureBytes(j.view.Field.Rows) > j.hold {
+	j.options.Layers = j.picture.layers()
+	for _, path := range paths {
+		if formatOf(path).holds() {
+			j.options.Layers = append(j.options.Layers, j.data...)
+			break
+		}
+	}
+	if need := j.view.PlateBytes(j.options) + j.pictureBytes(j.view.Field.Rows); need > j.hold {
+		for _, path := range paths {
+			if f := formatOf(path); f == formatNPZ || f == formatTIFF {
+				return nil, refuse("-o %s: this format needs the whole image in memory, %d MiB; allowed: %d MiB, or .png and .fits, which are written in strips",
+					path, need/mebi, j.hold/mebi)
+			}
+		}
 		return j.writeStrips(ctx, paths)
 	}
 	plate, err := j.whole(ctx, j.view)
@@ -41,11 +85,36 @@ func (j *renderJob) write(ctx context.Context, paths []string) (*raytrace.Plate,
 		return nil, err
 	}
 	for _, path := range paths {
-		if err := writeFile(ctx, path, func(w io.Writer) error { return encodePNG(w, img, j.document) }); err != nil {
+		if err := j.writeOne(ctx, path, plate, img); err != nil {
 			return nil, err
 		}
 	}
 	return plate, nil
+}
+
+const mebi = 1 << 20
+
+// writeOne writes the whole plate, or the picture of it, as one file.
+func (j *renderJob) writeOne(ctx context.Context, path string, plate *raytrace.Plate, img image.Image) error {
+	p := output.NewProvenance(j.document, Version, plate)
+	switch formatOf(path) {
+	case formatFITS:
+		return files.WriteAt(ctx, path, newFileMode, func(w io.WriterAt) error {
+			f, err := output.NewFITS(w, j.view, j.document.Scene(), j.data, p)
+			if err != nil {
+				return err
+			}
+			if err := f.Put(plate, 0); err != nil {
+				return err
+			}
+			return f.Close(p)
+		})
+	case formatNPZ:
+		return writeFile(ctx, path, func(w io.Writer) error { return output.WriteNPZ(w, plate, j.view.Field, j.data, p) })
+	case formatTIFF:
+		return writeFile(ctx, path, func(w io.Writer) error { return output.WriteTIFF(w, img, p) })
+	}
+	return writeFile(ctx, path, func(w io.Writer) error { return files.EncodePNG(w, img, p.PNGTexts()) })
 }
 
 // pictureBytes is the memory of that many rows of the picture.
@@ -68,11 +137,10 @@ func (j *renderJob) whole(ctx context.Context, view *raytrace.View) (*raytrace.P
 // leave out, is a thousand.
 const pilotSide = 1000
 
-// writeStrips renders in strips: the limits of the tone come from a pilot
-// image of the same field.
+// writeStrips renders in strips, all files in one pass: the limits of the
+// tone come from a pilot image of the same field.
 func (j *renderJob) writeStrips(ctx context.Context, paths []string) (*raytrace.Plate, error) {
 	f := j.view.Field
-	const mebi = 1 << 20
 	// strips of plate and picture, the pilot, and what the program needs anyway
 	need := j.view.StripBytes(j.options) + 4*int64(f.Columns)*int64(j.picture.depth()) + programBytes
 	j.s.note("render: %d x %d pixels would need %d MiB at once; in strips about %d MiB",
@@ -84,46 +152,85 @@ func (j *renderJob) writeStrips(ctx context.Context, paths []string) (*raytrace.
 	}
 	j.picture.tone = j.picture.tone.Fixed(j.picture.values(pilot))
 	j.s.note("render: the limits of the colours are those of a pilot of %d x %d pixels", pilot.Columns, pilot.Rows)
-	var counts *raytrace.Plate
-	for _, path := range paths {
-		shown := newProgress(j.s.err)
-		shown.begin(f.Columns, f.Rows)
-		o := j.options
-		o.Report = shown.report
-		err := writeFile(ctx, path, func(w io.Writer) error {
-			rows, err := files.NewPNGRows(w, f.Columns, f.Rows, j.picture.depth(), pngTexts(j.document))
-			if err != nil {
-				return err
-			}
-			counts, err = j.view.Strips(ctx, o, true, func(strip raytrace.Strip) error {
-				img, err := j.picture.paint(j.picture.values(strip.Plate), strip.Columns, strip.Rows)
-				if err != nil {
+	shown := newProgress(j.s.err)
+	shown.begin(f.Columns, f.Rows)
+	defer shown.end()
+	j.options.Report = shown.report
+	return j.into(ctx, paths, nil)
+}
+
+// sink takes strips.
+type sink struct {
+	take  func(raytrace.Strip) error
+	close func(counts *raytrace.Plate) error
+}
+
+// into opens the files that are left, one within the other, and renders when
+// all are open; so all of them appear, or the last ones do not.
+func (j *renderJob) into(ctx context.Context, paths []string, sinks []sink) (counts *raytrace.Plate, err error) {
+	if len(paths) == 0 {
+		return j.view.Strips(ctx, j.options, true, func(strip raytrace.Strip) error {
+			for _, s := range sinks {
+				if err := s.take(strip); err != nil {
 					return err
 				}
-				return writePNGRows(rows, img)
-			})
+			}
+			return nil
+		})
+	}
+	onward := func(s sink, err error) error {
+		if err == nil {
+			counts, err = j.into(ctx, paths[1:], append(sinks, s))
+		}
+		if err == nil {
+			err = s.close(counts)
+		}
+		return err
+	}
+	if formatOf(paths[0]) == formatFITS {
+		err = files.WriteAt(ctx, paths[0], newFileMode, func(w io.WriterAt) error { return onward(j.fitsSink(w)) })
+	} else {
+		err = writeFile(ctx, paths[0], func(w io.Writer) error { return onward(j.pngSink(w)) })
+	}
+	return counts, err
+}
+
+func (j *renderJob) fitsSink(w io.WriterAt) (sink, error) {
+	f, err := output.NewFITS(w, j.view, j.document.Scene(), j.data, output.NewProvenance(j.document, Version, nil))
+	return sink{
+		take:  func(s raytrace.Strip) error { return f.Put(s.Plate, s.FirstRow) },
+		close: func(counts *raytrace.Plate) error { return f.Close(output.NewProvenance(j.document, Version, counts)) },
+	}, err
+}
+
+func (j *renderJob) pngSink(w io.Writer) (sink, error) {
+	rows, err := files.NewPNGRows(w, j.view.Field.Columns, j.view.Field.Rows, j.picture.depth(), nil)
+	return sink{
+		take: func(s raytrace.Strip) error {
+			img, err := j.picture.paint(j.picture.values(s.Plate), s.Columns, s.Rows)
 			if err != nil {
 				return err
 			}
-			return rows.Close()
-		})
-		shown.end()
-		if err != nil {
-			return nil, err
-		}
-	}
-	return counts, nil
+			return writePNGRows(rows, img)
+		},
+		close: func(counts *raytrace.Plate) error {
+			return rows.Close(output.NewProvenance(j.document, Version, counts).PNGTexts()...)
+		},
+	}, err
 }
 
 // writePNGRows writes the rows of a picture that paint made, without its
 // alpha: it is opaque.
 func writePNGRows(to *files.PNGRows, img image.Image) error {
-	pixels, stride, bytes := []uint8(nil), 0, 0 // of a component
+	var pixels []uint8
+	var stride, bytes int // bytes of a component
 	switch img := img.(type) {
 	case *image.RGBA:
 		pixels, stride, bytes = img.Pix, img.Stride, 1
 	case *image.RGBA64:
 		pixels, stride, bytes = img.Pix, img.Stride, 2
+	default:
+		return fmt.Errorf("a picture of type %T", img)
 	}
 	columns := img.Bounds().Dx()
 	row := make([]byte, 3*bytes*columns)

@@ -13,11 +13,11 @@ import (
 func newScene(s streams) *cobra.Command {
 	cmd := &cobra.Command{
 		Use:   "scene",
-		Short: "check scene files, list built-in scenes, explain the keys",
+		Short: "check scene files, list built-in scenes, explain the keys, recover scenes",
 		Args:  cobra.ArbitraryArgs,
 		RunE:  groupOnly,
 	}
-	cmd.AddCommand(newSceneCheck(s), newSceneList(s), newSceneKeys(s))
+	cmd.AddCommand(newSceneCheck(s), newSceneList(s), newSceneKeys(s), newSceneRecover(s))
 	return cmd
 }
 

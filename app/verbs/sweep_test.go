@@ -73,7 +73,7 @@ func TestSweep(t *testing.T) {
 		{"image", "total", plate.Total},
 		{"image", "intensity", slices.Concat(plate.Layer(raytrace.Intensity, 0), plate.Layer(raytrace.Intensity, 1), plate.Layer(raytrace.Intensity, 2))},
 		{"layers", "g", slices.Concat(plate.Layer(raytrace.Redshift, 0), plate.Layer(raytrace.Redshift, 1), plate.Layer(raytrace.Redshift, 2))},
-		{"layers", "phi_rad", slices.Concat(plate.Layer(raytrace.Azimuth, 0), plate.Layer(raytrace.Azimuth, 1), plate.Layer(raytrace.Azimuth, 2))},
+		{"layers", "phi", slices.Concat(plate.Layer(raytrace.Azimuth, 0), plate.Layer(raytrace.Azimuth, 1), plate.Layer(raytrace.Azimuth, 2))},
 	} {
 		file, err := npz.Open(filepath.Join("a", c.file, name))
 		if err != nil {
@@ -113,7 +113,7 @@ func TestSweepFailures(t *testing.T) {
 		t.Errorf("%+v", got)
 	}
 	img, texts := readPNG(t, "a/picture/0003_inclination=20deg_inner=8M.png")
-	scene := slices.IndexFunc(texts, func(x files.Text) bool { return x.Keyword == sceneKeyword })
+	scene := slices.IndexFunc(texts, func(x files.Text) bool { return x.Keyword == "Annulet scene" })
 	if img.Bounds().Dx() != 16 || scene < 0 || !strings.Contains(texts[scene].Value, `"8 M"`) {
 		t.Errorf("%v, %v", img.Bounds(), texts)
 	}

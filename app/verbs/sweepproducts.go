@@ -10,6 +10,7 @@ import (
 	"time"
 
 	"annulet/app/files"
+	"annulet/app/output"
 	"annulet/app/sweep"
 	"annulet/raytrace"
 	"annulet/scenes"
@@ -19,13 +20,13 @@ import (
 type sweepProduct struct {
 	name   string
 	layers []raytrace.Layer // that it reads, beside the total
-	make   func(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error
+	make   func(ctx context.Context, job *sweep.Job, view *raytrace.View, plate *raytrace.Plate) error
 }
 
 // sweepProducts are all of them; a further one is one line here.
 var sweepProducts = []sweepProduct{
 	{"image", []raytrace.Layer{raytrace.Intensity}, writeCaseImage},
-	{"layers", []raytrace.Layer{raytrace.Redshift, raytrace.Radius, raytrace.Azimuth, raytrace.Delay, raytrace.Mu}, writeCaseLayers},
+	{"layers", otherLayers, writeCaseLayers},
 	{"picture", []raytrace.Layer{}, writeCasePicture},
 }
 
@@ -91,7 +92,7 @@ func (k *kitchen) make(ctx context.Context, job *sweep.Job) error {
 	bound := plate.WorstBound
 	job.Column("worst_bound_r", "relative", &bound)
 	for _, p := range k.products {
-		if err := p.make(ctx, job, plate); err != nil {
+		if err := p.make(ctx, job, view, plate); err != nil {
 			return fmt.Errorf("%s: %w", p.name, err)
 		}
 	}
@@ -118,58 +119,25 @@ func (k *kitchen) orbitsOf(s scenes.Scene) *raytrace.Orbits {
 }
 
 // writeCaseImage writes the intensities: total, and per order.
-func writeCaseImage(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error {
-	return writeCaseNPZ(ctx, job, "image", func(n *files.NPZ) error {
-		if err := n.Float32("total", plate.Total, plate.Rows, plate.Columns); err != nil {
-			return err
-		}
-		return stackOrders(n, "intensity", plate, raytrace.Intensity)
-	})
+func writeCaseImage(ctx context.Context, job *sweep.Job, view *raytrace.View, plate *raytrace.Plate) error {
+	return writeCaseNPZ(ctx, job, view, plate, "image", []raytrace.Layer{raytrace.Intensity})
 }
 
 // writeCaseLayers writes everything else that the plate holds.
-func writeCaseLayers(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error {
-	return writeCaseNPZ(ctx, job, "layers", func(n *files.NPZ) error {
-		for _, kind := range layerKinds {
-			if kind.layer == raytrace.Intensity {
-				continue
-			}
-			if err := stackOrders(n, kind.word, plate, kind.layer); err != nil {
-				return err
-			}
-		}
-		return nil
-	})
+func writeCaseLayers(ctx context.Context, job *sweep.Job, view *raytrace.View, plate *raytrace.Plate) error {
+	return writeCaseNPZ(ctx, job, view, plate, "layers", otherLayers)
 }
 
-// stackOrders writes one layer as orders, rows, columns; row 0 at the bottom.
-// Azimuths are in radians, as the plate has them.
-func stackOrders(n *files.NPZ, name string, plate *raytrace.Plate, layer raytrace.Layer) error {
-	stack := make([]float32, 0, plate.Orders*len(plate.Total))
-	for order := range plate.Orders {
-		stack = append(stack, plate.Layer(layer, order)...)
-	}
-	if layer == raytrace.Azimuth {
-		name += "_rad"
-	}
-	return n.Float32(name, stack, plate.Orders, plate.Rows, plate.Columns)
-}
+var otherLayers = []raytrace.Layer{raytrace.Redshift, raytrace.Radius, raytrace.Azimuth, raytrace.Delay, raytrace.Mu}
 
-func writeCaseNPZ(ctx context.Context, job *sweep.Job, product string, fill func(*files.NPZ) error) error {
+func writeCaseNPZ(ctx context.Context, job *sweep.Job, view *raytrace.View, plate *raytrace.Plate, product string, layers []raytrace.Layer) error {
 	return job.Write(ctx, product, ".npz", func(w io.Writer) error {
-		n := files.NewNPZ(w)
-		if err := fill(n); err != nil {
-			return err
-		}
-		if err := n.Text("scene", string(job.Document.Text())); err != nil {
-			return err
-		}
-		return n.Close()
+		return output.WriteNPZ(w, plate, view.Field, layers, output.NewProvenance(job.Document, Version, plate))
 	})
 }
 
 // writeCasePicture writes what render writes by default.
-func writeCasePicture(ctx context.Context, job *sweep.Job, plate *raytrace.Plate) error {
+func writeCasePicture(ctx context.Context, job *sweep.Job, _ *raytrace.View, plate *raytrace.Plate) error {
 	p, err := rendering{layer: "intensity", depth: 8}.choose()
 	if err != nil {
 		return err
@@ -178,7 +146,9 @@ func writeCasePicture(ctx context.Context, job *sweep.Job, plate *raytrace.Plate
 	if err != nil {
 		return err
 	}
-	return job.Write(ctx, "picture", ".png", func(w io.Writer) error { return encodePNG(w, img, job.Document) })
+	return job.Write(ctx, "picture", ".png", func(w io.Writer) error {
+		return files.EncodePNG(w, img, output.NewProvenance(job.Document, Version, plate).PNGTexts())
+	})
 }
 
 // sweepProgress prints how far a sweep is, every few seconds.

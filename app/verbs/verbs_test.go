@@ -157,8 +157,8 @@ var refusals = []struct {
 
 	{what: "no output", args: "render|small.toml", says: "-o FILE.png"},
 	{what: "no extension", args: "render|small.toml|-o|image", says: ".png"},
-	{what: "extension", args: "render|small.toml|-o|image.fits", says: "allowed: .png"},
-	{what: "one good, one bad", args: "render|small.toml|-o|a.png|-o|b.tiff", says: "allowed: .png"},
+	{what: "extension", args: "render|small.toml|-o|image.jpg", says: "allowed: .png"},
+	{what: "one good, one bad", args: "render|small.toml|-o|a.png|-o|b.gif", says: "allowed: .png"},
 	{what: "the same twice", args: "render|small.toml|-o|a.png|-o|./a.png", says: "twice"},
 	{what: "no folder", args: "render|small.toml|-o|none/a.png", says: "none"},
 	{what: "output a folder", args: "render|small.toml|-o|folder.png", says: "folder.png"},

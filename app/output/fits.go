@@ -1,0 +1,169 @@
+package output
+
+import (
+	"io"
+	"math"
+	"strings"
+
+	"annulet/app/files"
+	"annulet/raytrace"
+	"annulet/scenes"
+)
+
+// FITS writes plates, whole or in strips, as one file: the total in the
+// primary unit; an extension for every layer and image order, EXTNAME the
+// layer and EXTVER the order plus one; and the scene, a table of one cell.
+type FITS struct {
+	file   *files.FITS
+	images []fitsImage
+}
+
+// fitsImage is what a unit shows.
+type fitsImage struct {
+	layer raytrace.Layer
+	order int // -1 for the total
+}
+
+// sceneUnit is the name of the extension with the scene.
+const sceneUnit = "SCENE"
+
+// NewFITS lays the file out.
+func NewFITS(w io.WriterAt, v *raytrace.View, s scenes.Scene, layers []raytrace.Layer, p Provenance) (*FITS, error) {
+	f := &FITS{images: []fitsImage{{raytrace.Intensity, -1}}}
+	columns, rows := v.Field.Columns, v.Field.Rows
+	wcs := worldCoordinates(v.Field, s)
+	units := []files.HDU{{Columns: columns, Rows: rows, Cards: append(append(wcs, sceneCards(s)...), numericsCards(p)...)}}
+	for _, l := range kept(layers) {
+		for order := range v.Plan.MaxOrder + 1 {
+			cards := append([]files.Card{}, wcs...)
+			if l.Unit != "" {
+				cards = append(cards, files.Card{Key: "BUNIT", Value: l.Unit})
+			}
+			cards = append(cards,
+				files.Card{Key: "LAYER", Value: l.Name, Comment: l.Text},
+				files.Card{Key: "ORDER", Value: order, Comment: "image order: half orbits"})
+			units = append(units, files.HDU{Name: strings.ToUpper(l.Name), Version: order + 1, Columns: columns, Rows: rows, Cards: cards})
+			f.images = append(f.images, fitsImage{l.Layer, order})
+		}
+	}
+	units = append(units, files.HDU{Name: sceneUnit, Column: "TEXT", Bytes: []byte(p.Scene)})
+	var err error
+	f.file, err = files.NewFITS(w, units...)
+	return f, err
+}
+
+// Put writes rows of all images, from firstRow up.
+func (f *FITS) Put(plate *raytrace.Plate, firstRow int) error {
+	for k, i := range f.images {
+		values := plate.Total
+		if i.order >= 0 {
+			values = plate.Layer(i.layer, i.order)
+		}
+		if err := f.file.Rows(k, firstRow, values); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// Close writes the headers, with the bounds as they are known in the end.
+func (f *FITS) Close(p Provenance) error {
+	for _, c := range boundCards(p) {
+		if err := f.file.Set(0, c); err != nil {
+			return err
+		}
+	}
+	return f.file.Close()
+}
+
+// worldCoordinates places the pixels: in degrees on the sky about the object,
+// east left, where the scene gives an angular scale, else in M; and always by
+// the screen coordinates, as a second description A. Source: Greisen &
+// Calabretta, A&A 395, 1061 (2002), and Calabretta & Greisen, A&A 395, 1077
+// (2002).
+func worldCoordinates(f raytrace.Field, s scenes.Scene) []files.Card {
+	across, up := f.Pitches()
+	x := float64(f.Columns)/2 + 0.5 - f.Center[0]/across
+	y := float64(f.Rows)/2 + 0.5 - f.Center[1]/up
+	axes := func(alternate, type1, type2, unit string, cdelt1, cdelt2 float64) []files.Card {
+		cards := []files.Card{
+			{Key: "WCSAXES" + alternate, Value: 2},
+			{Key: "CTYPE1" + alternate, Value: type1}, {Key: "CTYPE2" + alternate, Value: type2},
+			{Key: "CRPIX1" + alternate, Value: x, Comment: "the object's centre; the first pixel's is 1"}, {Key: "CRPIX2" + alternate, Value: y},
+			{Key: "CRVAL1" + alternate, Value: 0.0}, {Key: "CRVAL2" + alternate, Value: 0.0},
+			{Key: "CDELT1" + alternate, Value: cdelt1}, {Key: "CDELT2" + alternate, Value: cdelt2},
+		}
+		if unit != "" {
+			cards = append(cards, files.Card{Key: "CUNIT1" + alternate, Value: unit}, files.Card{Key: "CUNIT2" + alternate, Value: unit})
+		}
+		return cards
+	}
+	const deg = 180 / math.Pi
+	switch f.Projection {
+	case raytrace.Perspective: // the observer's own sky, longitude growing to the right
+		return axes("", "OBLN-TAN", "OBLT-TAN", "deg", across*deg, up*deg)
+	case raytrace.AllSky:
+		return axes("", "OBLN-CAR", "OBLT-CAR", "deg", across*deg, up*deg)
+	}
+	screen := func(alternate string) []files.Card {
+		cards := axes(alternate, "ALPHA", "BETA", "", across, up)
+		return append(cards, files.Card{Key: "WCSNAME" + alternate, Value: "screen", Comment: "alpha, beta in GM/c2"})
+	}
+	theta, ok := s.ThetaG()
+	if !ok || !math.IsInf(s.Observer.Radius, 1) {
+		return screen("")
+	}
+	const uasPerDeg = 3600e6
+	scale := theta / uasPerDeg
+	cards := axes("", "RA---TAN", "DEC--TAN", "deg", -across*scale, up*scale)
+	sin, cos := math.Sincos(s.Observer.PositionAngle / deg)
+	cards = append(cards,
+		files.Card{Key: "PC1_1", Value: cos, Comment: "N is at the position angle, from north through east"},
+		files.Card{Key: "PC1_2", Value: -sin}, files.Card{Key: "PC2_1", Value: sin}, files.Card{Key: "PC2_2", Value: cos},
+		files.Card{Key: "WCSNAME", Value: "sky", Comment: "offsets from the object, put at RA = Dec = 0"},
+		files.Card{Key: "UASPIX", Value: across * theta, Comment: "[uas] side of a pixel"},
+		files.Card{Key: "UASM", Value: theta, Comment: "[uas] GM/(c2 D)"})
+	return append(cards, screen("A")...)
+}
+
+// sceneCards tell the scene in keywords, for those who do not read its text.
+func sceneCards(s scenes.Scene) []files.Card {
+	cards := []files.Card{
+		{Key: "OBJECT", Value: s.Object.Kind},
+		{Key: "INCLIN", Value: s.Observer.Inclination, Comment: "[deg] from the disk axis"},
+		{Key: "POSANG", Value: s.Observer.PositionAngle, Comment: "[deg] of the disk axis"},
+	}
+	if math.IsInf(s.Observer.Radius, 1) {
+		cards = append(cards, files.Card{Key: "OBSRAD", Value: "infinity", Comment: "the observer's radius"})
+	} else {
+		cards = append(cards, files.Card{Key: "OBSRAD", Value: s.Observer.Radius, Comment: "[GM/c2] the observer's radius"})
+	}
+	if s.Title != "" {
+		cards = append(cards, files.Card{Key: "TITLE", Value: s.Title})
+	}
+	if len(s.Field.Frequency) > 0 {
+		cards = append(cards, files.Card{Key: "FREQ", Value: s.Field.Frequency[0], Comment: "[Hz] observed"})
+	}
+	return cards
+}
+
+func numericsCards(p Provenance) []files.Card {
+	cards := append([]files.Card{
+		{Key: "CREATOR", Value: "Annulet " + p.Version},
+		{Key: "TOLERANC", Value: p.Tolerance, Comment: "of light paths, relative"},
+		{Key: "MAXORDER", Value: p.MaxOrder, Comment: "image orders are 0 to this"},
+	}, boundCards(p)...)
+	for _, line := range p.Lines()[2:] {
+		cards = append(cards, files.Card{Key: "HISTORY", Comment: line})
+	}
+	return append(cards, files.Card{Key: "HISTORY", Comment: "The scene that made this file is in the extension " + sceneUnit + "."})
+}
+
+// boundCards are known when all is rendered.
+func boundCards(p Provenance) []files.Card {
+	return []files.Card{
+		{Key: "RBOUND", Value: p.WorstBound, Comment: "worst bound on r, relative"},
+		{Key: "PSIBOUND", Value: p.WorstAngle, Comment: "[rad] worst bound on a swept angle"},
+		{Key: "PATHS", Value: p.Paths, Comment: "light paths"},
+	}
+}

@@ -1,0 +1,82 @@
+package output
+
+import (
+	"encoding/json"
+	"fmt"
+	"strings"
+
+	"annulet/app/files"
+	"annulet/raytrace"
+	"annulet/scenes"
+)
+
+// Provenance is what every file says about where it comes from.
+type Provenance struct {
+	Title       string   `json:"title,omitempty"`
+	Version     string   `json:"version"`     // of the program
+	Tolerance   float64  `json:"tolerance"`   // of paths, relative
+	MaxOrder    int      `json:"max_order"`   // image orders are 0 to this
+	WorstBound  float64  `json:"worst_bound"` // on r of any crossing shown, relative
+	WorstAngle  float64  `json:"worst_angle"` // on the swept angle of any path shown that ends on star or sky, rad
+	Paths       int      `json:"paths"`
+	Integrated  int      `json:"integrated"` // of these, integrated one by one
+	NotIncluded []string `json:"not_included"`
+	Audit       string   `json:"audit,omitempty"` // its summary, if one was run
+	Scene       string   `json:"-"`               // the text of the file
+}
+
+// NotIncluded is what the model leaves out.
+var NotIncluded = []string{"returning radiation", "self-occultation by thickness", "scattering"}
+
+// NewProvenance gathers it; plate tells counts and bounds, and may be nil
+// while they are not known.
+func NewProvenance(d *scenes.Document, version string, plate *raytrace.Plate) Provenance {
+	s := d.Scene()
+	p := Provenance{
+		Title: s.Title, Version: version, Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder,
+		NotIncluded: NotIncluded, Scene: string(d.Text()),
+	}
+	if plate != nil {
+		p.WorstBound, p.WorstAngle, p.Paths, p.Integrated = plate.WorstBound, plate.WorstAngle, plate.Paths, plate.Integrated
+	}
+	return p
+}
+
+// Keywords of the texts in a PNG.
+const (
+	sceneKeyword    = "Annulet scene"
+	numericsKeyword = "Annulet numerics"
+)
+
+// JSON is all of it but the scene, on one line.
+func (p Provenance) JSON() string {
+	text, err := json.Marshal(p)
+	if err != nil {
+		panic(err) // numbers are finite, texts are texts
+	}
+	return string(text)
+}
+
+// Lines says the same for people.
+func (p Provenance) Lines() []string {
+	lines := []string{
+		fmt.Sprintf("Annulet %s, light paths at a relative tolerance of %g", p.Version, p.Tolerance),
+		fmt.Sprintf("%d paths; worst bound on r %.1e relative, on swept angles %.1e rad", p.Paths, p.WorstBound, p.WorstAngle),
+		"Not included: " + strings.Join(p.NotIncluded, ", ") + ".",
+	}
+	if p.Audit != "" {
+		lines = append(lines, "Audit: "+p.Audit)
+	}
+	return lines
+}
+
+// PNGTexts are the texts of a picture.
+func (p Provenance) PNGTexts() []files.Text {
+	return []files.Text{
+		{Keyword: "Title", Value: p.Title},
+		{Keyword: "Software", Value: "Annulet " + p.Version},
+		{Keyword: "Comment", Value: p.Lines()[2]},
+		{Keyword: numericsKeyword, Value: p.JSON()},
+		{Keyword: sceneKeyword, Value: p.Scene},
+	}
+}
