@@ -335,6 +335,36 @@ with tifffile.TiffFile(sys.argv[1]) as f:
 	}
 }
 
+// The README's snippets run as they stand and find what they promise.
+func TestReadmeSnippets(t *testing.T) {
+	dir := t.TempDir()
+	paths, plate := writeAll(t, dir)
+	for _, ext := range []string{"fits", "npz"} {
+		if err := os.Rename(paths[ext], filepath.Join(dir, "scene."+ext)); err != nil {
+			t.Fatal(err)
+		}
+	}
+	readme, err := os.ReadFile("../../README.md")
+	if err != nil {
+		t.Fatal(err)
+	}
+	blocks := strings.Split(string(readme), "```python\n")[1:]
+	if len(blocks) != 2 {
+		t.Fatalf("%d snippets", len(blocks))
+	}
+	for k, block := range blocks {
+		code, _, _ := strings.Cut(block, "```")
+		module := []string{"astropy", "numpy"}[k]
+		program := "import os\nos.chdir(" + fmt.Sprintf("%q", dir) + ")\n" + code + `
+print(total.shape, g.shape[-2:], float(total[12, 20]), scene.startswith("schema = 1"))
+`
+		want := fmt.Sprintf("(30, 40) (30, 40) %v True", float64(plate.Total[12*40+20]))
+		if got := strings.TrimSpace(python(t, module, program)); got != want {
+			t.Errorf("snippet %d: %s, want %s", k+1, got, want)
+		}
+	}
+}
+
 func TestECSVInAstropy(t *testing.T) {
 	paths, _ := writeAll(t, t.TempDir())
 	out := python(t, "astropy", `

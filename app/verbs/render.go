@@ -78,6 +78,7 @@ type rendering struct {
 	curve, limits, layer, order string
 	colours                     string
 	keep                        string
+	audit                       bool
 	json                        bool
 }
 
@@ -108,6 +109,7 @@ func newRender(s streams) *cobra.Command {
 	f.StringVar(&o.colours, "map", "", "colour map: "+strings.Join(assets.Names(), ", ")+" (default by layer)")
 	f.StringVar(&o.keep, "keep", "", "`LAYER,…` that FITS and NPZ hold beside the total (default all)")
 	f.IntVar(&o.depth, "depth", 8, "bits a component, 8 or 16")
+	f.BoolVar(&o.audit, "audit", false, "audit the paths first, and say in the files what it found")
 	f.IntVar(&o.workers, "workers", 0, "tiles traced at a time; 0 means one a processor")
 	f.BoolVar(&o.json, "json", false, "print a summary as one JSON document on stdout")
 	return cmd
@@ -283,8 +285,17 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	if err != nil {
 		return usage{err}
 	}
+	audited := ""
+	if o.audit {
+		note, err := audit(cmd.Context(), document, auditSamples, auditSeed)
+		if err != nil {
+			return err
+		}
+		audited = note.summary()
+		s.note("audit: %s", audited)
+	}
 	begun := time.Now()
-	job := renderJob{s: s, view: view, picture: p, document: document, options: raytrace.Options{Workers: o.workers}, data: data, hold: holdBytes}
+	job := renderJob{s: s, view: view, picture: p, document: document, options: raytrace.Options{Workers: o.workers}, data: data, hold: holdBytes, audit: audited}
 	plate, err := job.write(cmd.Context(), o.out)
 	if err != nil {
 		return err

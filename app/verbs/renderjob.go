@@ -22,7 +22,8 @@ type renderJob struct {
 	data     []raytrace.Layer // that FITS and NPZ hold
 	document *scenes.Document
 	options  raytrace.Options
-	hold     int64 // holdBytes
+	hold     int64  // holdBytes
+	audit    string // its summary, if one was run
 }
 
 // holdBytes is the most that plate and picture may take; larger images are
@@ -94,9 +95,15 @@ func (j *renderJob) write(ctx context.Context, paths []string) (*raytrace.Plate,
 
 const mebi = 1 << 20
 
+func (j *renderJob) provenance(plate *raytrace.Plate) output.Provenance {
+	p := output.NewProvenance(j.document, Version, plate)
+	p.Audit = j.audit
+	return p
+}
+
 // writeOne writes the whole plate, or the picture of it, as one file.
 func (j *renderJob) writeOne(ctx context.Context, path string, plate *raytrace.Plate, img image.Image) error {
-	p := output.NewProvenance(j.document, Version, plate)
+	p := j.provenance(plate)
 	switch formatOf(path) {
 	case formatFITS:
 		return files.WriteAt(ctx, path, newFileMode, func(w io.WriterAt) error {
@@ -196,10 +203,10 @@ func (j *renderJob) into(ctx context.Context, paths []string, sinks []sink) (cou
 }
 
 func (j *renderJob) fitsSink(w io.WriterAt) (sink, error) {
-	f, err := output.NewFITS(w, j.view, j.document.Scene(), j.data, output.NewProvenance(j.document, Version, nil))
+	f, err := output.NewFITS(w, j.view, j.document.Scene(), j.data, j.provenance(nil))
 	return sink{
 		take:  func(s raytrace.Strip) error { return f.Put(s.Plate, s.FirstRow) },
-		close: func(counts *raytrace.Plate) error { return f.Close(output.NewProvenance(j.document, Version, counts)) },
+		close: func(counts *raytrace.Plate) error { return f.Close(j.provenance(counts)) },
 	}, err
 }
 
@@ -214,7 +221,7 @@ func (j *renderJob) pngSink(w io.Writer) (sink, error) {
 			return writePNGRows(rows, img)
 		},
 		close: func(counts *raytrace.Plate) error {
-			return rows.Close(output.NewProvenance(j.document, Version, counts).PNGTexts()...)
+			return rows.Close(j.provenance(counts).PNGTexts()...)
 		},
 	}, err
 }

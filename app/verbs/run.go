@@ -149,7 +149,7 @@ func newRoot(s streams) *cobra.Command {
 	root.CompletionOptions.DisableDefaultCmd = true
 	root.AddCommand(
 		newTrace(s), newProbe(s), newRender(s), newScene(s),
-		newStations(s), newSweep(s), newBench(s),
+		newStations(s), newSweep(s), newBench(s), newAudit(s),
 		newVersion(s), newCompletion(s), newMan(s),
 	)
 	return root
