@@ -118,13 +118,16 @@ func (s *spreads) compare(a *Audit, image, judge *bench, k int) {
 		j int32
 	}
 	list := func(b *bench) (all []lit, total float64) {
+		through := 1.0
 		for j := b.at.Start[k]; j < b.at.Start[k+1]; j++ {
-			seen, shines, opaque := b.look(j)
+			seen, shines, passes := b.look(j)
+			seen.intensity *= through
+			through *= passes
 			if shines {
 				all = append(all, lit{seen, j})
 				total += seen.intensity
 			}
-			if opaque {
+			if through == 0 {
 				break
 			}
 		}

@@ -67,7 +67,7 @@ func newDisk(e scenes.Emitter, object *geodesic.Round, power float64) (*emit.Dis
 	}
 	d := &emit.Disk{
 		Inner: e.Inner.Radius, Outer: e.Outer,
-		Index: e.Index, Clockwise: e.Clockwise, Thick: e.Thick,
+		Index: e.Index, Clockwise: e.Clockwise, Depth: e.OpticalDepth,
 		Angle: law, GPower: power,
 	}
 	switch e.Gas {

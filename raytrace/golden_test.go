@@ -41,7 +41,9 @@ func TestGoldenPlates(t *testing.T) {
 		{"thin_horizon_163deg", 163, 2, false},
 	} {
 		s := scene(c.inclination, c.inner, 33)
-		s.Emitters[0].Thick = c.thick
+		if c.thick {
+			s.Emitters[0].OpticalDepth = math.Inf(1)
+		}
 		p := render(t, view(t, s), Options{})
 		file := filepath.Join("..", "testdata", "golden", c.name+".csv")
 		if *update {

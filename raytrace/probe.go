@@ -56,11 +56,14 @@ func (v *View) Probe(ctx context.Context, at [][2]float64) ([]Reading, error) {
 
 // read appends the readings of ray k.
 func (b *bench) read(k int, p [2]float64, readings []Reading) []Reading {
+	through := 1.0 // share of the light that gets past what lies before
 	for j := b.at.Start[k]; j < b.at.Start[k+1]; j++ {
-		s, lit, opaque := b.look(j)
+		s, lit, passes := b.look(j)
 		if !lit {
 			continue
 		}
+		s.intensity *= through
+		through *= passes
 		reading := Reading{
 			Alpha: p[0], Beta: p[1], Impact: b.rays.Impact(k),
 			Order:   int(b.at.Order[j]),
@@ -75,7 +78,7 @@ func (b *bench) read(k int, p [2]float64, readings []Reading) []Reading {
 			reading.AngleBound = b.at.Bound[j]
 		}
 		readings = append(readings, reading)
-		if opaque {
+		if through == 0 {
 			break
 		}
 	}

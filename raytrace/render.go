@@ -177,16 +177,19 @@ func (b *bench) exposeTile(tile image.Rectangle, plate *Plate) (worst bounds) {
 }
 
 // expose writes ray k to a pixel of the plate, order by order, up to the
-// first opaque emitter. Where an order has several crossings its intensity is
+// first opaque emitter; light from behind a translucent one is dimmed by it. Where an order has several crossings its intensity is
 // their sum and its other layers show the first one.
 func (b *bench) expose(k, pixel int, plate *Plate, worst *bounds) {
 	var total, sum float64 // of all orders, of the one in hand
+	through := 1.0         // share of the light that gets past what lies before
 	last := -1
 	for j := b.at.Start[k]; j < b.at.Start[k+1]; j++ {
-		s, lit, opaque := b.look(j)
+		s, lit, passes := b.look(j)
 		if !lit {
 			continue
 		}
+		s.intensity *= through
+		through *= passes
 		total += s.intensity
 		surface, order := b.at.Surface[j], int(b.at.Order[j])
 		if surface == geodesic.Plane {
@@ -201,7 +204,7 @@ func (b *bench) expose(k, pixel int, plate *Plate, worst *bounds) {
 		}
 		sum += s.intensity
 		set(layers[Intensity], pixel, sum)
-		if opaque {
+		if through == 0 {
 			break
 		}
 	}

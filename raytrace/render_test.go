@@ -233,9 +233,10 @@ func TestRedshiftExtremes(t *testing.T) {
 
 // Probe and plate share everything but rounding.
 func TestProbeAgreesWithPlate(t *testing.T) {
-	for _, thick := range []bool{false, true} {
+	for _, depth := range []float64{0, math.Inf(1), 0.5} {
 		s := scene(75, 2, 31)
-		s.Emitters[0].Thick = thick
+		s.Emitters[0].OpticalDepth = depth
+		thick := depth > 1
 		v := view(t, s)
 		p := render(t, v, Options{PathByPath: true})
 		compared := 0
@@ -346,5 +347,36 @@ func TestTwoDisks(t *testing.T) {
 	two := render(t, view(t, s), Options{})
 	for k := range one.Total {
 		near(t, "sum", float64(two.Total[k]), 2*float64(one.Total[k]), 1e-6*float64(one.Total[k]))
+	}
+}
+
+// A disk of optical depth τ emits S (1 - exp(-τ/μ)) and dims what lies
+// behind by exp(-τ/μ): radiative transfer through a slab, any textbook.
+func TestOpticalDepth(t *testing.T) {
+	probe := func(depth float64) []Reading {
+		s := scene(40, 2, 31)
+		s.Emitters[0].Inner.Radius, s.Emitters[0].OpticalDepth = 2, depth
+		readings, err := view(t, s).Probe(context.Background(), [][2]float64{{-3, 4.3}, {5.2, 0.1}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return readings
+	}
+	const depth = 0.7
+	thin, slab := probe(0), probe(depth)
+	if len(thin) != len(slab) || len(thin) < 4 {
+		t.Fatalf("%d and %d crossings", len(thin), len(slab))
+	}
+	through := 1.0
+	for k, r := range thin {
+		if k == 0 || thin[k-1].Alpha != r.Alpha {
+			through = 1
+		}
+		passes := math.Exp(-depth / r.Mu)
+		near(t, "intensity", slab[k].Intensity/(r.Intensity*through*(1-passes)), 1, 1e-12)
+		through *= passes
+	}
+	if thick := probe(1e9); len(thick) != 2 {
+		t.Errorf("an optically thick disk is seen %d times on 2 paths", len(thick))
 	}
 }

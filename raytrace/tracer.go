@@ -89,8 +89,10 @@ type sight struct {
 }
 
 // look sums the emitters at crossing j. G and Mu are those of the first lit
-// one; opaque says that the path ends here.
-func (b *bench) look(j int32) (s sight, lit, opaque bool) {
+// one; passes is the share of the light from behind that gets through them
+// all.
+func (b *bench) look(j int32) (s sight, lit bool, passes float64) {
+	passes = 1
 	for e := range b.lights {
 		l := &b.lights[e]
 		if !l.Lit[j] {
@@ -101,7 +103,7 @@ func (b *bench) look(j int32) (s sight, lit, opaque bool) {
 		}
 		s.intensity += l.Intensity[j]
 		lit = true
-		opaque = opaque || l.Opaque[j]
+		passes *= l.Passes[j]
 	}
-	return s, lit, opaque
+	return s, lit, passes
 }

@@ -134,6 +134,9 @@ func read(k Key, v value) (reading, *fault) {
 		}
 		r.word = v.text
 	case Choice:
+		if k.OrNumber && (v.kind == kindInteger || v.kind == kindFloat) {
+			return r, r.readNumber(v)
+		}
 		if v.kind != kindText {
 			return r, wrongType
 		}
@@ -231,6 +234,9 @@ func (k Key) Allowed() string {
 		options = append(options, "text")
 	case Choice:
 		options = append(options, k.Choices...)
+		if k.OrNumber {
+			options = append(options, "a number, "+k.Range.In(""))
+		}
 	case ChoiceList:
 		options = append(options, "a list of "+strings.Join(k.Choices, ", "))
 	case TableList:

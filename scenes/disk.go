@@ -1,5 +1,7 @@
 package scenes
 
+import "math"
+
 func (b *builder) disk(e *Emitter, get func(string) reading) {
 	outer := get("outer")
 	if outer.given { // a default is for rims to judge
@@ -10,7 +12,7 @@ func (b *builder) disk(e *Emitter, get func(string) reading) {
 	e.Gas = get("gas").word
 	e.Profile = get("profile").word
 	e.Index = b.number(get("index"), 0)
-	e.Thick = get("optical_depth").word == "thick"
+	e.OpticalDepth = b.opticalDepth(get("optical_depth"))
 	e.EmissionAngle = get("emission_angle").word
 	e.Inner = b.innerRim(get("inner"), e.Gas)
 	b.circles(get("inner"), *e)
@@ -99,4 +101,15 @@ func (b *builder) rims(inner, outer reading, e Emitter) {
 		b.failAt(b.get("object", 0, "radius"), Error{Problem: "a disk from here outwards needs emitter.outer",
 			Allowed: "less than its default, " + outerText + ", or emitter.outer of more than " + innerText})
 	}
+}
+
+// opticalDepth returns that at normal incidence.
+func (b *builder) opticalDepth(r reading) float64 {
+	switch r.word {
+	case "thin":
+		return 0
+	case "thick":
+		return math.Inf(1)
+	}
+	return b.number(r, 0)
 }

@@ -152,7 +152,7 @@ func (w writer) disk(e Emitter) {
 	w.key("gas", quote(e.Gas))
 	w.key("profile", quote(e.Profile))
 	w.key("index", tomlNumber(e.Index))
-	w.key("optical_depth", quote(pick(e.Thick, "thick", "thin")))
+	w.key("optical_depth", formatDepth(e.OpticalDepth))
 	w.key("emission_angle", quote(e.EmissionAngle))
 }
 
@@ -213,4 +213,15 @@ func formatQuantity(x, sigma float64, unitNames ...string) string {
 		}
 	}
 	return best
+}
+
+// formatDepth writes an optical depth.
+func formatDepth(depth float64) string {
+	switch {
+	case depth == 0:
+		return quote("thin")
+	case math.IsInf(depth, 1):
+		return quote("thick")
+	}
+	return tomlNumber(depth)
 }

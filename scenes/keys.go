@@ -31,6 +31,7 @@ type Key struct {
 	Units    []string // units that are accepted
 	Words    []string // words that may stand instead of a quantity
 	Choices  []string // Choice and ChoiceList: the words carried out
+	OrNumber bool     // Choice: or a number in Range
 	Fields   []Key    // TableList: the keys of each table; they have no Section
 	Range    Range    // of the number, in M, deg, uas, Msun, pc, Hz or without unit
 	Error    bool     // "+- error" may follow the number
@@ -179,9 +180,8 @@ var emitterKeys = []Key{
 		Default: `0`, Text: "monochromatic: I_nu ~ nu^spectral_index"},
 	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Later: true,
 		Text: "energy of a line in the gas frame"},
-	{Section: "emitter", Name: "optical_depth", Type: Choice, Choices: []string{"thin", "thick"},
-		LaterForm: "a number at normal incidence", laterKinds: []kind{kindInteger, kindFloat}, Kinds: onlyDisk,
-		Default: `"thin"`, Text: "thin: all crossings add up; thick: the first one ends the path"},
+	{Section: "emitter", Name: "optical_depth", Type: Choice, Choices: []string{"thin", "thick"}, OrNumber: true, Range: above(0), Kinds: onlyDisk,
+		Default: `"thin"`, Text: "thin: all crossings add up; thick: the first one ends the path; a number: that at normal incidence, tau, emits S (1 - exp(-tau/mu)) and lets exp(-tau/mu) through"},
 	{Section: "emitter", Name: "emission_angle", Type: Choice, Choices: []string{"isotropic", "darkened", "brightened"}, Kinds: []string{disk, surface},
 		Default: `"isotropic"`, Text: "intensity with mu, the cosine to the normal in the gas frame; darkened: 1 + 2.06 mu, brightened: ln(1 + 1/mu)"},
 	{Section: "emitter", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Later: true, Text: "spot: radius"},

@@ -61,7 +61,7 @@ type Emitter struct {
 	Index         float64 // emissivity (r/M)^-Index in the gas frame
 	Light         string  // "bolometric" or "monochromatic"
 	SpectralIndex float64 // monochromatic: I_ν ∝ ν^SpectralIndex
-	Thick         bool    // optical_depth = "thick"
+	OpticalDepth  float64 // at normal incidence; 0 is "thin", +Inf "thick"
 	EmissionAngle string  // "isotropic", "darkened" or "brightened"
 
 	// surface

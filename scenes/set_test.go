@@ -121,7 +121,7 @@ func TestSetRefusalsChangeNothing(t *testing.T) {
 		{"emitter.2.outer", "6.5", "--set emitter.2.outer: emitter.2.inner: the inner rim"},
 		{"emitter.1.outer", "1", "--set emitter.1.outer: out of range"},
 		{"emitter.index", "[6, 3]", "not in this version"},
-		{"emitter.optical_depth", "0.5", "not in this version"},
+		{"emitter.optical_depth", "-0.5", "more than 0"},
 		{"emitter.kind", "spot", "not in this version"},
 		{"time.start", "0", "not in this version"},
 		{"figure.kind", "x", "not in this version"},

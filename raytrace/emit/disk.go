@@ -13,8 +13,12 @@ type Disk struct {
 	Inner, Outer float64 // rims, M
 	Index        float64
 	Clockwise    bool // the gas turns clockwise about N
-	Thick        bool // paths end on the disk
-	Angle        AngleLaw
+	// Depth is the optical depth at normal incidence, with which the disk
+	// emits S (1 - exp(-Depth/μ)) and lets exp(-Depth/μ) through. Infinite,
+	// paths end on the disk; 0 stands for optically thin, where S adds up
+	// with no slant factor and nothing is absorbed.
+	Depth float64
+	Angle AngleLaw
 	// GPower is the power of g that the received intensity carries: 4 for
 	// bolometric light, 3 - s for a power-law spectrum I_ν ∝ ν^s.
 	GPower float64
@@ -44,10 +48,25 @@ func (d *Disk) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, lig
 			}
 			g := d.Gas.RedshiftFactor(r, rays.GObs[k], rays.Lambda[k], kr, sense)
 			light.Lit[j] = true
-			light.Opaque[j] = d.Thick
 			light.G[j] = g
 			light.Mu[j] = geodesic.EmissionCosine(g, rays.GObs[k], rays.Eta[k], r)
 			light.Intensity[j] = power(g, d.GPower) * power(r, -d.Index) * d.Angle.Intensity(light.Mu[j])
+			light.Passes[j] = 1
+		}
+	}
+	d.absorb(light)
+}
+
+// absorb applies the optical depth to lit crossings.
+func (d *Disk) absorb(light *Light) {
+	if d.Depth == 0 {
+		return
+	}
+	for j, lit := range light.Lit {
+		if lit {
+			dimmed := -d.Depth / light.Mu[j]
+			light.Intensity[j] *= -math.Expm1(dimmed)
+			light.Passes[j] = math.Exp(dimmed)
 		}
 	}
 }

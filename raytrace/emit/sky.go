@@ -82,7 +82,7 @@ func (s *Sky) Shade(rays *geodesic.Rays, at *geodesic.Crossings, pixels *Pixels,
 			default:
 				seen = 1
 			}
-			light.Lit[j], light.Opaque[j] = true, true
+			light.Lit[j], light.Passes[j] = true, 0
 			light.G[j], light.Mu[j] = g, math.NaN()
 			light.Intensity[j] = seen * power(g, s.GPower)
 		}

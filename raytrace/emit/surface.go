@@ -69,7 +69,7 @@ func (s *Surface) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, 
 			}
 			g := rays.GObs[k] * lapse / shift
 			mu := min(1, math.Abs(at.KR[j])/shift)
-			light.Lit[j], light.Opaque[j] = true, true
+			light.Lit[j], light.Passes[j] = true, 0
 			light.G[j], light.Mu[j] = g, mu
 			light.Intensity[j] = s.brightness(at.CosTheta[j], at.Phi[j]-turned) * s.Angle.Intensity(mu) * power(g, s.GPower)
 		}

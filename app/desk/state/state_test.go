@@ -201,8 +201,8 @@ func TestChoices(t *testing.T) {
 	}
 	s.choose(t, "emitter.sense", "clockwise")
 	s.choose(t, "emitter.optical_depth", "thick")
-	if e := s.Scene().Emitters[0]; !e.Clockwise || !e.Thick {
-		t.Errorf("clockwise %v, thick %v", e.Clockwise, e.Thick)
+	if e := s.Scene().Emitters[0]; !e.Clockwise || !math.IsInf(e.OpticalDepth, 1) {
+		t.Errorf("clockwise %v, optical depth %v", e.Clockwise, e.OpticalDepth)
 	}
 }
 
