@@ -102,9 +102,13 @@ func (t *roundTracer) crossOne(b, kr float64) {
 	}
 }
 
-// firstAngle is FirstPlaneAngle of the ray in hand.
+// firstAngle is FirstPlaneAngle of the ray in hand; +Inf if the ray lies within
+// the plane, which it then never crosses.
 func (t *roundTracer) firstAngle() float64 {
 	if t.cosI == 0 {
+		if t.sinS == 0 {
+			return math.Inf(1)
+		}
 		return math.Pi
 	}
 	return math.Pi/2 + math.Atan(t.tanI*t.sinS)

@@ -177,6 +177,11 @@ func TestEdgeOn(t *testing.T) {
 	if len(readings) < 2 || readings[0].R != readings[1].R || readings[0].Order != 0 {
 		t.Fatalf("readings %+v", readings)
 	}
+	for _, r := range readings {
+		if r.Beta == 0 {
+			t.Errorf("a path within the plane crosses it: %+v", r)
+		}
+	}
 	near(t, "azimuth behind the hole", math.Abs(readings[0].Phi), math.Pi, 1e-12)
 }
 
