@@ -6,12 +6,19 @@ import "strings"
 // characters. Taste.
 const otherSection = 3
 
+// shortest is the least number of characters by which the start of a key is
+// recognised. Taste.
+const shortest = 3
+
 // nearestKey returns the known key that is most like the name: its name when
 // it stands in the same section, else its path.
 func nearestKey(in, name string) string {
 	best, bestCost := "", 0
 	for _, k := range keyTable {
 		cost := 2 * editDistance(strings.ToLower(name), strings.ToLower(k.Name))
+		if len(name) >= shortest && strings.HasPrefix(k.Name, strings.ToLower(name)) {
+			cost = 0 // cut short
+		}
 		if k.Section != in {
 			cost += otherSection
 		}

@@ -21,6 +21,7 @@ var refusals = []struct {
 	// unknown
 	{"case of a key", "[[emitter]]\nInner = 3", 4, 1, "emitter.Inner", []string{"unknown key", "nearest known: inner"}},
 	{"misspelt key", "[observer]\ninclnation = 3", 4, 1, "observer.inclnation", []string{"nearest known: inclination"}},
+	{"key cut short", "[observer]\nincl = 3", 4, 1, "observer.incl", []string{"nearest known: inclination"}},
 	{"key of another table", "[object]\ninclination = 3", 4, 1, "object.inclination", []string{"nearest known: observer.inclination"}},
 	{"unknown table", "[objekt]\nmass = 3", 3, 2, "objekt", []string{"unknown table", "nearest known: object"}},
 	{"case of a table", "  [Object]", 3, 4, "Object", []string{"unknown table", "nearest known: object"}},
