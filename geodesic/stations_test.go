@@ -283,8 +283,9 @@ func TestPairLengths(t *testing.T) {
 	tell(t, "length from the charged horizon", p.ProperDistance, x+0.8*math.Sinh(x), 1e-13)
 	p = must(t)(NewStar(4, true)).Pair(0, 4, Static, Static)
 	tell(t, "a star's proper radius", p.ProperDistance, math.Sqrt(32)*math.Asin(math.Sqrt(0.5)), 1e-15)
-	// the Earth, if uniform, has an excess of GM/3c² = 1.5 mm: Feynman,
-	// Lectures II, section 42-3, from memory
+	// the Earth, if uniform, has an excess of GM/3c² = 1.5 mm, the weak limit
+	// of Schwarzschild's (1916) interior; GM/c² = 4.4350 mm and the mean
+	// radius from IAU 2015 Resolution B3 and common practice
 	p = must(t)(NewStar(6.371e6/4.4350e-3, true)).Pair(0, 6.371e6/4.4350e-3, Static, Static)
 	near(t, "the Earth's excess radius, mm", p.ExcessRadius*4.4350, 1.5, 0.05)
 	tell(t, "the Earth's excess radius, M", p.ExcessRadius, 1./3, 1e-8)
