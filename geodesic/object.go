@@ -91,6 +91,9 @@ func (s *Round) Same(other *Round) bool {
 // Edge returns the radius of the horizon, surface or shell, M.
 func (s *Round) Edge() float64 { return 1 / s.edge }
 
+// Opaque says whether paths end where they meet the edge.
+func (s *Round) Opaque() bool { return s.inside == nil }
+
 // lapse2 is A at inverse radius u in the exterior.
 func (s *Round) lapse2(u float64) float64 { return 1 - u*(2-s.charge2*u) }
 
@@ -119,6 +122,14 @@ func (s *Round) CriticalImpact() float64 {
 	}
 	r := s.PhotonSphere()
 	return r / math.Sqrt(s.lapse2(1/r))
+}
+
+// Lyapunov returns the exponent by which light near the photon sphere leaves
+// it, per half orbit: π √(6u - 6Q²u² - 1) there, from w² = 1/b² - u² A; π
+// without charge, as published: Johnson et al., Sci. Adv. 6, eaaz1310 (2020).
+func (s *Round) Lyapunov() float64 {
+	u := 1 / s.PhotonSphere()
+	return math.Pi * math.Sqrt(6*u-6*s.charge2*u*u-1)
 }
 
 // criticalDistance is b/b_c - 1.

@@ -1,0 +1,80 @@
+package measure
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"testing"
+
+	"annulet/raytrace"
+	"annulet/scenes"
+)
+
+// viewOf parses a scene.
+func viewOf(t testing.TB, text string) (*raytrace.View, scenes.Scene) {
+	t.Helper()
+	d, err := scenes.Parse("test.toml", []byte("schema = 1\n"+text))
+	if err != nil {
+		t.Fatal(err)
+	}
+	v, err := raytrace.NewView(d.Scene())
+	if err != nil {
+		t.Fatal(err)
+	}
+	return v, d.Scene()
+}
+
+func near(t *testing.T, what string, got, want, tol float64) {
+	t.Helper()
+	if !(math.Abs(got-want) <= tol) {
+		t.Errorf("%s = %.15g, want %.15g ± %g", what, got, want, tol)
+	}
+}
+
+// diskScene is a disk of 6 to 20 M.
+func diskScene(inclination float64, pixels int) string {
+	return fmt.Sprintf(`
+[observer]
+inclination = %g
+[field]
+pixels = [%d, %d]
+[[emitter]]
+kind = "disk"
+inner = 6
+outer = 20
+`, inclination, pixels, pixels)
+}
+
+// Issue 6: rooted on traced paths, by closed form, and read off an image of
+// 800 x 800 pixels. The closed forms are Darwin's (1959).
+func TestEdges(t *testing.T) {
+	var angles []float64
+	for deg := -180.0; deg < 180; deg += 15 {
+		angles = append(angles, deg*math.Pi/180)
+	}
+	for _, inclination := range []float64{1, 40, 75} {
+		v, _ := viewOf(t, diskScene(inclination, 800))
+		plate, err := v.Render(context.Background(), raytrace.Options{Layers: []raytrace.Layer{raytrace.Radius}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		edges, err := Edges(context.Background(), v, angles, plate)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if len(edges) != 3*2*len(angles) {
+			t.Fatalf("%d edges", len(edges))
+		}
+		var rooted, measured, widest float64
+		for _, e := range edges {
+			what := fmt.Sprintf("i %g, order %d, s %.0f, outer %v", inclination, e.Order, e.ScreenAngle*180/math.Pi, e.Outer)
+			near(t, what, e.Impact, e.Closed, 1e-8*e.Closed)
+			rooted = max(rooted, math.Abs(e.Impact/e.Closed-1))
+			near(t, what+" measured", e.Measured, e.Closed, v.Field.Pitch()/10)
+			near(t, what+" within its bound", e.Measured, e.Closed, e.MeasuredBound)
+			measured = max(measured, math.Abs(e.Measured-e.Closed)/v.Field.Pitch())
+			widest = max(widest, e.MeasuredBound/v.Field.Pitch())
+		}
+		t.Logf("i %g: rooted %.1e relative, measured %.1e pixel, bound %.1e pixel", inclination, rooted, measured, widest)
+	}
+}

@@ -1,0 +1,345 @@
+package measure
+
+import (
+	"context"
+	"math"
+	"runtime"
+	"slices"
+	"sync/atomic"
+
+	"golang.org/x/sync/errgroup"
+
+	"annulet/geodesic"
+	"annulet/raytrace"
+	"annulet/raytrace/emit"
+)
+
+// Options is what the long measurements need.
+type Options struct {
+	Workers int                 // goroutines; 0 means GOMAXPROCS
+	Report  func(done, all int) // called from the workers, one call at a time; nil for none
+	Lines   int                 // of sight around, 0 means 720
+	Cells   int                 // from rim to rim, 0 means 240
+}
+
+func (o Options) filled() Options {
+	if o.Workers <= 0 {
+		o.Workers = runtime.GOMAXPROCS(0)
+	}
+	if o.Lines <= 0 {
+		o.Lines = 720
+	}
+	if o.Cells <= 0 {
+		o.Cells = 240
+	}
+	return o
+}
+
+func (o Options) coarser() Options {
+	o.Lines, o.Cells = o.Lines/2, o.Cells/2
+	return o
+}
+
+// patch is a piece of the image of a disk in one order, between two circles
+// and two screen angles.
+type patch struct {
+	base        int     // cell that it belongs to
+	area        float64 // M², sr on an angular field
+	intensity   float64 // as received, dimmed by what lies in front; G-power of the emitter
+	passes      float64 // share of the light that reaches the observer
+	g, r        float64
+	delay       float64
+	alpha, beta float64 // of its middle, M
+	along       float64 // change of g from screen angle to screen angle
+	across      float64 // and from circle to circle
+}
+
+// sampler cuts images of disks into patches along lines of constant screen
+// angle, so that every image order is resolved however thin it is.
+type sampler struct {
+	g        *Geometry
+	view     *raytrace.View
+	parallel bool
+	table    *geodesic.OrbitTable
+	delay    bool
+	options  Options
+	angles   []float64  // edges between lines, radians
+	blockers []*circles // rims of disks that dim what lies behind, by order
+}
+
+// samplerTolerance is that of the paths through the patches.
+const samplerTolerance = 1e-9
+
+func newSampler(ctx context.Context, v *raytrace.View, delay bool, o Options) (*sampler, error) {
+	g, err := NewGeometry(v)
+	if err != nil {
+		return nil, err
+	}
+	found, _ := disks(v)
+	if len(found) == 0 {
+		return nil, cannot("the scene has no disk")
+	}
+	o = o.filled()
+	s := &sampler{g: g, view: v, parallel: v.Field.IsParallel(), delay: delay, options: o}
+	s.table, err = g.object.SharedOrbits(ctx, geodesic.Share{
+		Observer: g.observer, Tolerance: samplerTolerance, MaxOrder: v.Plan.MaxOrder, Delay: delay, Workers: o.Workers,
+	})
+	if err != nil {
+		return nil, err
+	}
+	s.angles = lineAngles(g, o.Lines)
+	for _, d := range found {
+		if !dims(d) {
+			continue
+		}
+		for n := range v.Plan.MaxOrder {
+			c, err := g.newCircles(ctx, n, []float64{d.Inner, d.Outer})
+			if err != nil {
+				return nil, err
+			}
+			s.blockers = append(s.blockers, c)
+		}
+	}
+	return s, nil
+}
+
+// dims says whether a disk takes light from what lies behind it.
+func dims(d *emit.Disk) bool { return d.Thick }
+
+// lineAngles are the screen angles between lines: half of them even around,
+// half even in the azimuth of a flat disk so tilted, where edge-on images
+// change fast.
+func lineAngles(g *Geometry, lines int) []float64 {
+	half := lines / 2
+	const most = 1e3 // ratio of the axes of the disk's ellipse that is followed
+	squeeze := max(math.Abs(g.cosI), 1/most)
+	angles := make([]float64, 0, 2*half+1)
+	for k := range half {
+		turn := 2*math.Pi*(float64(k)+0.5)/float64(half) - math.Pi
+		angles = append(angles, turn)
+		// offset, so that no two coincide
+		turn = 2*math.Pi*(float64(k)+0.17)/float64(half) - math.Pi
+		sin, cos := math.Sincos(turn)
+		angles = append(angles, math.Atan2(squeeze*sin, cos))
+	}
+	slices.Sort(angles)
+	return append(angles, angles[0]+2*math.Pi)
+}
+
+// tracer returns a tracer of the sampler's own.
+func (s *sampler) tracer() (geodesic.Tracer, error) {
+	plan := geodesic.Plan{Tolerance: samplerTolerance, MaxOrder: s.view.Plan.MaxOrder, Plane: true, Reach: s.view.Plan.Reach}
+	if s.table == nil {
+		return s.g.object.Tracer(s.g.observer, plan)
+	}
+	return s.g.object.SharedTracer(s.g.observer, plan, s.table)
+}
+
+// area of the screen between two impact parameters and two screen angles.
+func (s *sampler) area(b1, b2, turn float64) float64 {
+	if s.parallel {
+		return turn * (b2 - b1) * (b2 + b1) / 2
+	}
+	x1, x2 := b1/s.g.widest, b2/s.g.widest
+	c1, c2 := math.Sqrt(max(0, 1-x1*x1)), math.Sqrt(max(0, 1-x2*x2))
+	return turn * (x2 - x1) * (x2 + x1) / (c1 + c2)
+}
+
+// image returns the patches of one disk (a place among the view's emitters)
+// in one order, line by line.
+func (s *sampler) image(ctx context.Context, disk, order int) ([][]patch, error) {
+	d := s.view.Emitters[disk].(*emit.Disk)
+	r := make([]float64, s.options.Cells+1)
+	for k := range r {
+		r[k] = d.Inner * math.Pow(d.Outer/d.Inner, float64(k)/float64(s.options.Cells))
+	}
+	r[len(r)-1] = d.Outer
+	c, err := s.g.newCircles(ctx, order, r)
+	if err != nil {
+		return nil, err
+	}
+	lines := make([][]patch, len(s.angles)-1)
+	var next atomic.Int64
+	group, ctx := errgroup.WithContext(ctx)
+	for range s.options.Workers {
+		group.Go(func() error {
+			w, err := s.worker(c)
+			if err != nil {
+				return err
+			}
+			for {
+				k := int(next.Add(1)) - 1
+				if k >= len(lines) {
+					return nil
+				}
+				if err := ctx.Err(); err != nil {
+					return err
+				}
+				if lines[k], err = w.line(s.angles[k], s.angles[k+1], disk, order); err != nil {
+					return err
+				}
+			}
+		})
+	}
+	if err := group.Wait(); err != nil {
+		return nil, err
+	}
+	s.slopes(lines)
+	return lines, nil
+}
+
+// lineWorker is the scratch of one goroutine.
+type lineWorker struct {
+	s      *sampler
+	c      *circles
+	tracer geodesic.Tracer
+	b      []float64
+	cuts   []float64
+	edges  []float64
+	dirs   []geodesic.Direction
+	rays   geodesic.Rays
+	at     geodesic.Crossings
+	lights []emit.Light
+}
+
+func (s *sampler) worker(c *circles) (*lineWorker, error) {
+	t, err := s.tracer()
+	return &lineWorker{s: s, c: c, tracer: t, b: make([]float64, len(c.r)), lights: make([]emit.Light, len(s.view.Emitters))}, err
+}
+
+// line returns the patches between two screen angles.
+func (w *lineWorker) line(from, to float64, disk, order int) ([]patch, error) {
+	s := w.s
+	middle := (from + to) / 2
+	sin, cos := math.Sincos(middle)
+	w.c.at(s.g.Swept(middle, order), w.b)
+	w.cut(middle, order)
+	patches := make([]patch, 0, len(w.b)+len(w.cuts))
+	w.dirs = w.dirs[:0]
+	for k := 1; k < len(w.b); k++ {
+		w.edges = append(w.edges[:0], w.b[k-1])
+		for _, x := range w.cuts {
+			if x > w.b[k-1] && x < w.b[k] {
+				w.edges = append(w.edges, x)
+			}
+		}
+		w.edges = append(w.edges, w.b[k])
+		for i := 1; i < len(w.edges); i++ {
+			b := (w.edges[i-1] + w.edges[i]) / 2
+			patches = append(patches, patch{base: k - 1, area: s.area(w.edges[i-1], w.edges[i], to-from), alpha: b * cos, beta: b * sin})
+			w.dirs = append(w.dirs, geodesic.Direction{Alpha: b * cos, Beta: b * sin})
+		}
+	}
+	if err := s.g.object.Aim(s.g.observer, true, w.dirs, &w.rays); err != nil {
+		return nil, err
+	}
+	w.tracer.Cross(&w.rays, geodesic.Want{Delay: s.delay}, &w.at)
+	for e, emitter := range s.view.Emitters {
+		if _, sky := emitter.(*emit.Sky); sky {
+			continue
+		}
+		emitter.Shade(&w.rays, &w.at, nil, &w.lights[e])
+	}
+	for k := range patches {
+		w.look(k, &patches[k], disk, order)
+	}
+	return patches, nil
+}
+
+// cut gathers where light from behind is dimmed or stopped along a line.
+func (w *lineWorker) cut(angle float64, order int) {
+	w.cuts = w.cuts[:0]
+	if w.s.g.object.Edge() > w.s.g.object.PhotonSphere() {
+		w.cuts = append(w.cuts, w.s.g.barrier)
+	}
+	var rims [2]float64
+	for _, c := range w.s.blockers {
+		if c.order < order {
+			c.at(w.s.g.Swept(angle, c.order), rims[:])
+			w.cuts = append(w.cuts, rims[0], rims[1])
+		}
+	}
+	slices.Sort(w.cuts)
+}
+
+// look reads the light of ray k.
+func (w *lineWorker) look(k int, p *patch, disk, order int) {
+	p.g, p.r, p.delay = math.NaN(), math.NaN(), math.NaN()
+	passes := 1.0
+	for j := w.at.Start[k]; j < w.at.Start[k+1]; j++ {
+		if l := &w.lights[disk]; int(w.at.Order[j]) == order && w.at.Surface[j] == geodesic.Plane && l.Lit[j] {
+			p.intensity, p.g, p.r = l.Intensity[j]*passes, l.G[j], w.at.R[j]
+			p.passes = passes
+			if w.s.delay {
+				p.delay = w.at.Delay[j]
+			}
+			return
+		}
+		for e := range w.lights {
+			if l := &w.lights[e]; int(j) < len(l.Lit) && l.Lit[j] {
+				passes *= passed(l, j)
+			}
+		}
+	}
+}
+
+// passed is the share of the light from behind that a crossing lets through.
+func passed(l *emit.Light, j int32) float64 {
+	if l.Opaque[j] {
+		return 0
+	}
+	return 1
+}
+
+// slopes fills in how g changes across patches.
+func (s *sampler) slopes(lines [][]patch) {
+	cells := s.options.Cells
+	table := make([]float64, len(lines)*cells)
+	for k := range table {
+		table[k] = math.NaN()
+	}
+	for k, line := range lines {
+		for _, p := range line {
+			if !math.IsNaN(p.g) {
+				table[k*cells+p.base] = p.g
+			}
+		}
+	}
+	at := func(line, cell int) float64 {
+		return table[(line+len(lines))%len(lines)*cells+cell]
+	}
+	slope := func(before, middle, after, left, width, right float64) float64 {
+		// left and right are distances of the neighbours' middles
+		switch {
+		case !math.IsNaN(before) && !math.IsNaN(after):
+			return math.Abs(after-before) / (left + right) * width
+		case !math.IsNaN(before):
+			return math.Abs(middle-before) / left * width
+		case !math.IsNaN(after):
+			return math.Abs(after-middle) / right * width
+		}
+		return 0
+	}
+	width := func(k int) float64 {
+		k = (k + len(lines)) % len(lines)
+		return s.angles[k+1] - s.angles[k]
+	}
+	for k, line := range lines {
+		for i := range line {
+			p := &line[i]
+			if math.IsNaN(p.g) {
+				continue
+			}
+			w := width(k)
+			p.along = slope(at(k-1, p.base), p.g, at(k+1, p.base), (width(k-1)+w)/2, w, (w+width(k+1))/2)
+			before, after := math.NaN(), math.NaN()
+			if p.base > 0 {
+				before = at(k, p.base-1)
+			}
+			if p.base+1 < cells {
+				after = at(k, p.base+1)
+			}
+			p.across = slope(before, p.g, after, 1, 1, 1)
+		}
+	}
+}
