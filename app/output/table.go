@@ -57,7 +57,7 @@ func (t Table) WriteCSV(w io.Writer, p Provenance) error {
 	if _, err := io.WriteString(w, head.String()); err != nil {
 		return err
 	}
-	return t.writeRows(w)
+	return t.WriteRows(w)
 }
 
 // WriteECSV writes Enhanced CSV 1.0, whose header astropy reads types, units
@@ -88,7 +88,7 @@ func (t Table) WriteECSV(w io.Writer, p Provenance) error {
 	if _, err := io.WriteString(w, head.String()); err != nil {
 		return err
 	}
-	return t.writeRows(w)
+	return t.WriteRows(w)
 }
 
 // ecsvScene begins the line with the scene in the head of an ECSV file; a JSON
@@ -98,7 +98,8 @@ const ecsvScene = "# - scene: "
 // yaml quotes a text.
 func yaml(text string) string { return "'" + strings.ReplaceAll(text, "'", "''") + "'" }
 
-func (t Table) writeRows(w io.Writer) error {
+// WriteRows writes a header of the columns' names and the rows, no comments.
+func (t Table) WriteRows(w io.Writer) error {
 	out := csv.NewWriter(w)
 	row := make([]string, len(t.Columns))
 	for k, c := range t.Columns {

@@ -78,3 +78,37 @@ func TestEdges(t *testing.T) {
 		t.Logf("i %g: rooted %.1e relative, measured %.1e pixel, bound %.1e pixel", inclination, rooted, measured, widest)
 	}
 }
+
+// Shifted and stretched by known amounts, an image shows shifted and
+// stretched edges.
+func TestEdgesFollowTheImage(t *testing.T) {
+	v, _ := viewOf(t, diskScene(40, 800))
+	plate, err := v.Render(context.Background(), raytrace.Options{Layers: []raytrace.Layer{raytrace.Radius}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	pixel := v.Field.Pitch()
+	angles := []float64{0, math.Pi}
+	measured := func(f raytrace.Field) []Edge {
+		w := *v
+		w.Field = f
+		edges, err := Edges(context.Background(), &w, angles, plate)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return edges
+	}
+	was := measured(v.Field)
+	const shift, stretch = 0.3, 1.01
+	moved := v.Field
+	moved.Center[0] += shift * pixel
+	wide := v.Field
+	wide.Width *= stretch
+	for k, e := range measured(moved) {
+		want := was[k].Measured + shift*pixel*math.Cos(e.ScreenAngle)
+		near(t, fmt.Sprintf("shifted, order %d, s %.2f", e.Order, e.ScreenAngle), e.Measured, want, pixel/10)
+	}
+	for k, e := range measured(wide) {
+		near(t, fmt.Sprintf("stretched, order %d", e.Order), e.Measured, was[k].Measured*stretch, pixel/10)
+	}
+}

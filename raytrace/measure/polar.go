@@ -104,7 +104,7 @@ func newSampler(ctx context.Context, v *raytrace.View, delay bool, o Options) (*
 }
 
 // dims says whether a disk takes light from what lies behind it.
-func dims(d *emit.Disk) bool { return d.Thick }
+func dims(d *emit.Disk) bool { return d.Depth != 0 }
 
 // lineAngles are the screen angles between lines: half of them even around,
 // half even in the azimuth of a flat disk so tilted, where edge-on images
@@ -277,18 +277,10 @@ func (w *lineWorker) look(k int, p *patch, disk, order int) {
 		}
 		for e := range w.lights {
 			if l := &w.lights[e]; int(j) < len(l.Lit) && l.Lit[j] {
-				passes *= passed(l, j)
+				passes *= l.Passes[j]
 			}
 		}
 	}
-}
-
-// passed is the share of the light from behind that a crossing lets through.
-func passed(l *emit.Light, j int32) float64 {
-	if l.Opaque[j] {
-		return 0
-	}
-	return 1
 }
 
 // slopes fills in how g changes across patches.

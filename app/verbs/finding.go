@@ -1,0 +1,204 @@
+package verbs
+
+import (
+	"bytes"
+	"encoding/json"
+	"io"
+	"path/filepath"
+	"slices"
+	"strings"
+
+	"github.com/spf13/cobra"
+
+	"annulet/app/output"
+	"annulet/raytrace"
+	"annulet/raytrace/measure"
+	"annulet/scenes"
+)
+
+// finding is what a measuring verb has found.
+type finding struct {
+	table output.Table
+	// fields are those of the JSON document before the units; without any
+	// the rows of the table are its "rows".
+	fields []field
+}
+
+// field is one of a JSON document, in its order.
+type field struct {
+	name  string
+	value any
+}
+
+// measuring is what the flags of every measuring verb say.
+type measuring struct {
+	set, out []string
+	json     bool
+	workers  int
+}
+
+const tableFormats = ".csv, .ecsv, .json"
+
+// addMeasuring adds the flags that measuring verbs share.
+func addMeasuring(cmd *cobra.Command, m *measuring) {
+	f := cmd.Flags()
+	addSet(f, &m.set)
+	f.StringArrayVarP(&m.out, "output", "o", nil, "`FILE` to write: "+tableFormats+"; repeatable")
+	f.BoolVar(&m.json, "json", false, "print one JSON document on stdout")
+	f.IntVar(&m.workers, "workers", 0, "threads; 0 means one a processor")
+}
+
+// measured is a scene made ready to be measured.
+type measured struct {
+	document *scenes.Document
+	scene    scenes.Scene
+	view     *raytrace.View
+	options  measure.Options
+}
+
+// open loads the scene and refuses what cannot be done, before any work.
+func (m measuring) open(s streams, scenePath string) (*measured, error) {
+	if err := checkWorkers(m.workers); err != nil {
+		return nil, err
+	}
+	var seen []string
+	for _, path := range m.out {
+		if !slices.Contains(strings.Split(tableFormats, ", "), strings.ToLower(filepath.Ext(path))) {
+			return nil, refuse("-o %s: extension %q is not that of a table; allowed: %s", path, filepath.Ext(path), tableFormats)
+		}
+		clean := filepath.Clean(path)
+		if slices.Contains(seen, clean) {
+			return nil, refuse("-o %s comes twice", path)
+		}
+		seen = append(seen, clean)
+		if same(path, scenePath) {
+			return nil, refuse("-o %s would overwrite the scene", path)
+		}
+		if err := checkWritable(path); err != nil {
+			return nil, err
+		}
+	}
+	d, err := loadScene(scenePath, m.set)
+	if err != nil {
+		return nil, err
+	}
+	scene := d.Scene()
+	for _, n := range scene.Notes() {
+		s.note("%s", n)
+	}
+	view, err := raytrace.NewViewIn(scene, d.Dir())
+	if err != nil {
+		return nil, usage{err}
+	}
+	return &measured{d, scene, view, measure.Options{Workers: m.workers}}, nil
+}
+
+// deliver writes the files, then prints.
+func (m measuring) deliver(cmd *cobra.Command, s streams, of *measured, f finding) error {
+	p := output.NewProvenance(of.document, Version, nil)
+	document := func(w io.Writer) error { return writeJSON(w, f.document(p)) }
+	for _, path := range m.out {
+		fill := document
+		switch strings.ToLower(filepath.Ext(path)) {
+		case ".csv":
+			fill = func(w io.Writer) error { return f.table.WriteCSV(w, p) }
+		case ".ecsv":
+			fill = func(w io.Writer) error { return f.table.WriteECSV(w, p) }
+		}
+		if err := writeFile(cmd.Context(), path, fill); err != nil {
+			return err
+		}
+	}
+	if m.json {
+		return document(s.out)
+	}
+	if err := f.table.WriteRows(s.out); err != nil {
+		return err
+	}
+	s.note("%s", notIncludedLine)
+	return nil
+}
+
+// document is the JSON of a finding, its keys in order.
+func (f finding) document(p output.Provenance) ordered {
+	fields := f.fields
+	if fields == nil {
+		fields = []field{{"rows", rowsOf(f.table)}}
+	}
+	units := ordered{}
+	for _, c := range f.table.Columns {
+		unit := c.Unit
+		if unit == "" && c.Kind != output.Text {
+			unit = "1"
+		}
+		if unit != "" {
+			units = append(units, field{c.Name, unit})
+		}
+	}
+	all := ordered{}
+	if !slices.ContainsFunc(fields, func(f field) bool { return f.name == "units" }) {
+		all = append(all, field{"units", units})
+	}
+	all = append(all, fields...)
+	return append(all, field{"numerics", p}, field{"not_included", notIncluded})
+}
+
+// rowsOf turns a table into JSON objects.
+func rowsOf(t output.Table) []ordered {
+	rows := make([]ordered, len(t.Rows))
+	for n, cells := range t.Rows {
+		for k, c := range t.Columns {
+			cell := cells[k]
+			if x, ok := cell.(float64); ok {
+				cell = number(x)
+			}
+			rows[n] = append(rows[n], field{c.Name, cell})
+		}
+	}
+	return rows
+}
+
+// ordered is a JSON object whose keys keep their order.
+type ordered []field
+
+// MarshalJSON implements json.Marshaler.
+func (o ordered) MarshalJSON() ([]byte, error) {
+	var text bytes.Buffer
+	text.WriteByte('{')
+	for k, f := range o {
+		if k > 0 {
+			text.WriteByte(',')
+		}
+		name, err := json.Marshal(f.name)
+		if err != nil {
+			return nil, err
+		}
+		value := new(bytes.Buffer)
+		encoder := json.NewEncoder(value)
+		encoder.SetEscapeHTML(false)
+		if err := encoder.Encode(f.value); err != nil {
+			return nil, err
+		}
+		text.Write(name)
+		text.WriteByte(':')
+		text.Write(bytes.TrimSpace(value.Bytes()))
+	}
+	text.WriteByte('}')
+	return text.Bytes(), nil
+}
+
+// scaleOf says what M is, where the scene tells; null where not.
+func scaleOf(s scenes.Scene) ordered {
+	orNull := func(x float64, ok bool) any {
+		if !ok {
+			return nil
+		}
+		return number(x)
+	}
+	uas, angular := s.ThetaG()
+	metres, long := s.MetresPerM()
+	seconds, timed := s.SecondsPerM()
+	return ordered{
+		{"theta_g_uas", orNull(uas, angular)}, {"M_in_km", orNull(metres/1000, long)}, {"M_in_s", orNull(seconds, timed)},
+	}
+}

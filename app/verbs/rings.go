@@ -1,0 +1,225 @@
+package verbs
+
+import (
+	"math"
+
+	"github.com/spf13/cobra"
+
+	"annulet/app/output"
+	"annulet/raytrace"
+	"annulet/raytrace/measure"
+	"annulet/scenes"
+)
+
+func newRings(s streams) *cobra.Command {
+	var m measuring
+	var angles []string
+	var which string
+	cmd := &cobra.Command{
+		Use:   "rings SCENE",
+		Short: "measure the critical curve and the image orders of the disks",
+		Long: "Prints, for every image order of every disk, diameters, width, area, flux and\n" +
+			"flux-weighted delay; and for screen angles (degrees counter-clockwise from right)\n" +
+			"where the images of the rims lie: rooted on traced paths, by closed form, and read\n" +
+			"off the image with a bound. Lengths are in M; fluxes are integrals over the whole\n" +
+			"image in M^2 (sr on an angular field), whatever the field shows. Width at 0 deg;\n" +
+			"diameter_horizontal is 2 max|alpha|.",
+		Example: "  " + programName() + " rings @first-light --json\n" +
+			"  " + programName() + " rings scene.toml --at-angle 0 --at-angle 90 --table edges -o edges.ecsv",
+		Args: takes(1, "one SCENE"),
+		RunE: func(cmd *cobra.Command, args []string) error { return rings(cmd, s, m, angles, which, args[0]) },
+	}
+	addMeasuring(cmd, &m)
+	cmd.Flags().StringArrayVar(&angles, "at-angle", nil, "screen angle `DEG` of edges; repeatable (default 0, 90, 180, 270)")
+	cmd.Flags().StringVar(&which, "table", "rings", "of CSV and ECSV: rings or edges; JSON holds both")
+	return cmd
+}
+
+func rings(cmd *cobra.Command, s streams, m measuring, texts []string, which, scenePath string) error {
+	if which != "rings" && which != "edges" {
+		return refuse("--table %q: allowed: rings, edges", which)
+	}
+	if len(texts) == 0 {
+		texts = []string{"0", "90", "180", "270"}
+	}
+	degrees := make([]float64, len(texts))
+	angles := make([]float64, len(texts))
+	for k, text := range texts {
+		var err error
+		if degrees[k], err = parseFinite(text); err != nil {
+			return refuse("--at-angle %q: %w", text, err)
+		}
+		angles[k] = math.Remainder(degrees[k], 360) * math.Pi / 180
+	}
+	of, err := m.open(s, scenePath)
+	if err != nil {
+		return err
+	}
+	plate, err := of.view.Render(cmd.Context(), raytrace.Options{Workers: m.workers, Layers: []raytrace.Layer{raytrace.Radius}})
+	if err != nil {
+		return err
+	}
+	table, err := measure.NewRings(cmd.Context(), of.view, plate, of.options)
+	if err != nil {
+		return err
+	}
+	edges, err := measure.Edges(cmd.Context(), of.view, angles, plate)
+	if err != nil {
+		return err
+	}
+	ringTable := ringTable(table, of)
+	edgeTable := edgeTable(edges, degrees, of.scene)
+	f := finding{table: ringTable}
+	if which == "edges" {
+		f.table = edgeTable
+	}
+	f.fields = []field{
+		{"units", ringUnits(ringTable, edgeTable)},
+		{"scale", scaleOf(of.scene)},
+		{"critical", ordered{
+			{"b", number(table.Critical)}, {"closed_form", number(table.CriticalClosed)},
+			{"difference", number(table.Critical - table.CriticalClosed)}, {"lyapunov", number(table.Lyapunov)},
+		}},
+		{"edges", rowsOf(edgeTable)},
+		{"rings", ringObjects(ringTable)},
+		{"inner_shadow", innerShadow(table, of.scene)},
+		{"flux", number(table.Flux)}, {"flux_bound", number(table.Bound)}, {"flux_outside_field", number(table.Outside)},
+	}
+	return m.deliver(cmd, s, of, f)
+}
+
+// innerShadow is the outline of the direct image of the horizon, where a disk
+// reaches it: Chael, Johnson & Lupsasca, ApJ 918, 6 (2021), from memory.
+func innerShadow(t *measure.Rings, scene scenes.Scene) any {
+	for _, r := range t.Rings {
+		if e := scene.Emitters[r.Emitter]; r.Order == 0 && e.Inner.Name == "horizon" {
+			return ordered{
+				{"diameter_horizontal", number(r.Inner.Horizontal)}, {"diameter_vertical", number(r.Inner.Vertical)},
+				{"mean_radius", number(r.Inner.MeanRadius)}, {"offset", number(r.Inner.Offset)},
+			}
+		}
+	}
+	return nil
+}
+
+// areaUnit is that of areas on the screen.
+func areaUnit(v *raytrace.View) string {
+	if v.Field.IsParallel() {
+		return "M2"
+	}
+	return "sr"
+}
+
+// ringTable has one row an order, the rims' outlines in columns.
+func ringTable(t *measure.Rings, of *measured) output.Table {
+	area := areaUnit(of.view)
+	columns := []output.Column{
+		{Name: "emitter", Kind: output.Int, Text: "number in the scene, from 1"}, {Name: "order", Kind: output.Int},
+		{Name: "flux", Unit: area, Text: "integral of the intensity"}, {Name: "flux_bound", Unit: area}, {Name: "flux_fraction"}, {Name: "flux_outside_field", Unit: area},
+		{Name: "area", Unit: area}, {Name: "int_g3", Unit: area}, {Name: "int_g4", Unit: area},
+		{Name: "mean_delay", Unit: "M", Text: "flux-weighted"}, {Name: "width", Unit: "M", Text: "at screen angle 0"}, {Name: "width_ratio"}, {Name: "flux_ratio"},
+	}
+	theta, angular := of.scene.ThetaG()
+	angular = angular && of.view.Field.IsParallel() && math.IsInf(of.view.Observer.Radius, 1)
+	for _, rim := range []string{"inner", "outer"} {
+		for _, name := range outlineNames {
+			columns = append(columns, output.Column{Name: rim + "_" + name, Unit: "M"})
+		}
+		if angular {
+			columns = append(columns, output.Column{Name: rim + "_diameter_horizontal_uas", Unit: "uas"}, output.Column{Name: rim + "_diameter_vertical_uas", Unit: "uas"})
+		}
+	}
+	table := output.Table{Columns: columns}
+	for _, r := range t.Rings {
+		row := []any{
+			r.Emitter + 1, r.Order, r.Flux, r.FluxBound, r.Fraction, r.Outside, r.Area, r.IntG3, r.IntG4,
+			r.MeanDelay, r.Width, r.WidthRatio, r.FluxRatio,
+		}
+		for _, o := range []measure.Outline{r.Inner, r.Outer} {
+			row = append(row, o.Horizontal, o.Vertical, o.MeanRadius, o.Offset,
+				o.MeasuredHorizontal, o.MeasuredHorizontalBound, o.MeasuredVertical, o.MeasuredVerticalBound)
+			if angular {
+				row = append(row, o.Horizontal*theta, o.Vertical*theta)
+			}
+		}
+		table.Rows = append(table.Rows, row)
+	}
+	return table
+}
+
+var outlineNames = []string{
+	"diameter_horizontal", "diameter_vertical", "mean_radius", "offset",
+	"measured_diameter_horizontal", "measured_diameter_horizontal_bound", "measured_diameter_vertical", "measured_diameter_vertical_bound",
+}
+
+// ringObjects gathers the columns of each rim into one object.
+func ringObjects(t output.Table) []ordered {
+	rows := rowsOf(t)
+	for k, row := range rows {
+		nested := ordered{}
+		rims := map[string]*ordered{"inner_": {}, "outer_": {}}
+		for _, f := range row {
+			prefix := f.name[:min(len("inner_"), len(f.name))]
+			if rim := rims[prefix]; rim != nil {
+				*rim = append(*rim, field{f.name[len(prefix):], f.value})
+				continue
+			}
+			nested = append(nested, f)
+		}
+		rows[k] = append(nested, field{"inner", *rims["inner_"]}, field{"outer", *rims["outer_"]})
+	}
+	return rows
+}
+
+func edgeTable(edges []measure.Edge, degrees []float64, scene scenes.Scene) output.Table {
+	t := output.Table{Columns: []output.Column{
+		{Name: "emitter", Kind: output.Int, Text: "number in the scene, from 1"}, {Name: "order", Kind: output.Int},
+		{Name: "at_angle_deg", Unit: "deg", Text: "on the screen, counter-clockwise from right"},
+		{Name: "position_angle_deg", Unit: "deg", Text: "from north through east"},
+		{Name: "edge", Kind: output.Text, Text: "image of the inner or outer rim"},
+		{Name: "b", Unit: "M", Text: "rooted on traced paths"}, {Name: "closed_form_b", Unit: "M"},
+		{Name: "measured_b", Unit: "M", Text: "read off the image"}, {Name: "measured_b_bound", Unit: "M"},
+	}}
+	for k, e := range edges {
+		name := "inner"
+		if e.Outer {
+			name = "outer"
+		}
+		at := degrees[k/2%len(degrees)]
+		t.Rows = append(t.Rows, []any{
+			e.Emitter + 1, e.Order, at, positionAngle(at, scene), name, e.Impact, e.Closed, e.Measured, e.MeasuredBound,
+		})
+	}
+	return t
+}
+
+// positionAngle of a screen angle, degrees in [0, 360): up is the disk axis.
+func positionAngle(screenDeg float64, scene scenes.Scene) float64 {
+	angle := math.Mod(scene.Observer.PositionAngle+screenDeg-90, 360)
+	if angle < 0 {
+		angle += 360
+	}
+	return angle
+}
+
+// ringUnits are those of everything in the document.
+func ringUnits(tables ...output.Table) map[string]string {
+	units := map[string]string{"critical": "M", "lyapunov": "1", "inner_shadow": "M"}
+	for _, t := range tables {
+		for _, c := range t.Columns {
+			switch {
+			case c.Unit != "":
+				units[c.Name] = c.Unit
+			case c.Kind != output.Text:
+				units[c.Name] = "1"
+			}
+		}
+	}
+	for _, name := range outlineNames {
+		units[name] = "M"
+	}
+	if _, ok := units["inner_diameter_horizontal_uas"]; ok {
+		units["diameter_horizontal_uas"], units["diameter_vertical_uas"] = "uas", "uas"
+	}
+	return units
+}
