@@ -8,7 +8,6 @@ import (
 
 	"annulet/geodesic"
 	"annulet/raytrace/emit"
-	"annulet/raytrace/measure"
 	"annulet/scenes"
 )
 
@@ -251,37 +250,6 @@ func TestEinsteinRing(t *testing.T) {
 			}
 		}
 		near(t, fmt.Sprintf("Einstein ring at %g M, in pixels", r), moment/sum/v.Field.Pitch(), ring/v.Field.Pitch(), 0.1)
-	}
-}
-
-// A star's flux is its own times magnification times g⁴ whatever the size of
-// the pixels: on the plate, and root-found on paths.
-func TestStarFlux(t *testing.T) {
-	for _, c := range []struct{ offset, tolerance float64 }{{0.3, 0.01}, {0.12, 0.03}, {1.2, 0.01}} {
-		s := skyScene("black-hole", 0, 30, "static", "grid", 0)
-		s.Observer.Inclination, s.Observer.Azimuth = 90, 0
-		s.Trace.MaxOrder = 1
-		const flux = 2.5
-		hole, err := geodesic.NewHole(0)
-		if err != nil {
-			t.Fatal(err)
-		}
-		images, _, err := measure.Magnification(hole, geodesic.Observer{Radius: 30}, c.offset, 0)
-		if err != nil || len(images) != 1 {
-			t.Fatal(images, err)
-		}
-		want := flux * images[0].Magnification * math.Pow(images[0].G, 4)
-		for _, pixels := range []int{60, 133, 400} {
-			s.Field = scenes.Field{Projection: "perspective", Width: 14, Center: [2]float64{images[0].Angle * 180 / math.Pi, 0.3}, Pixels: [2]int{pixels, pixels}}
-			v := view(t, s)
-			v.Emitters = []Emitter{straightBehind(v, c.offset, flux)}
-			p := render(t, v, Options{})
-			got := 0.0
-			for k, x := range p.Layer(Intensity, 0) {
-				got += float64(x) * v.Field.SolidAngle(k%p.Columns, k/p.Columns)
-			}
-			near(t, fmt.Sprintf("flux at offset %g in %d pixels", c.offset, pixels), got/want, 1, c.tolerance)
-		}
 	}
 }
 
