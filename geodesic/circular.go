@@ -101,6 +101,26 @@ func (g Gas) At(r float64) Velocity {
 	return v
 }
 
+// Lapse returns √-g_tt at r, M.
+func (g Gas) Lapse(r float64) float64 { return g.object.Lapse(r) }
+
+// AreaElement returns the proper area of gas, in its own frame, per dr dφ
+// of the disk plane at r, M: u^t r √(-g_tt g_rr), which outside the object is
+// u^t r for gas that circles, plunges or rests. It is the density of gas
+// elements: each is counted once at one t. Cunningham, ApJ 202, 788 (1975),
+// from memory.
+//
+// A volume between gas elements is u^μ dΣ_μ, at fixed t u^t √-g d³x, the
+// proper height along the normal and √-g = √(-g_tt g_rr) r.
+func (g Gas) AreaElement(r float64) float64 {
+	s := g.object
+	stretch := 1.0
+	if s.inside != nil && r*s.edge < 1 {
+		stretch = s.inside.Lapse(r) * s.inside.Ruler(r)
+	}
+	return g.At(r).UT * r * stretch
+}
+
 // RedshiftFactor returns g = ν_obs/ν_em of light that leaves the gas at r
 // towards the observer. gObs is ν_obs/E, lambda = Lz/E in M, kr = k^r/E of
 // the light as it leaves (> 0 outward); sense is +1 for counter-clockwise

@@ -94,6 +94,15 @@ func (s *Round) Edge() float64 { return 1 / s.edge }
 // Opaque says whether paths end where they meet the edge.
 func (s *Round) Opaque() bool { return s.inside == nil }
 
+// DarkImpact returns the impact parameter, M, below which paths from infinity
+// end on an opaque object: b_c, or that of the path that grazes it.
+func (s *Round) DarkImpact() float64 {
+	if r := s.Edge(); r > s.PhotonSphere() {
+		return r / math.Sqrt(s.lapse2(s.edge))
+	}
+	return s.CriticalImpact()
+}
+
 // lapse2 is A at inverse radius u in the exterior.
 func (s *Round) lapse2(u float64) float64 { return 1 - u*(2-s.charge2*u) }
 

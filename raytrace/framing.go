@@ -29,7 +29,8 @@ const (
 func autoWidth(v *View, object *geodesic.Round) (float64, error) {
 	f, o := v.Field, v.Observer
 	var half float64
-	plain := o.Motion == geodesic.Static && object.PhotonSphere() == geodesic.PhotonSphere && o.Radius > max(geodesic.PhotonSphere, object.Edge())
+	_, bent := v.Spacetime.(*geodesic.Round)
+	plain := bent && o.Motion == geodesic.Static && object.PhotonSphere() == geodesic.PhotonSphere && o.Radius > max(geodesic.PhotonSphere, object.Edge())
 	if plain {
 		half = exactReach(v, object)
 	} else {
@@ -86,10 +87,10 @@ func exactReach(v *View, object *geodesic.Round) (half float64) {
 		for k := range framingAngles {
 			sinS, cosS := math.Sincos(2 * math.Pi * float64(k) / framingAngles)
 			switch e := e.(type) {
-			case *emit.Disk:
+			case *emit.Disk, *emit.Spot:
 				for n := range v.Plan.MaxOrder + 1 {
 					psi := geodesic.FirstPlaneAngle(sinI, cosI, sinS) + float64(n)*math.Pi
-					rim := size(geodesic.RimImpact(1/o.Radius, psi, e.Outer))
+					rim := size(geodesic.RimImpact(1/o.Radius, psi, outerRim(e)))
 					half = max(half, f.reach(rim*cosS, rim*sinS))
 				}
 			case *emit.Surface: // its limb; inside 3 M light circles the photon sphere first
@@ -101,6 +102,17 @@ func exactReach(v *View, object *geodesic.Round) (half float64) {
 	return half
 }
 
+// outerRim is the largest radius, M, of what shines in the disk plane.
+func outerRim(e Emitter) float64 {
+	switch e := e.(type) {
+	case *emit.Disk:
+		return e.Outer
+	case *emit.Spot:
+		return e.Outer()
+	}
+	return 0
+}
+
 // probedReach is the reach of everything but the sky that shines, by tracing
 // a fan of lines of sight. Features thinner than its steps may be missed;
 // nobody sees them at that scale.
@@ -110,12 +122,12 @@ func probedReach(v *View) (half float64, err error) {
 	fan.Emitters, fan.Plan.Sky = nil, false
 	far := math.Tan(widestPerspective / 2)
 	for _, e := range v.Emitters {
-		switch e := e.(type) {
+		switch e.(type) {
 		case *emit.Sky:
 			continue
-		case *emit.Disk:
+		case *emit.Disk, *emit.Spot:
 			if v.Field.IsParallel() {
-				far = max(far, 2*e.Outer+4*geodesic.CriticalImpact)
+				far = max(far, 2*outerRim(e)+4*geodesic.CriticalImpact)
 			}
 		}
 		fan.Emitters = append(fan.Emitters, e)

@@ -25,7 +25,7 @@ func scene(inclination, inner float64, pixels int) scenes.Scene {
 		Field:    scenes.Field{Projection: "parallel", AutoWidth: true, Pixels: [2]int{pixels, pixels}},
 		Emitters: []scenes.Emitter{{
 			Kind: "disk", Inner: scenes.Rim{Radius: inner}, Outer: 20,
-			Gas: "circular", Profile: "power", Index: 3, Light: "bolometric",
+			Gas: "circular", Profile: "power", Index: []float64{3}, Light: "bolometric",
 		}},
 		Trace: scenes.Trace{Tolerance: 1e-9, MaxOrder: 2},
 	}

@@ -78,7 +78,7 @@ func TestTraceOnceShadeMany(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	s.Emitters[0].Index, s.Emitters[0].Inner.Radius, s.Emitters[0].Outer = 2, 3, 17
+	s.Emitters[0].Index, s.Emitters[0].Inner.Radius, s.Emitters[0].Outer = []float64{2}, 3, 17
 	s.Emitters[0].Clockwise, s.Emitters[0].EmissionAngle = true, "darkened"
 	other := view(t, s)
 	other.Follow(v)

@@ -262,7 +262,7 @@ func TestDiskWiring(t *testing.T) {
 	s := scene(50, 4, 8)
 	s.Emitters[0].Gas = "static"
 	s.Emitters[0].EmissionAngle = "darkened"
-	s.Emitters[0].Index = 0
+	s.Emitters[0].Index = []float64{0}
 	readings, err := view(t, s).Probe(context.Background(), [][2]float64{{7, 2}, {-7, 2}})
 	if err != nil || len(readings) < 2 {
 		t.Fatal(readings, err)

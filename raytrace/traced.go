@@ -93,5 +93,9 @@ func sameSpacetime(a, b geodesic.Spacetime) bool {
 		y, ok := b.(*geodesic.Round)
 		return ok && x.Same(y)
 	}
+	if x, ok := a.(geodesic.Straight); ok {
+		y, ok := b.(geodesic.Straight)
+		return ok && x.Same(y)
+	}
 	return a == b
 }

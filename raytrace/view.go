@@ -11,6 +11,8 @@ import (
 
 // View is a scene made ready to trace.
 type View struct {
+	scene     scenes.Scene // that it was made of; empty for a view made by hand
+	frequency int          // which of the scene's frequencies it shows
 	Spacetime geodesic.Spacetime
 	Observer  geodesic.Observer
 	Field     Field
@@ -42,19 +44,24 @@ func NewViewIn(s scenes.Scene, folder string) (*View, error) {
 		return nil, fmt.Errorf("raytrace: %w", err)
 	}
 	v := &View{
+		scene:     s,
 		Spacetime: object, Observer: observer, Field: field,
 		Plan:   geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
 		Orbits: new(Orbits),
 	}
-	for i, e := range s.Emitters {
-		shining, err := newEmitter(e, s.Object, object, folder)
+	if s.Trace.NoBending {
+		v.Spacetime = geodesic.NewStraight(object)
+	}
+	light := newLighting(s, object, folder)
+	for i := range s.Emitters {
+		shining, err := light.emitter(i)
 		if err != nil {
 			return nil, fmt.Errorf("raytrace: emitter %d: %w", i+1, err)
 		}
-		switch e := shining.(type) {
-		case *emit.Disk:
+		switch shining.(type) {
+		case *emit.Disk, *emit.Spot:
 			v.Plan.Plane = true
-			v.Plan.Reach = max(v.Plan.Reach, e.Outer)
+			v.Plan.Reach = max(v.Plan.Reach, outerRim(shining))
 		case *emit.Sky:
 			v.Plan.Sky = true
 		}

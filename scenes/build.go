@@ -26,6 +26,9 @@ func build(src *source, readings map[address]reading) (Scene, *Error) {
 	for i := range src.count("emitter") {
 		b.emitter(i)
 	}
+	b.spots()
+	b.radiances()
+	b.time()
 	b.telescope()
 	b.measured()
 	b.trace()
@@ -108,8 +111,6 @@ func (b *builder) inRange(r reading, q quantity, x float64, limit Range, unitNam
 			problem += ": " + k.Why
 		}
 		b.fail(r, q.span, Error{Problem: problem, Allowed: allowed})
-	case k.OnlyZero && x != 0:
-		b.fail(r, q.span, Error{Problem: "other than 0 is " + notInVersion, Allowed: "0", Later: true})
 	}
 }
 
@@ -221,7 +222,13 @@ func (b *builder) trace() {
 			b.failAt(effects, Error{Problem: "named twice: " + word, Allowed: effects.key.Allowed()})
 		}
 	}
-	if len(effects.words) < len(allEffects) {
-		b.failAt(effects, Error{Problem: effects.key.LaterForm + " is " + notInVersion, Allowed: "all of " + effects.key.Default, Later: true})
+	without := func(effect string) bool { return !slices.Contains(effects.words, effect) }
+	t := &b.scene.Trace
+	t.NoBending, t.NoGravity, t.NoMotion = without(bending), without(gravity), without(motion)
+	switch o := b.scene.Observer; {
+	case t.NoBending && o.Motion != "static":
+		b.failAt(effects, Error{Problem: "without bending the observer must be at rest", Allowed: `observer.motion = "static", or bending among the effects`})
+	case t.NoGravity && o.Radius <= b.scene.Object.Horizon():
+		b.failAt(effects, Error{Problem: "an observer inside the horizon sees no light without gravity", Allowed: "observer.radius of more than " + formatNumber(b.scene.Object.Horizon()) + " M, or gravity among the effects"})
 	}
 }

@@ -123,9 +123,6 @@ func checkTable(t table) *Error {
 // read checks one value against its key, all but the range.
 func read(k Key, v value) (reading, *fault) {
 	r := reading{key: k, at: v.span}
-	if slices.Contains(k.laterKinds, v.kind) {
-		return r, &fault{at: v.span, problem: k.LaterForm + " is " + notInVersion, allowed: k.Allowed(), later: true}
-	}
 	wrongType := &fault{at: v.span, problem: "wrong type, " + v.kind.String(), allowed: k.Allowed()}
 	switch k.Type {
 	case Text:
@@ -163,7 +160,7 @@ func read(k Key, v value) (reading, *fault) {
 		return r, r.readNumber(v)
 	case Number, Integer:
 		return r, r.readNumber(v)
-	case IntegerList, QuantityList:
+	case NumberList, IntegerList, QuantityList:
 		items := v.items
 		if k.Count == 0 && v.kind != kindList {
 			items = []value{v}
@@ -254,15 +251,14 @@ func (k Key) allowedNumber() string {
 	switch {
 	case k.Type == IntegerList:
 		what = "a list of " + formatNumber(float64(k.Count)) + " whole numbers"
+	case k.Type == NumberList:
+		what = "a number or a list of up to " + formatNumber(maxItems)
 	case k.Type == QuantityList && k.Count == 0:
 		what = "a quantity or a list of up to " + formatNumber(maxItems)
 	case k.Type == QuantityList:
 		what = "a list of " + formatNumber(float64(k.Count)) + " quantities"
 	}
 	limit := k.Range.In(k.Unit)
-	if k.OnlyZero {
-		limit = "0"
-	}
 	if k.Type == IntegerList {
 		limit = "each " + limit
 	}

@@ -8,15 +8,15 @@ func (b *builder) disk(e *Emitter, get func(string) reading) {
 		outer = outer.limited(b.scene.Object.outerLimit())
 	}
 	e.Outer = b.length(outer, 0)
-	e.Clockwise = get("sense").word == "clockwise"
+	e.Clockwise = get("sense").word == clockwise
 	e.Gas = get("gas").word
-	e.Profile = get("profile").word
-	e.Index = b.number(get("index"), 0)
 	e.OpticalDepth = b.opticalDepth(get("optical_depth"))
 	e.EmissionAngle = get("emission_angle").word
 	e.Inner = b.innerRim(get("inner"), e.Gas)
 	b.circles(get("inner"), *e)
 	b.rims(get("inner"), outer, *e)
+	b.profile(e, get)
+	b.shines(e, get)
 }
 
 // outerLimit returns where a disk may end outwards, in M, and why not

@@ -10,6 +10,7 @@ const (
 	disk    = "disk"
 	surface = "surface"
 	sky     = "sky"
+	spot    = "spot"
 )
 
 func (b *builder) emitter(index int) {
@@ -21,9 +22,15 @@ func (b *builder) emitter(index int) {
 		Light:         get("light").word,
 		SpectralIndex: b.number(get("spectral_index"), 0),
 	}
+	b.lights(e, get)
+	if rest := get("rest"); rest.given {
+		e.Rest = b.plain(rest, 0)
+	}
 	switch e.Kind {
 	case disk:
 		b.disk(&e, get)
+	case spot:
+		b.spot(&e, get)
 	case surface:
 		b.alone(kind)
 		b.surface(&e, get)

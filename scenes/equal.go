@@ -20,6 +20,7 @@ func (s Scene) Equal(other Scene) bool {
 		slices.EqualFunc(s.Emitters, other.Emitters, func(a, b Emitter) bool { return reflect.DeepEqual(a, b) }) &&
 		s.Telescope == other.Telescope &&
 		s.Measured == other.Measured &&
+		s.Time == other.Time &&
 		s.Trace == other.Trace
 }
 
@@ -27,7 +28,8 @@ func (s Scene) Equal(other Scene) bool {
 func (s Scene) clone() Scene {
 	s.Emitters = slices.Clone(s.Emitters)
 	for i := range s.Emitters {
-		s.Emitters[i].Caps = slices.Clone(s.Emitters[i].Caps)
+		e := &s.Emitters[i]
+		e.Caps, e.Index, e.Breaks = slices.Clone(e.Caps), slices.Clone(e.Index), slices.Clone(e.Breaks)
 	}
 	s.Field.Frequency = slices.Clone(s.Field.Frequency)
 	return s

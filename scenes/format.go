@@ -71,6 +71,13 @@ func Format(s Scene) []byte {
 		w.emitter(e)
 	}
 
+	w.header("[time]")
+	w.quantity("start", s.Time.Start, "M")
+	w.quantity("end", s.Time.End, "M")
+	if s.Time.Step > 0 {
+		w.quantity("step", s.Time.Step, "M")
+	}
+
 	if s.Telescope.GivenBeam {
 		beam := s.Telescope.Beam
 		w.header("[telescope]")
@@ -89,7 +96,7 @@ func Format(s Scene) []byte {
 	w.key("tolerance", tomlNumber(s.Trace.Tolerance))
 	w.key("max_order", strconv.Itoa(s.Trace.MaxOrder))
 	w.key("flux_tolerance", tomlNumber(s.Trace.FluxTolerance))
-	w.list("effects", allEffects)
+	w.list("effects", s.Trace.effects())
 	w.Flush()
 	return b.Bytes()
 }
@@ -132,13 +139,20 @@ func (w writer) emitter(e Emitter) {
 	switch e.Kind {
 	case disk:
 		w.disk(e)
+	case spot:
+		w.spot(e)
 	case surface:
 		w.surface(e)
 	case sky:
 		w.sky(e)
 	}
-	w.key("light", quote(e.Light))
-	w.key("spectral_index", tomlNumber(e.SpectralIndex))
+	if e.Light != "" { // a spot on a disk shines like the disk
+		w.key("light", quote(e.Light))
+		w.key("spectral_index", tomlNumber(e.SpectralIndex))
+	}
+	if e.Rest > 0 {
+		w.key("rest", quote(formatQuantity(e.Rest, 0, "keV", "Hz")))
+	}
 }
 
 func (w writer) disk(e Emitter) {
@@ -151,15 +165,31 @@ func (w writer) disk(e Emitter) {
 	w.key("sense", quote(pick(e.Clockwise, "clockwise", "counter-clockwise")))
 	w.key("gas", quote(e.Gas))
 	w.key("profile", quote(e.Profile))
-	w.key("index", tomlNumber(e.Index))
+	if len(e.Index) > 0 {
+		w.key("index", formatNumbers(e.Index))
+	}
+	if len(e.Breaks) > 0 {
+		var breaks []string
+		for _, r := range e.Breaks {
+			breaks = append(breaks, formatQuantity(r, 0, "M"))
+		}
+		w.list("breaks", breaks)
+	}
+	if e.Table != "" {
+		w.key("table", quote(e.Table))
+	}
+	if e.TotalFlux > 0 {
+		w.quantity("total_flux", e.TotalFlux, "Jy")
+	}
+	w.rate("luminosity", e.Luminosity)
+	w.rate("accretion_rate", e.AccretionRate)
+	w.thermal(e)
 	w.key("optical_depth", formatDepth(e.OpticalDepth))
 	w.key("emission_angle", quote(e.EmissionAngle))
 }
 
 func (w writer) surface(e Emitter) {
-	if e.Temperature > 0 {
-		w.quantity("temperature", e.Temperature, "K")
-	}
+	w.thermal(e)
 	if e.Period > 0 {
 		w.quantity("period", e.Period, "M")
 	}
@@ -224,4 +254,56 @@ func formatDepth(depth float64) string {
 		return quote("thick")
 	}
 	return tomlNumber(depth)
+}
+
+// rate writes a power or an accretion rate, or nothing when it is not given.
+func (w writer) rate(name string, r Rate) {
+	if r.Given() {
+		w.quantity(name, r.Value, r.Unit)
+	}
+}
+
+// thermal writes what a blackbody has.
+func (w writer) thermal(e Emitter) {
+	if e.Temperature > 0 {
+		w.quantity("temperature", e.Temperature, "K")
+	}
+	if e.ColourCorrection > 0 {
+		w.key("colour_correction", tomlNumber(e.ColourCorrection))
+	}
+}
+
+func (w writer) spot(e Emitter) {
+	w.quantity("radius", e.Radius, "M")
+	w.quantity("azimuth", e.Azimuth, "deg")
+	w.quantity("size", e.Size, "M")
+	w.key("contrast", tomlNumber(e.Contrast))
+	if e.Light != "" {
+		w.key("sense", quote(pick(e.Clockwise, clockwise, "counter-clockwise")))
+		w.key("emission_angle", quote(e.EmissionAngle))
+	}
+}
+
+// formatNumbers writes one number, or a list of them.
+func formatNumbers(all []float64) string {
+	var items []string
+	for _, x := range all {
+		items = append(items, tomlNumber(x))
+	}
+	if len(items) == 1 {
+		return items[0]
+	}
+	return "[" + strings.Join(items, ", ") + "]"
+}
+
+// effects are those that are not left out.
+func (t Trace) effects() []string {
+	left := map[string]bool{bending: t.NoBending, gravity: t.NoGravity, motion: t.NoMotion}
+	var all []string
+	for _, e := range allEffects {
+		if !left[e] {
+			all = append(all, e)
+		}
+	}
+	return all
 }

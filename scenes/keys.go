@@ -13,6 +13,7 @@ const (
 	Choice                   // one of Choices
 	ChoiceList               // a list of Choices
 	Number                   // a number without a unit
+	NumberList               // a number, or a list of any length
 	Integer                  // a whole number
 	IntegerList              // a list of Count whole numbers
 	Quantity                 // text with a unit, or a bare number in Unit
@@ -44,10 +45,6 @@ type Key struct {
 	// What the scene file knows and this version does not carry out:
 	Later        bool     // the key itself
 	LaterChoices []string // further choices
-	LaterForm    string   // further forms of the value, in words
-	OnlyZero     bool     // numbers other than 0
-
-	laterKinds []kind // TOML kinds of LaterForm
 }
 
 // fieldNames returns the names of the keys of an inline table.
@@ -87,13 +84,16 @@ var sections = []section{
 	{name: "emitter", text: "what shines; once for each emitter, at most " + strconv.Itoa(maxEmitters) + "; without any the image is empty", many: true},
 	{name: "telescope", text: "the instrument that the image is compared with"},
 	{name: "measured", text: "what was observed"},
-	{name: "time", text: "times of a light curve or a movie", later: true},
+	{name: "time", text: "times of a light curve or a movie"},
 	{name: "trace", text: "the numerics"},
 	{name: "figure", text: "figures for a paper", many: true, later: true},
 }
 
-// allEffects are the effects of trace.effects; leaving any out comes later.
-var allEffects = []string{"bending", "gravity", "motion"}
+// allEffects are the effects of trace.effects.
+var allEffects = []string{bending, gravity, motion}
+
+// The effects.
+const bending, gravity, motion = "bending", "gravity", "motion"
 
 // keyTable is the one table of keys, by section.
 var keyTable = slices.Concat(topKeys, objectKeys, observerKeys, fieldKeys, emitterKeys, telescopeKeys, measuredKeys, timeKeys, traceKeys)
@@ -116,8 +116,8 @@ var objectKeys = []Key{
 		Text: "mass; with it km and s may be used, with the distance also uas"},
 	{Section: "object", Name: "distance", Type: Quantity, Unit: "kpc", Units: distanceUnits, Range: above(0), Error: true,
 		Text: "angular-diameter distance"},
-	{Section: "object", Name: "redshift", Type: Number, Range: atLeast(0), OnlyZero: true,
-		Default: `0`, Text: "cosmological redshift"},
+	{Section: "object", Name: "redshift", Type: Number, Range: atLeast(0),
+		Default: `0`, Text: "cosmological redshift z of the host: observed energies are smaller by 1 + z, times longer; D_L = (1+z)^2 D"},
 	{Section: "object", Name: "theta_g", Type: Quantity, Unit: "uas", Units: skyUnits, Range: above(0), Error: true,
 		Text: "the angle GM/(c² D), instead of mass and distance"},
 }
@@ -149,47 +149,50 @@ var fieldKeys = []Key{
 }
 
 var emitterKeys = []Key{
-	{Section: "emitter", Name: "kind", Type: Choice, Choices: []string{disk, surface, sky}, LaterChoices: []string{"spot"},
+	{Section: "emitter", Name: "kind", Type: Choice, Choices: []string{disk, spot, surface, sky},
 		Default: `"disk"`, Text: "kind of emitter"},
 	{Section: "emitter", Name: "inner", Type: Quantity, Unit: "M", Units: lengthUnits, Words: []string{"isco", "horizon"}, Range: above(0), Kinds: onlyDisk,
 		Default: `"isco"`, Text: "inner rim of the disk; isco: the innermost stable circular orbit (6 M uncharged) or the object's radius, whichever is larger; horizon: 2 M uncharged"},
 	{Section: "emitter", Name: "outer", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Kinds: onlyDisk,
 		Default: `"20 M"`, Text: "outer rim of the disk"},
-	{Section: "emitter", Name: "sense", Type: Choice, Choices: []string{"counter-clockwise", "clockwise"}, Kinds: onlyDisk,
-		Default: `"counter-clockwise"`, Text: "sense in which the gas turns about the disk axis"},
+	{Section: "emitter", Name: "sense", Type: Choice, Choices: []string{"counter-clockwise", "clockwise"}, Kinds: []string{disk, spot},
+		Default: `"counter-clockwise"`, Text: "sense in which the gas turns about the disk axis; a spot on a disk has the disk's"},
 	{Section: "emitter", Name: "gas", Type: Choice, Choices: []string{"circular", "static"}, Kinds: onlyDisk,
 		Default: `"circular"`, Text: "motion of the gas; circular: plunging inside the isco of a black hole, not below 6 M around a star or shell; static: held at rest"},
-	{Section: "emitter", Name: "profile", Type: Choice, Choices: []string{"power"}, LaterChoices: []string{"novikov-thorne", "table"}, Kinds: onlyDisk,
-		Default: `"power"`, Text: "emissivity with radius; power: (r/M)^-index in the gas frame"},
-	{Section: "emitter", Name: "index", Type: Number, Range: between(-20, 20), LaterForm: "a list", laterKinds: []kind{kindList}, Kinds: onlyDisk,
-		Default: `3`, Text: "index of a power profile"},
-	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(2), Later: true,
+	{Section: "emitter", Name: "profile", Type: Choice, Choices: []string{powerLaw, novikovThorne, tabulated}, Kinds: onlyDisk,
+		Default: `"power"`, Text: "emissivity with radius in the gas frame; power: (r/M)^-index; novikov-thorne: an accretion disk without torque at the isco; table: read from a file"},
+	{Section: "emitter", Name: "index", Type: NumberList, Range: between(-20, 20), Kinds: onlyDisk,
+		Default: `3`, Text: "index of a power profile, or a list of them with breaks between"},
+	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(0), Kinds: onlyDisk,
 		Text: "radii between the indices of a broken power profile"},
-	{Section: "emitter", Name: "table", Type: Text, Later: true, Text: "CSV file of a table profile: r [M], value"},
-	{Section: "emitter", Name: "total_flux", Type: Quantity, Unit: "Jy", Units: fluxUnits, Range: above(0), Later: true,
-		Text: "flux at the first frequency that the emitter is scaled to"},
-	{Section: "emitter", Name: "luminosity", Type: Quantity, Unit: "Edd", Units: luminosityUnits, Range: above(0), Later: true,
-		Text: "luminosity of a novikov-thorne disk"},
-	{Section: "emitter", Name: "accretion_rate", Type: Quantity, Unit: "Msun/yr", Units: accretionUnits, Range: above(0), Later: true,
-		Text: "accretion rate of a novikov-thorne disk, instead of its luminosity"},
-	{Section: "emitter", Name: "colour_correction", Type: Number, Range: above(0), Later: true,
-		Text: "colour over effective temperature of a blackbody"},
-	{Section: "emitter", Name: "light", Type: Choice, Choices: []string{"bolometric", "monochromatic"}, LaterChoices: []string{"line", "blackbody"},
-		Default: `"bolometric"`, Text: "what is added up: all frequencies, one, a line, a blackbody"},
+	{Section: "emitter", Name: "table", Type: Text, Kinds: onlyDisk, Text: "CSV file of a table profile, from the scene file's folder: r [M] growing, value; of a blackbody the effective temperature, K"},
+	{Section: "emitter", Name: "total_flux", Type: Quantity, Unit: "Jy", Units: fluxUnits, Range: above(0), Kinds: onlyDisk,
+		Text: "flux at the first frequency to which a monochromatic power or table disk is scaled, that of its whole image"},
+	{Section: "emitter", Name: "luminosity", Type: Quantity, Unit: "Edd", Units: luminosityUnits, Range: above(0), Kinds: onlyDisk,
+		Text: "luminosity of a novikov-thorne disk, 0.0572 of the rest energy accreted; Edd: that of ionised hydrogen"},
+	{Section: "emitter", Name: "accretion_rate", Type: Quantity, Unit: "Msun/yr", Units: accretionUnits, Range: above(0), Kinds: onlyDisk,
+		Text: "accretion rate of a novikov-thorne disk, instead of its luminosity; Edd: the rate of that luminosity"},
+	{Section: "emitter", Name: "colour_correction", Type: Number, Range: between(0.1, 10), Kinds: []string{disk, surface},
+		Text: "colour over effective temperature of a blackbody, f in B_nu(f T)/f^4; left out: 1"},
+	{Section: "emitter", Name: "light", Type: Choice, Choices: []string{bolometric, monochromatic, lineLight, blackbody},
+		Default: `"bolometric"`, Text: "what is added up: all frequencies (g^4), one (g^(3-s)), a narrow line (energy: g^4; photons: g^3), one of a blackbody"},
 	{Section: "emitter", Name: "spectral_index", Type: Number, Range: between(-10, 10),
 		Default: `0`, Text: "monochromatic: I_nu ~ nu^spectral_index"},
-	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Later: true,
-		Text: "energy of a line in the gas frame"},
+	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Kinds: []string{disk, spot},
+		Text: "energy of a line in the gas frame; left out: profiles are in g"},
 	{Section: "emitter", Name: "optical_depth", Type: Choice, Choices: []string{"thin", "thick"}, OrNumber: true, Range: above(0), Kinds: onlyDisk,
 		Default: `"thin"`, Text: "thin: all crossings add up; thick: the first one ends the path; a number: that at normal incidence, tau, emits S (1 - exp(-tau/mu)) and lets exp(-tau/mu) through"},
-	{Section: "emitter", Name: "emission_angle", Type: Choice, Choices: []string{"isotropic", "darkened", "brightened"}, Kinds: []string{disk, surface},
+	{Section: "emitter", Name: "emission_angle", Type: Choice, Choices: []string{"isotropic", "darkened", "brightened"}, Kinds: []string{disk, spot, surface},
 		Default: `"isotropic"`, Text: "intensity with mu, the cosine to the normal in the gas frame; darkened: 1 + 2.06 mu, brightened: ln(1 + 1/mu)"},
-	{Section: "emitter", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(2), Later: true, Text: "spot: radius"},
-	{Section: "emitter", Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360), Later: true, Text: "spot: azimuth at t = 0"},
-	{Section: "emitter", Name: "size", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Later: true, Text: "spot: proper Gaussian sigma"},
-	{Section: "emitter", Name: "contrast", Type: Number, Range: above(0), Later: true, Text: "spot: contrast"},
-	{Section: "emitter", Name: "temperature", Type: Quantity, Unit: "K", Units: temperatureUnits, Range: above(0), Kinds: onlySurface,
-		Text: "temperature of the surface; left out: of uniform brightness 1, or dark around its caps"},
+	{Section: "emitter", Name: "radius", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Kinds: onlySpot, Text: "radius of the spot's circular geodesic"},
+	{Section: "emitter", Name: "azimuth", Type: Quantity, Unit: "deg", Units: angleUnits, Range: between(-360, 360), Kinds: onlySpot,
+		Default: `"0 deg"`, Text: "azimuth of the spot's middle at t = 0"},
+	{Section: "emitter", Name: "size", Type: Quantity, Unit: "M", Units: lengthUnits, Range: above(0), Kinds: onlySpot,
+		Default: `"0.5 M"`, Text: "Gaussian sigma of the spot, a proper length in the frame of its middle"},
+	{Section: "emitter", Name: "contrast", Type: Number, Range: above(0), Kinds: onlySpot,
+		Default: `1`, Text: "peak of the spot, in units of the disk's emission at its radius; without a disk, its emitted intensity"},
+	{Section: "emitter", Name: "temperature", Type: Quantity, Unit: "K", Units: temperatureUnits, Range: above(0), Kinds: []string{disk, surface},
+		Text: "temperature of the surface; left out: of uniform brightness 1, or dark around its caps; disk: effective temperature at 1 M of a blackbody power profile, T = temperature (r/M)^(-index/4)"},
 	{Section: "emitter", Name: "period", Type: Quantity, Unit: "s", Units: timeUnits, Range: above(0), Kinds: onlySurface,
 		Text: "period of rotation seen from infinity; slow rotation only; left out: the star does not turn"},
 	{Section: "emitter", Name: "caps", Type: TableList, Fields: capKeys, Kinds: onlySurface,
@@ -205,6 +208,7 @@ var emitterKeys = []Key{
 // Which kinds of emitter have a key.
 var (
 	onlyDisk    = []string{disk}
+	onlySpot    = []string{spot}
 	onlySurface = []string{surface}
 	onlySky     = []string{sky}
 )
@@ -236,17 +240,20 @@ var measuredKeys = []Key{
 }
 
 var timeKeys = []Key{
-	{Section: "time", Name: "start", Type: Quantity, Unit: "M", Units: timeUnits, Range: anyNumber, Later: true, Text: "first time"},
-	{Section: "time", Name: "end", Type: Quantity, Unit: "M", Units: timeUnits, Range: anyNumber, Later: true, Text: "last time; also in orbits"},
-	{Section: "time", Name: "step", Type: Quantity, Unit: "M", Units: timeUnits, Range: above(0), Later: true, Text: "time step; also in orbits"},
+	{Section: "time", Name: "start", Type: Quantity, Unit: "M", Units: frameUnits, Range: anyNumber,
+		Default: `"0 M"`, Text: "first time, t_obs - r*(r_obs); orbit: the period of the first spot"},
+	{Section: "time", Name: "end", Type: Quantity, Unit: "M", Units: frameUnits, Range: anyNumber,
+		Text: "last time; left out: the first one"},
+	{Section: "time", Name: "step", Type: Quantity, Unit: "M", Units: frameUnits, Range: above(0),
+		Text: "time step; needed with an end"},
 }
 
 var traceKeys = []Key{
 	{Section: "trace", Name: "tolerance", Type: Number, Range: between(1e-13, 1e-3), Default: `1e-9`, Text: "relative tolerance of each path"},
 	{Section: "trace", Name: "max_order", Type: Integer, Range: between(0, 9), Default: `2`, Text: "highest image order"},
 	{Section: "trace", Name: "flux_tolerance", Type: Number, Range: between(1e-9, 0.1), Default: `1e-4`, Text: "relative tolerance of fluxes"},
-	{Section: "trace", Name: "effects", Type: ChoiceList, Choices: allEffects, LaterForm: "leaving any of them out",
-		Default: `["bending", "gravity", "motion"]`, Text: "what light and gas are subject to"},
+	{Section: "trace", Name: "effects", Type: ChoiceList, Choices: allEffects,
+		Default: `["bending", "gravity", "motion"]`, Text: "what light and gas are subject to; without bending: straight paths; gravity: no gravitational shift; motion: gas at rest"},
 }
 
 // Keys returns every key of the scene file, in the order of the reference.

@@ -66,3 +66,6 @@ func (s Scene) observerLimit() (limit Range, why string) {
 func (s Scene) insideShell() bool {
 	return s.Object.Kind == shell && s.Observer.Radius < s.Object.Radius
 }
+
+// finite says whether the observer is at a finite radius.
+func (o Observer) finite() bool { return !math.IsInf(o.Radius, 1) }

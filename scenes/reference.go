@@ -50,11 +50,5 @@ func (k Key) describe(w io.Writer) {
 	line("only for", strings.Join(k.Kinds, ", "))
 	line("default", k.Default+pick(k.Required, "none, the key is required", ""))
 	later := append([]string{}, k.LaterChoices...)
-	if k.LaterForm != "" {
-		later = append(later, k.LaterForm)
-	}
-	if k.OnlyZero {
-		later = append(later, "numbers other than 0")
-	}
 	line(notInVersion, strings.Join(later, ", "))
 }

@@ -104,7 +104,7 @@ var objectRefusals = []placed{
 	// keys of another kind
 	{"rim of a sky", skyEmitter + "¦inner = 9", "emitter.inner", []string{"inner does not apply to a sky", "only for a disk"}},
 	{"gas of a surface", lit + "¦gas = \"static\"", "emitter.gas", []string{"gas does not apply to a surface"}},
-	{"emission angle of a sky", skyEmitter + "¦emission_angle = \"darkened\"", "emitter.emission_angle", []string{"does not apply to a sky", "a disk or a surface"}},
+	{"emission angle of a sky", skyEmitter + "¦emission_angle = \"darkened\"", "emitter.emission_angle", []string{"does not apply to a sky", "a disk or a spot or a surface"}},
 	{"depth of a sky", "[[emitter]]\n" + skyEmitter + "¦optical_depth = \"thick\"", "emitter.2.optical_depth", []string{"optical_depth does not apply to a sky"}},
 	{"image of a disk", "[[emitter]]\n¦image = \"x.png\"", "emitter.image", []string{"image does not apply to a disk", "only for a sky"}},
 	{"seed of a surface", lit + "¦seed = 3", "emitter.seed", []string{"seed does not apply to a surface"}},
@@ -133,8 +133,8 @@ var objectRefusals = []placed{
 	{"no period", lit + "period = ¦\"0 M\"", "emitter.period", []string{"more than 0 M"}},
 	{"fast", lit + "period = ¦\"118 M\"", "emitter.period", []string{"slow rotation", "0.3012 c", "at most 0.3 c", "118.5 M or more"}},
 	{"fast in s", "[object]\nkind = \"star\"\nradius = \"12 km\"\nmass = 1.4\n[[emitter]]\nkind = \"surface\"\nperiod = ¦0.001", "emitter.period", []string{"slow rotation", "0.001035 s"}},
-	{"one frequency of heat", lit + "temperature = 1e6\nlight = ¦\"monochromatic\"", "emitter.light", []string{"not in this version", "bolometric"}},
-	{"one frequency of caps", lit + "caps = [{colatitude = 3, size = 3, temperature = 9}]\nlight = ¦\"monochromatic\"", "emitter.light", []string{"not in this version"}},
+	{"one frequency of heat", lit + "temperature = 1e6\nlight = ¦\"monochromatic\"", "emitter.light", []string{"is a blackbody", "bolometric or blackbody"}},
+	{"one frequency of caps", lit + "caps = [{colatitude = 3, size = 3, temperature = 9}]\nlight = ¦\"monochromatic\"", "emitter.light", []string{"is a blackbody"}},
 
 	// caps
 	{"cap as text", lit + "caps = ¦\"hot\"", "emitter.caps", []string{"wrong type, text", "{colatitude, azimuth, size, temperature}"}},

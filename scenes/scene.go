@@ -9,6 +9,7 @@ type Scene struct {
 	Emitters  []Emitter
 	Telescope Telescope
 	Measured  Measured
+	Time      Time
 	Trace     Trace
 }
 
@@ -50,29 +51,62 @@ type Field struct {
 	Frequency  []float64  // observed, Hz; empty when not given
 }
 
-// Emitter is one thing that shines.
+// Emitter is one thing that shines. Keys that its kind does not have are
+// zero.
 type Emitter struct {
-	Kind          string  // "disk", "surface" or "sky"
-	Inner         Rim     // inner rim
-	Outer         float64 // M
-	Clockwise     bool    // sense = "clockwise"
-	Gas           string  // "circular" or "static"
-	Profile       string  // "power"
-	Index         float64 // emissivity (r/M)^-Index in the gas frame
-	Light         string  // "bolometric" or "monochromatic"
+	Kind          string  // "disk", "spot", "surface" or "sky"
+	Light         string  // "bolometric", "monochromatic", "line" or "blackbody"
 	SpectralIndex float64 // monochromatic: I_ν ∝ ν^SpectralIndex
-	OpticalDepth  float64 // at normal incidence; 0 is "thin", +Inf "thick"
+	Rest          float64 // line: frequency in the gas frame, Hz; 0 when not given
 	EmissionAngle string  // "isotropic", "darkened" or "brightened"
+	Clockwise     bool    // sense = "clockwise"
+
+	// disk
+	Inner         Rim       // inner rim
+	Outer         float64   // M
+	Gas           string    // "circular" or "static"
+	Profile       string    // "power", "novikov-thorne" or "table"
+	Index         []float64 // power: emissivity (r/M)^-Index in the gas frame, from the inside out
+	Breaks        []float64 // M, between the indices
+	Table         string    // path of a CSV file
+	TotalFlux     float64   // Jy at the first frequency; 0 when not given
+	Luminosity    Rate      // novikov-thorne: in "Edd" or "erg/s"
+	AccretionRate Rate      // novikov-thorne: in "Edd" or "Msun/yr", instead
+	OpticalDepth  float64   // at normal incidence; 0 is "thin", +Inf "thick"
+
+	// disk and surface
+	Temperature      float64 // K: of the surface, or effective at 1 M; 0 when not given
+	ColourCorrection float64 // 0 when not given, for 1
+
+	// spot
+	Radius   float64 // of its middle, M
+	Azimuth  float64 // of its middle at t = 0, deg
+	Size     float64 // proper Gaussian sigma, M
+	Contrast float64 // see SpotDisk
 
 	// surface
-	Temperature float64 // K; 0 when not given
-	Period      float64 // of rotation seen from infinity, M; 0 for none
-	Caps        []Cap
+	Period float64 // of rotation, M of the object's own time seen from infinity; 0 for none
+	Caps   []Cap
 
 	// sky
 	Image   string // path of an equirectangular image, "" for a pattern
 	Pattern string // "stars" or "grid"
 	Seed    int64  // of the star field
+}
+
+// Rate is a power or an accretion rate; the zero Rate is not given.
+type Rate struct {
+	Value float64
+	Unit  string
+}
+
+// Given says whether the scene gives it.
+func (r Rate) Given() bool { return r.Unit != "" }
+
+// Time is when the frames of a movie or light curve are taken: M of the
+// object's own time, as t_obs - r*(r_obs).
+type Time struct {
+	Start, End, Step float64 // Step is 0 where there is one frame only
 }
 
 // Cap is a hot spot on a star's surface, fixed to it.
@@ -106,4 +140,8 @@ type Trace struct {
 	Tolerance     float64 // per path, relative
 	MaxOrder      int     // highest image order n
 	FluxTolerance float64
+
+	// Effects that are left out: light goes straight, nothing is shifted by
+	// gravity, gas is at rest.
+	NoBending, NoGravity, NoMotion bool
 }

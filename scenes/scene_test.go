@@ -104,7 +104,7 @@ func TestDefaults(t *testing.T) {
 		Object:   Object{Kind: "black-hole"},
 		Observer: Observer{Radius: math.Inf(1), Inclination: 60, Motion: "static"},
 		Field:    Field{Projection: "parallel", AutoWidth: true, Pixels: [2]int{800, 800}},
-		Emitters: []Emitter{{Kind: "disk", Inner: Rim{"isco", 6}, Outer: 20, Gas: "circular", Profile: "power", Index: 3, Light: "bolometric", EmissionAngle: "isotropic"}},
+		Emitters: []Emitter{{Kind: "disk", Inner: Rim{"isco", 6}, Outer: 20, Gas: "circular", Profile: "power", Index: []float64{3}, Light: "bolometric", EmissionAngle: "isotropic"}},
 		Trace:    Trace{Tolerance: 1e-9, MaxOrder: 2, FluxTolerance: 1e-4},
 	}
 	if !s.Equal(want) {
@@ -128,6 +128,11 @@ func TestFormatComesBack(t *testing.T) {
 		"[observer]\nradius = 2.5\n[field]\nprojection = \"perspective\"\nwidth = \"0.3 rad\"\ncenter = [\"1 uas\", 3]",
 		"[field]\nfrequency = [\"6.4 keV\", 230, \"1 Hz\", 1e-300]",
 		"[[emitter]]\ninner = 2.1\nouter = \"1e300 M\"\nsense = \"clockwise\"\nindex = -0.1\n[[emitter]]\nlight = \"monochromatic\"\nspectral_index = -0.7\noptical_depth = \"thick\"",
+		"[trace]\neffects = []",
+		"[trace]\neffects = [\"motion\", \"bending\"]\n[[emitter]]\nindex = [3.5, -1, 2]\nbreaks = [7, \"1e3 M\"]\nlight = \"line\"\nrest = \"6.4 keV\"\noptical_depth = 0.25\n[[emitter]]\nprofile = \"table\"\ntable = \"a \\\"b\\\".csv\"",
+		"[object]\nmass = 10\ndistance = 3\nredshift = 0.1\n[field]\nfrequency = \"2 keV\"\n[[emitter]]\nprofile = \"novikov-thorne\"\nluminosity = \"1e38 erg/s\"\nlight = \"blackbody\"\ncolour_correction = 1.7\n[[emitter]]\nlight = \"blackbody\"\ntemperature = \"1 keV\"\n[[emitter]]\nprofile = \"novikov-thorne\"\naccretion_rate = \"0.3 Edd\"\nlight = \"blackbody\"\n[[emitter]]\nlight = \"monochromatic\"\ntotal_flux = \"3 mJy\"",
+		"[[emitter]]\nsense = \"clockwise\"\n[[emitter]]\nkind = \"spot\"\nradius = 8.1\nazimuth = -0.1\nsize = 0.3\ncontrast = 2\n[time]\nstart = \"-0.1 orbit\"\nend = \"1 orbit\"\nstep = \"0.01 orbit\"",
+		"[object]\nmass = 10\nredshift = 0.3\n[[emitter]]\nkind = \"spot\"\nradius = 8.1\nlight = \"line\"\nsense = \"clockwise\"\n[time]\nend = \"3 s\"\nstep = \"1e-3 s\"",
 		"[trace]\ntolerance = 1e-13\nmax_order = 0\nflux_tolerance = 0.01",
 		"[object]\ncharge = \"0.1 rs\"\n[[emitter]]\ninner = \"isco\"\nemission_angle = \"brightened\"\n[[emitter]]\ninner = \"horizon\"",
 		"[object]\nkind = \"star\"\nradius = \"12.3 km\"\nmass = \"1.4 +- 0.1 Msun\"\ninterior = \"uniform\"\n[[emitter]]\ngas = \"static\"\ninner = 6",

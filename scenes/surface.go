@@ -16,13 +16,18 @@ func (b *builder) surface(e *Emitter, get func(string) reading) {
 		e.Temperature = b.temperature(r)
 	}
 	if r := get("period"); r.given {
-		e.Period = b.length(r, 0)
+		e.Period = b.span(r)
 		b.slow(r, e.Period)
 	}
 	e.Caps = b.caps(get("caps"))
-	if light := get("light"); e.Light != "bolometric" && (e.Temperature > 0 || len(e.Caps) > 0) {
-		b.failAt(light, Error{Problem: "one frequency of a temperature is a blackbody, " + notInVersion, Allowed: "bolometric", Later: true})
+	warm := e.Temperature > 0 || len(e.Caps) > 0
+	switch light := get("light"); {
+	case e.Light == monochromatic && warm:
+		b.failAt(light, Error{Problem: "one frequency of a temperature is a blackbody", Allowed: "bolometric or blackbody"})
+	case e.Light == blackbody && !warm:
+		b.failAt(light, Error{Problem: "a blackbody surface needs emitter.temperature or emitter.caps", Allowed: "bolometric or monochromatic"})
 	}
+	b.thermal(e, get)
 }
 
 // slow refuses a period, in M, whose equator is too fast: it moves at

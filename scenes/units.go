@@ -20,6 +20,8 @@ const (
 	ElementaryCharge = 1.602176634e-19
 	// Boltzmann is k, J/K, exact. Source: SI (2019).
 	Boltzmann = 1.380649e-23
+	// Jansky is 10⁻²⁶ W m⁻² Hz⁻¹, by definition.
+	Jansky = 1e-26
 	// AstronomicalUnit is the au, m, exact. Source: IAU 2012 Resolution B2.
 	AstronomicalUnit = 149597870700.0
 	// Parsec is the pc, m, exactly 648000/π au. Source: IAU 2015 Resolution B2.
@@ -51,6 +53,7 @@ var unitTable = []unit{
 	{"s", "s", 1},
 	{"d", "s", secondsPerDay},
 	{"yr", "s", 365.25 * secondsPerDay},
+	{"orbit", "orbit", 1},
 	{"deg", "deg", 1},
 	{"rad", "deg", 180 / math.Pi},
 	{"uas", "uas", 1},
@@ -81,6 +84,7 @@ var (
 	angleUnits       = []string{"deg", "rad"}
 	fieldUnits       = slices.Concat(lengthUnits, angleUnits)
 	timeUnits        = []string{"M", "rg", "rs", "s", "d", "yr"}
+	frameUnits       = slices.Concat(timeUnits, []string{"orbit"})
 	skyUnits         = []string{"uas", "mas"}
 	beamUnits        = slices.Concat(skyUnits, angleUnits)
 	massUnits        = []string{"Msun"}

@@ -20,6 +20,8 @@ type Pattern interface {
 // magnification says, whatever the size of the pixels.
 type Sky struct {
 	GPower  float64 // as Disk's
+	Scale   float64 // of what is received; 0 means 1
+	Without Without // Bending is up to the paths
 	picture *Picture
 	stars   *Stars
 	grid    *Grid
@@ -69,7 +71,7 @@ func (s *Sky) Shade(rays *geodesic.Rays, at *geodesic.Crossings, pixels *Pixels,
 			if at.Surface[j] != geodesic.Sky {
 				continue
 			}
-			g := rays.GObs[k]
+			g := s.Without.shifted(rays.GObs[k], 1)
 			f.cover(rays, k, at, int(j), pixels)
 			var seen float64
 			switch {
@@ -85,6 +87,9 @@ func (s *Sky) Shade(rays *geodesic.Rays, at *geodesic.Crossings, pixels *Pixels,
 			light.Lit[j], light.Passes[j] = true, 0
 			light.G[j], light.Mu[j] = g, math.NaN()
 			light.Intensity[j] = seen * power(g, s.GPower)
+			if s.Scale != 0 {
+				light.Intensity[j] *= s.Scale
+			}
 		}
 	}
 }

@@ -23,6 +23,10 @@ type Surface struct {
 	Time       float64 // t_obs - r*(r_obs), M: light with delay d left at Time - d
 	Angle      AngleLaw
 	GPower     float64 // as Disk's
+	Scale      float64 // of what is received; 0 means 1
+	// Thermal, if there is one, makes brightnesses effective temperatures, K.
+	Thermal *Thermal
+	Without Without
 }
 
 // Cap is a circular spot fixed to the surface.
@@ -53,6 +57,14 @@ func (s *Surface) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, 
 	if s.Clockwise {
 		spin = -spin
 	}
+	scale := s.Scale
+	if scale == 0 {
+		scale = 1
+	}
+	across := 1.0 // of λ, see Without.redshift
+	if s.Without.Bending {
+		across = s.Without.ObserverLapse / lapse
+	}
 	for k := range rays.Lambda {
 		for j := at.Start[k]; j < at.Start[k+1]; j++ {
 			if at.Surface[j] != geodesic.Star {
@@ -65,13 +77,18 @@ func (s *Surface) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, 
 				sinTheta2 := max(0, 1-at.CosTheta[j]*at.CosTheta[j])
 				v := spin * s.Radius / lapse
 				// v cos ξ = Ω λ, ξ the angle between the light and the motion
-				shift = (1 - spin*rays.Lambda[k]) / math.Sqrt(1-v*v*sinTheta2)
+				shift = (1 - spin*across*rays.Lambda[k]) / math.Sqrt(1-v*v*sinTheta2)
 			}
-			g := rays.GObs[k] * lapse / shift
+			g := s.Without.shifted(rays.GObs[k]*lapse/shift, lapse)
 			mu := min(1, math.Abs(at.KR[j])/shift)
 			light.Lit[j], light.Passes[j] = true, 0
 			light.G[j], light.Mu[j] = g, mu
-			light.Intensity[j] = s.brightness(at.CosTheta[j], at.Phi[j]-turned) * s.Angle.Intensity(mu) * power(g, s.GPower)
+			emitted := s.brightness(at.CosTheta[j], at.Phi[j]-turned)
+			if s.Thermal != nil {
+				light.Intensity[j] = s.Thermal.received(emitted, g) * s.Angle.Intensity(mu)
+			} else {
+				light.Intensity[j] = scale * emitted * s.Angle.Intensity(mu) * power(g, s.GPower)
+			}
 		}
 	}
 }
