@@ -245,7 +245,7 @@ var timeKeys = []Key{
 	{Section: "time", Name: "end", Type: Quantity, Unit: "M", Units: frameUnits, Range: anyNumber,
 		Text: "last time; left out: the first one"},
 	{Section: "time", Name: "step", Type: Quantity, Unit: "M", Units: frameUnits, Range: above(0),
-		Text: "time step; needed with an end"},
+		Text: "time step; left out: a hundredth of the time from start to end"},
 }
 
 var traceKeys = []Key{

@@ -160,7 +160,6 @@ var refusals = []struct {
 	{"rest", "[[emitter]]\nrest = \"6.4 keV\"", 4, 8, "emitter.rest", []string{"without a line"}},
 	{"optical depth", "[[emitter]]\noptical_depth = 0", 4, 17, "emitter.optical_depth", []string{"out of range", "more than 0"}},
 	{"unbent light to an orbit", "[observer]\nradius = 9\nmotion = \"orbit\"\n[field]\nprojection = \"all-sky\"\n[trace]\neffects = [\"motion\", \"gravity\"]", 9, 11, "trace.effects", []string{"must be at rest"}},
-	{"time without step", "[time]\nend = 3", 4, 7, "time.end", []string{"need time.step"}},
 	{"time backwards", "[time]\nstart = 3\nend = 2\nstep = 1", 5, 7, "time.end", []string{"before the start", "3 M or more"}},
 	{"too many frames", "[time]\nend = 1e9\nstep = 1", 5, 8, "time.step", []string{"too many frames", "1e4 M"}},
 	{"orbit without spot", "[time]\nend = \"1 orbit\"\nstep = 1", 4, 7, "time.end", []string{"orbit needs a spot"}},

@@ -123,7 +123,7 @@ func TestSetRefusalsChangeNothing(t *testing.T) {
 		{"emitter.index", "[6, 3]", "2 indices and 0 breaks"},
 		{"emitter.optical_depth", "-0.5", "more than 0"},
 		{"emitter.kind", "spot", "does not apply to a spot"},
-		{"time.end", "9", "need time.step"},
+		{"time.end", "-9", "before the start"},
 		{"figure.kind", "x", "not in this version"},
 		{"schema", "2", "--set schema: not a version"},
 		{"title", "\xff", "not UTF-8"},

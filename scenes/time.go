@@ -5,6 +5,9 @@ import "math"
 // maxFrames bounds the frames of [time]. Taste.
 const maxFrames = 100_000
 
+// defaultSteps is how many steps lead from start to end. Taste.
+const defaultSteps = 100
+
 // time reads when frames are taken.
 func (b *builder) time() {
 	get := func(key string) reading { return b.get("time", 0, key) }
@@ -22,7 +25,7 @@ func (b *builder) time() {
 	case t.End < t.Start:
 		b.failAt(end, Error{Problem: "the end lies before the start", Allowed: formatNumber(t.Start) + " M or more"})
 	case t.End > t.Start && !step.given:
-		b.failAt(end, Error{Problem: "frames from start to end need time.step", Allowed: `time.step, "0.01 orbit", say`})
+		t.Step = (t.End - t.Start) / defaultSteps
 	case t.End > t.Start && (t.End-t.Start)/t.Step > maxFrames:
 		b.failAt(step, Error{Problem: "too many frames", Allowed: "at least " + formatShort((t.End-t.Start)/maxFrames) + " M, for " + formatNumber(maxFrames) + " frames"})
 	}
