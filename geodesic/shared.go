@@ -38,17 +38,23 @@ type OrbitTable struct {
 	bins      int // per row, of the bounds
 	timed     bool
 
-	v      []float64
-	nodes  []node  // row by row, knots each
-	times  []clock // likewise; empty unless timed
-	last   []int32 // knots of a row that hold, row by row
-	ends   []rowEnd
-	until  []float64 // largest end angle of a cell
-	perRow []float64 // 1 over the distance to the next row
-	off    []float64 // bound on u, row by row, one per binsPerPi-th part of π
-	endOf  []float64 // bound on the angle at which the orbits of a cell end, radians
-	sound  []bool    // the cell from this row to the next may be interpolated
-	built  Build
+	v     []float64
+	nodes []node  // row by row, knots each
+	times []clock // likewise; empty unless timed
+	last  []int32 // knots of a row that hold, row by row
+	ends  []rowEnd
+	gaps  []gap     // from each row to the next
+	off   []float64 // bound on u, row by row, one per binsPerPi-th part of π
+	endOf []float64 // bound on the angle at which the orbits of a cell end, radians
+	built Build
+}
+
+// gap is what a look-up reads of two neighbouring rows, in one cache line.
+type gap struct {
+	v, dv, perV float64 // of the first row, to the next, 1/dv
+	until       float64 // larger of the end angles
+	knots       int     // that both rows hold
+	sound       bool    // may be interpolated across
 }
 
 // node is the state of one orbit at one knot.
@@ -151,6 +157,7 @@ func (s *Round) SharedOrbits(ctx context.Context, share Share) (*OrbitTable, err
 	if err := tb.onRows(ctx, share, share.Tolerance/tableShare, rows, tb.integrate); err != nil {
 		return nil, err
 	}
+	tb.pair()
 	checked := make([]tableCheck, (rows+checkEvery-2)/checkEvery)
 	if err := tb.onRows(ctx, share, share.Tolerance/checkShare, len(checked), func(t *roundTracer, k int) {
 		checked[k] = tb.check(t, k*checkEvery)
@@ -229,12 +236,10 @@ func (s *Round) layOut(share Share, uObs float64) *OrbitTable {
 	}
 	tb.last = make([]int32, rows)
 	tb.ends = make([]rowEnd, rows)
-	tb.until = make([]float64, rows)
-	tb.perRow = make([]float64, rows)
+	tb.gaps = make([]gap, rows-1)
 	tb.bins = tb.orders*binsPerPi + 1
 	tb.off = make([]float64, rows*tb.bins)
 	tb.endOf = make([]float64, rows)
-	tb.sound = make([]bool, rows)
 	return tb
 }
 
@@ -343,8 +348,20 @@ func (tb *OrbitTable) lookForEnd(o *orbit) rowEnd {
 	return rowEnd{psi: o.psi + theta*o.h, slope: -o.slopeAt(theta) / o.wAt(theta), kind: kind}
 }
 
-// conclude turns the checks into bounds for every row, and says which cells
-// may be interpolated.
+// pair fills the gaps once all rows are integrated.
+func (tb *OrbitTable) pair() {
+	for row := range tb.gaps {
+		dv := tb.v[row+1] - tb.v[row]
+		tb.gaps[row] = gap{
+			v: tb.v[row], dv: dv, perV: 1 / dv,
+			until: max(tb.ends[row].psi, tb.ends[row+1].psi),
+			knots: int(min(tb.last[row], tb.last[row+1])),
+			sound: tb.bothPastEnd(row),
+		}
+	}
+}
+
+// conclude turns the checks into bounds for every row.
 func (tb *OrbitTable) conclude(checked []tableCheck) {
 	for row := range len(tb.v) - 1 {
 		k := row / checkEvery
@@ -363,12 +380,9 @@ func (tb *OrbitTable) conclude(checked []tableCheck) {
 		for _, c := range near {
 			tb.endOf[row] = max(tb.endOf[row], checkMargin*c.end+tb.tolerance)
 		}
-		tb.until[row] = max(tb.ends[row].psi, tb.ends[row+1].psi)
-		tb.perRow[row] = 1 / (tb.v[row+1] - tb.v[row])
-		tb.sound[row] = tb.bothPastEnd(row)
 	}
 	tb.built.Orbits = len(tb.v)
-	tb.built.Bytes = 32*len(tb.nodes) + 24*len(tb.times) + 8*(len(tb.v)+len(tb.off)) + 24*len(tb.ends)
+	tb.built.Bytes = 32*len(tb.nodes) + 24*len(tb.times) + 8*(len(tb.v)+len(tb.off)) + 24*len(tb.ends) + 48*len(tb.gaps)
 }
 
 // bothPastEnd says whether, where the shorter of two neighbouring orbits stops
@@ -401,7 +415,7 @@ func (tb *OrbitTable) check(t *roundTracer, row int) tableCheck {
 		return c
 	}
 	limit := float64(tb.orders) * math.Pi
-	across := hermiteAcross(checkAt, tb.v[row+1]-tb.v[row])
+	across := hermiteAcross(checkAt, tb.gaps[row].dv)
 	part := tb.step / 3 // a third of a step: neither knot nor middle is left out, nor what lies between
 	for o.psi < limit && t.pace.tried < maxSteps {
 		h := t.pace.h
@@ -417,7 +431,7 @@ func (tb *OrbitTable) check(t *roundTracer, row int) tableCheck {
 				continue
 			}
 			bin := int(psi * (binsPerPi / math.Pi))
-			c.off[bin] = max(c.off[bin], math.Abs(u-tb.interpolate(&cell, &across)))
+			c.off[bin] = max(c.off[bin], math.Abs(u-interpolate(cell.a, cell.b, cell.theta, tb.step, 2*tb.object.charge2, &across)))
 		}
 		if end := tb.lookForEnd(o); end.kind != pastOrders {
 			from, to := tb.ends[row], tb.ends[row+1]
@@ -449,12 +463,13 @@ type cell struct {
 func (tb *OrbitTable) cell(row int, psi float64) (c cell, held bool) {
 	at := psi * tb.perStep
 	k := int(at)
-	if k+1 >= int(min(tb.last[row], tb.last[row+1])) {
+	g := &tb.gaps[row]
+	if k+1 >= g.knots {
 		return cell{}, false
 	}
 	i := row*tb.knots + k
 	return cell{
-		row: row, knot: k, theta: at - float64(k), dv: tb.v[row+1] - tb.v[row],
+		row: row, knot: k, theta: at - float64(k), dv: g.dv,
 		a: (*[2]node)(tb.nodes[i : i+2]),
 		b: (*[2]node)(tb.nodes[i+tb.knots : i+tb.knots+2]),
 	}, true
@@ -471,11 +486,10 @@ func hermiteAcross(s, dv float64) weights {
 	return weights{step: s * s * (3 - 2*s), from: dv * s * rest * rest, to: -dv * s * s * rest}
 }
 
-// interpolate returns u in a cell: along and cubic, with the weights in θ
-// worked out once for both rows.
-func (tb *OrbitTable) interpolate(c *cell, across *weights) float64 {
-	curve, h := 2*tb.object.charge2, tb.step
-	x := c.theta
+// interpolate returns u between two rows at the share x of the way to the
+// next knot: along and cubic, with the weights in θ worked out once for both
+// rows. Step and curvature, h and 2Q², are the table's.
+func interpolate(a, b *[2]node, x, h, curve float64, across *weights) float64 {
 	x2 := x * x
 	x3 := x2 * x
 	y := 1 - x
@@ -487,8 +501,7 @@ func (tb *OrbitTable) interpolate(c *cell, across *weights) float64 {
 	// cubic: p and q
 	c0 := x2 * (3 - 2*x)
 	c1, d1 := h*x*y2, -h*x2*y
-	a0, a1 := &c.a[0], &c.a[1]
-	b0, b1 := &c.b[0], &c.b[1]
+	a0, a1, b0, b1 := &a[0], &a[1], &b[0], &b[1]
 	ua := a0.u + k0*(a1.u-a0.u) + (h1*a0.w + k1*a1.w) + (h2*bend(a0.u, curve) + k2*bend(a1.u, curve))
 	ub := b0.u + k0*(b1.u-b0.u) + (h1*b0.w + k1*b1.w) + (h2*bend(b0.u, curve) + k2*bend(b1.u, curve))
 	pa := a0.p + c0*(a1.p-a0.p) + (c1*a0.q + d1*a1.q)

@@ -100,25 +100,32 @@ func (t *SharedTracer) look(b, kr float64) bool {
 		return t.missesAll(b)
 	}
 	i := row - tb.low
-	if !tb.sound[i] || t.want.Delay && (!tb.timed || tb.uObs > tb.object.edge && b > widestWithin) {
+	gap := &tb.gaps[i]
+	if !gap.sound || t.want.Delay && (!tb.timed || tb.uObs > tb.object.edge && b > widestWithin) {
 		return false
 	}
-	share := (v - tb.v[i]) * tb.perRow[i]
+	share := (v - gap.v) * gap.perV
 	if t.plan.Plane {
 		target := t.firstAngle()
-		across := hermiteAcross(share, tb.v[i+1]-tb.v[i])
+		across := hermiteAcross(share, gap.dv)
+		more := !t.want.NoKR || t.want.Slope || t.want.Delay
 		off := tb.off[i*tb.bins : (i+1)*tb.bins]
-		for n := 0; n <= t.plan.MaxOrder && target <= tb.until[i]; n++ {
-			c, held := tb.cell(i, target)
-			if !held {
+		edge, curve := tb.object.edge, 2*tb.object.charge2
+		for n := 0; n <= t.plan.MaxOrder && target <= gap.until; n++ {
+			at := target * tb.perStep
+			k := int(at)
+			if k+1 >= gap.knots {
 				break // past the end of the path
 			}
-			u := tb.interpolate(&c, &across)
-			if u >= tb.object.edge && tb.uObs > tb.object.edge && c.a[0].w < 0 {
+			theta := at - float64(k)
+			k += i * tb.knots
+			from, to := (*[2]node)(tb.nodes[k:]), (*[2]node)(tb.nodes[k+tb.knots:])
+			u := interpolate(from, to, theta, tb.step, curve, &across)
+			if u >= edge && tb.uObs > edge && from[0].w < 0 {
 				target += math.Pi // still within the horizon, on the way out
 				continue
 			}
-			if !(u > 0 && u < tb.object.edge) {
+			if !(u > 0 && u < edge) {
 				break
 			}
 			r := 1 / u
@@ -126,7 +133,11 @@ func (t *SharedTracer) look(b, kr float64) bool {
 			if bound > t.target && u > t.least {
 				return false
 			}
-			t.recordShared(&c, share, b, v, u, r, target, n, bound)
+			t.place(Plane, n, target, r)
+			t.out.Bound = append(t.out.Bound, bound)
+			if more {
+				t.recordShared(i, share, b, v, u, target)
+			}
 			target += math.Pi
 		}
 	}
@@ -145,13 +156,12 @@ func (t *SharedTracer) missesAll(b float64) bool {
 	return end.kind == atEdge && t.firstAngle() > 1.1*end.psi*b/shareFrom+1e-9
 }
 
-// recordShared appends a crossing of the disk plane.
-func (t *SharedTracer) recordShared(c *cell, share, b, v, u, r, psi float64, order int, bound float64) {
+// recordShared appends what is wanted of a crossing beside its place.
+func (t *SharedTracer) recordShared(i int, share, b, v, u, psi float64) {
 	tb, out := t.table, t.out
-	t.place(Plane, order, psi, r)
-	out.Bound = append(out.Bound, bound)
+	c, _ := tb.cell(i, psi)
 	if !t.want.NoKR || t.want.Slope {
-		w, p := tb.turn(c, share)
+		w, p := tb.turn(&c, share)
 		if !t.want.NoKR {
 			out.KR = append(out.KR, b*w)
 		}
@@ -160,7 +170,7 @@ func (t *SharedTracer) recordShared(c *cell, share, b, v, u, r, psi float64, ord
 		}
 	}
 	if t.want.Delay {
-		out.Delay = append(out.Delay, tb.delay(c, share, u))
+		out.Delay = append(out.Delay, tb.delay(&c, share, u))
 	}
 }
 

@@ -119,7 +119,7 @@ const (
 	benchWide   = 15.0   // M
 	benchFrom   = 1000.0 // M
 	benchTo     = 2.0001 // M
-	benchRounds = 15     // repetitions, of which the median counts
+	benchRounds = 21     // repetitions, of which the median counts
 )
 
 func benchSinglePaths(ctx context.Context, report *benchReport) error {
@@ -174,8 +174,10 @@ const (
 	benchSide   = 800
 	benchField  = "30 M"
 	benchReach  = 50.0 // M: radii below are compared
-	benchFrames = 9    // repetitions, of which the median counts
+	benchFrames = 15   // repetitions of a frame, of which the median counts
 )
+
+var benchWorkers = [...]int{1, 2}
 
 func benchCrossings(ctx context.Context, report *benchReport) error {
 	for _, inclination := range []float64{20, 50, 75, 85, 89} {
@@ -183,26 +185,28 @@ func benchCrossings(ctx context.Context, report *benchReport) error {
 		if err != nil {
 			return err
 		}
-		for _, workers := range []int{1, 2} {
-			var radii raytrace.Radii
-			o := raytrace.Options{Workers: workers}
-			times := make([]time.Duration, benchFrames)
-			for k := range len(times) + 1 { // the first one makes orbits and room
+		// in turn, so that other work on the machine falls on both alike
+		var radii [len(benchWorkers)]raytrace.Radii
+		var times [len(benchWorkers)][benchRounds]time.Duration
+		for round := range benchRounds + 1 { // the first makes orbits and room
+			for k, workers := range benchWorkers {
 				begun := time.Now()
-				if err := view.Radii(ctx, o, &radii); err != nil {
+				if err := view.Radii(ctx, raytrace.Options{Workers: workers}, &radii[k]); err != nil {
 					return err
 				}
-				if k > 0 {
-					times[k-1] = time.Since(begun)
+				if round > 0 {
+					times[k][round-1] = time.Since(begun)
 				}
 			}
-			worst, compared, err := radii.WorstError(ctx, view, benchReach, 0)
+		}
+		for k, workers := range benchWorkers {
+			worst, compared, err := radii[k].WorstError(ctx, view, benchReach, 0)
 			if err != nil {
 				return err
 			}
 			report.Crossings = append(report.Crossings, crossingsRow{
 				Pixels: benchSide * benchSide, InclinationDeg: number(inclination), Orders: view.Plan.MaxOrder + 1, Workers: workers,
-				NSPerPixel:         number(float64(median(times).Nanoseconds()) / (benchSide * benchSide)),
+				NSPerPixel:         number(float64(median(times[k][:]).Nanoseconds()) / (benchSide * benchSide)),
 				WorstRelativeError: number(worst), Compared: compared,
 			})
 		}
