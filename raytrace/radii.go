@@ -4,6 +4,7 @@ import (
 	"context"
 	"image"
 	"math"
+	"slices"
 	"sync"
 
 	"annulet/geodesic"
@@ -14,22 +15,29 @@ import (
 // loop with everything else left out, to be timed and checked; its storage is
 // used again.
 type Radii struct {
+	cut   [3]int // columns and rows of the field, side of a tile
 	tiles []image.Rectangle
 	at    []geodesic.Crossings // one block a tile, rays in rows from the bottom
 }
 
-// Radii traces into r, which may be the zero Radii or one of a field of the
-// same size.
+// Equal says whether both hold the same crossings, bit for bit.
+func (r *Radii) Equal(other *Radii) bool {
+	return r.cut == other.cut && slices.EqualFunc(r.at, other.at, func(a, b geodesic.Crossings) bool {
+		return slices.Equal(a.Start, b.Start) && slices.Equal(a.Order, b.Order) && slices.Equal(a.R, b.R)
+	})
+}
+
+// Radii traces into r, which may be the zero Radii.
 func (v *View) Radii(ctx context.Context, o Options, r *Radii) error {
-	tiles := tilesOutward(v.Field.Columns, v.Field.Rows, o.tileSide())
-	if len(r.tiles) != len(tiles) {
-		r.at = make([]geodesic.Crossings, len(tiles))
+	if cut := [3]int{v.Field.Columns, v.Field.Rows, o.tileSide()}; cut != r.cut {
+		r.cut = cut
+		r.tiles = tilesOutward(cut[0], cut[1], cut[2])
+		r.at = make([]geodesic.Crossings, len(r.tiles))
 	}
-	r.tiles = tiles
 	want := geodesic.Want{NoPlace: true, NoKR: true}
-	return v.onTiles(ctx, o, want, tiles, func(b *bench, k int) (tileReport, error) {
+	return v.onTiles(ctx, o, want, r.tiles, func(b *bench, k int) (tileReport, error) {
 		b.at, r.at[k] = r.at[k], b.at
-		integrated, err := b.followTile(tiles[k], want)
+		integrated, err := b.followTile(r.tiles[k], want)
 		b.at, r.at[k] = r.at[k], b.at
 		return tileReport{integrated: integrated}, err
 	}, &Plate{})

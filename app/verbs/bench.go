@@ -66,8 +66,12 @@ var benchUnits = map[string]string{
 // benchParts are the parts of bench, by their JSON keys.
 var benchParts = []string{"single_paths", "crossings", "frame"}
 
+// mostRounds bounds the repetitions. Taste.
+const mostRounds = 1000
+
 func newBench(s streams) *cobra.Command {
 	var only string
+	var rounds int
 	var asJSON bool
 	cmd := &cobra.Command{
 		Use:   "bench",
@@ -80,7 +84,10 @@ func newBench(s streams) *cobra.Command {
 			if only != "" && !slices.Contains(benchParts, only) {
 				return refuse("--only %s: allowed: %s", only, strings.Join(benchParts, ", "))
 			}
-			report, err := runBench(cmd.Context(), s, only)
+			if rounds < 1 || rounds > mostRounds {
+				return refuse("--rounds %d: allowed: 1 to %d", rounds, mostRounds)
+			}
+			report, err := runBench(cmd.Context(), s, only, rounds)
 			if err != nil {
 				return err
 			}
@@ -91,21 +98,22 @@ func newBench(s streams) *cobra.Command {
 		},
 	}
 	cmd.Flags().StringVar(&only, "only", "", "run one `KEY`: "+strings.Join(benchParts, ", "))
+	cmd.Flags().IntVar(&rounds, "rounds", benchRounds, "repetitions, `N` of which the median counts")
 	cmd.Flags().BoolVar(&asJSON, "json", false, "print one JSON document on stdout")
 	return cmd
 }
 
-func runBench(ctx context.Context, s streams, only string) (*benchReport, error) {
+func runBench(ctx context.Context, s streams, only string, rounds int) (*benchReport, error) {
 	report := &benchReport{Units: benchUnits}
 	for _, part := range []struct {
 		key string
-		run func(context.Context, *benchReport) error
+		run func(context.Context, int, *benchReport) error
 	}{{"single_paths", benchSinglePaths}, {"crossings", benchCrossings}, {"frame", benchFrame}} {
 		if only != "" && only != part.key {
 			continue
 		}
 		s.note("bench: %s", part.key)
-		if err := part.run(ctx, report); err != nil {
+		if err := part.run(ctx, rounds, report); err != nil {
 			return nil, err
 		}
 	}
@@ -119,10 +127,10 @@ const (
 	benchWide   = 15.0   // M
 	benchFrom   = 1000.0 // M
 	benchTo     = 2.0001 // M
-	benchRounds = 21     // repetitions, of which the median counts
+	benchRounds = 21     // repetitions by default, of which the median counts
 )
 
-func benchSinglePaths(ctx context.Context, report *benchReport) error {
+func benchSinglePaths(ctx context.Context, rounds int, report *benchReport) error {
 	b := make([]float64, benchPaths)
 	for k := range b {
 		_, part := math.Modf((float64(k) + 0.5) / math.Phi)
@@ -132,7 +140,7 @@ func benchSinglePaths(ctx context.Context, report *benchReport) error {
 	runtime.LockOSThread()
 	defer runtime.UnlockOSThread()
 	for _, tolerance := range []float64{1e-6, 1e-9, 1e-12} {
-		times := make([]time.Duration, benchRounds)
+		times := make([]time.Duration, rounds)
 		for k := range times {
 			if err := ctx.Err(); err != nil {
 				return err
@@ -171,15 +179,14 @@ func median(times []time.Duration) time.Duration {
 
 // The crossings: 800 x 800 pixels, 30 M wide, from 1000 M, orders 0 to 2.
 const (
-	benchSide   = 800
-	benchField  = "30 M"
-	benchReach  = 50.0 // M: radii below are compared
-	benchFrames = 15   // repetitions of a frame, of which the median counts
+	benchSide  = 800
+	benchField = "30 M"
+	benchReach = 50.0 // M: radii below are compared
 )
 
 var benchWorkers = [...]int{1, 2}
 
-func benchCrossings(ctx context.Context, report *benchReport) error {
+func benchCrossings(ctx context.Context, rounds int, report *benchReport) error {
 	for _, inclination := range []float64{20, 50, 75, 85, 89} {
 		view, err := benchView(benchSide, inclination, benchField, "60 M")
 		if err != nil {
@@ -187,26 +194,29 @@ func benchCrossings(ctx context.Context, report *benchReport) error {
 		}
 		// in turn, so that other work on the machine falls on both alike
 		var radii [len(benchWorkers)]raytrace.Radii
-		var times [len(benchWorkers)][benchRounds]time.Duration
-		for round := range benchRounds + 1 { // the first makes orbits and room
+		var times [len(benchWorkers)][]time.Duration
+		for round := range rounds + 1 { // the first makes orbits and room
 			for k, workers := range benchWorkers {
 				begun := time.Now()
 				if err := view.Radii(ctx, raytrace.Options{Workers: workers}, &radii[k]); err != nil {
 					return err
 				}
 				if round > 0 {
-					times[k][round-1] = time.Since(begun)
+					times[k] = append(times[k], time.Since(begun))
 				}
 			}
 		}
+		var worst float64
+		var compared int
 		for k, workers := range benchWorkers {
-			worst, compared, err := radii[k].WorstError(ctx, view, benchReach, 0)
-			if err != nil {
-				return err
+			if k == 0 || !radii[k].Equal(&radii[0]) {
+				if worst, compared, err = radii[k].WorstError(ctx, view, benchReach, 0); err != nil {
+					return err
+				}
 			}
 			report.Crossings = append(report.Crossings, crossingsRow{
 				Pixels: benchSide * benchSide, InclinationDeg: number(inclination), Orders: view.Plan.MaxOrder + 1, Workers: workers,
-				NSPerPixel:         number(float64(median(times[k][:]).Nanoseconds()) / (benchSide * benchSide)),
+				NSPerPixel:         number(float64(median(times[k]).Nanoseconds()) / (benchSide * benchSide)),
 				WorstRelativeError: number(worst), Compared: compared,
 			})
 		}
@@ -228,7 +238,7 @@ func benchView(side int, inclination float64, width, outer string) (*raytrace.Vi
 // The frame: 1000 x 1000 at 75 deg.
 const frameSide = 1000
 
-func benchFrame(ctx context.Context, report *benchReport) error {
+func benchFrame(ctx context.Context, rounds int, report *benchReport) error {
 	workers := runtime.GOMAXPROCS(0)
 	o := raytrace.Options{Workers: workers, Layers: []raytrace.Layer{}}
 	view, err := benchView(frameSide, 75, "44 M", "20 M")
@@ -240,7 +250,7 @@ func benchFrame(ctx context.Context, report *benchReport) error {
 	colour := func(p *raytrace.Plate) error {
 		return tone.Tone{Curve: tone.SquareRoot, FromZero: true}.Apply(out, p.Total, p.Columns, p.Rows, colours)
 	}
-	frames := make([]time.Duration, benchFrames)
+	frames := make([]time.Duration, rounds)
 	for k := range len(frames) + 1 {
 		view.Observer.InclinationDeg = 75 + 0.01*float64(k)
 		begun := time.Now()
@@ -259,7 +269,7 @@ func benchFrame(ctx context.Context, report *benchReport) error {
 	if err != nil {
 		return err
 	}
-	shades := make([]time.Duration, benchFrames)
+	shades := make([]time.Duration, rounds)
 	for k := range shades {
 		begun := time.Now()
 		plate, err := traced.Shade(ctx, view, o)

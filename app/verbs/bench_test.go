@@ -9,7 +9,7 @@ func TestBench(t *testing.T) {
 	if testing.Short() {
 		t.Skip("some seconds")
 	}
-	got := do(t, "", "bench", "--json")
+	got := do(t, "", "bench", "--json", "--rounds", "1")
 	if got.code != exitDone {
 		t.Fatalf("%+v", got)
 	}
@@ -50,6 +50,9 @@ func TestBench(t *testing.T) {
 		t.Errorf("%+v", f)
 	}
 	if got := do(t, "", "bench", "--only", "crossing"); got.code != exitUsage {
+		t.Errorf("%+v", got)
+	}
+	if got := do(t, "", "bench", "--rounds", "0"); got.code != exitUsage {
 		t.Errorf("%+v", got)
 	}
 }
