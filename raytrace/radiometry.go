@@ -35,6 +35,7 @@ type Radiometry struct {
 	Frequency float64 // observed, Hz; 0 if the scene has none
 	PixelSr   float64 // solid angle of a pixel at the middle of the field; 0 if not known
 	BeamSr    float64 // solid angle of the scene's Gaussian beam; 0 if it has none
+	unit      string  // of relative intensities, in words
 }
 
 // Radiometry returns that of the view's plates.
@@ -46,7 +47,27 @@ func (v *View) Radiometry() Radiometry {
 	if t := v.scene.Telescope; t.GivenBeam {
 		r.BeamSr = BeamSolidAngle(t.Beam[0], t.Beam[1])
 	}
+	if len(v.scene.Emitters) > 0 {
+		r.unit = relativeUnit(v.scene.Emitters[0])
+	}
 	return r
+}
+
+// relativeUnit says in words what an emitter's intensities are relative to.
+func relativeUnit(e scenes.Emitter) string {
+	unit := "emitted at r = 1 M"
+	switch {
+	case e.Profile == "novikov-thorne":
+		unit = "flux of one face, Mdot c2/(GM/c2)2"
+	case e.Profile == "table":
+		unit = "value of the table"
+	case e.Kind == "spot" && e.Light != "":
+		unit = "emitted by a spot of contrast 1"
+	}
+	if e.Light == "line" {
+		unit = "energy of the line, " + unit
+	}
+	return unit
 }
 
 // PixelSolidAngle returns that of a pixel at the middle of the field, sr; 0
@@ -84,6 +105,9 @@ func (r Radiometry) Plate() string {
 	case scenes.Bolometric:
 		return "W m-2 sr-1"
 	}
+	if r.unit != "" {
+		return r.unit
+	}
 	return "emitted at r = 1 M"
 }
 
@@ -106,7 +130,7 @@ func (r Radiometry) In(u Unit) (func(float64) float64, error) {
 	}
 	switch {
 	case !known:
-		return nil, fmt.Errorf("unit %q: allowed: %s", u, unitWords())
+		return nil, fmt.Errorf("unit %q: allowed: %s", u, UnitWords())
 	case u == BolometricUnit:
 		return lack(`a disk with a luminosity or accretion rate and light = "bolometric"`)
 	case r.Radiance != scenes.PerHertz:
@@ -129,8 +153,8 @@ func (r Radiometry) In(u Unit) (func(float64) float64, error) {
 	return times(r.PixelSr / scenes.Jansky)
 }
 
-// unitWords lists the units.
-func unitWords() string {
+// UnitWords lists the units.
+func UnitWords() string {
 	var words []string
 	for _, u := range Units {
 		words = append(words, string(u))

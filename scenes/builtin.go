@@ -10,7 +10,7 @@ import (
 var builtInFiles embed.FS
 
 // builtInNames in the order of `scene list`; the first is the default scene.
-var builtInNames = []string{"@first-light", "@two-caps", "@slow-room", "@last-look", "@behind-glass"}
+var builtInNames = []string{"@first-light", "@broad-line", "@late-twin", "@hot-disk", "@two-caps", "@slow-room", "@last-look", "@behind-glass"}
 
 // Info names a built-in scene.
 type Info struct {

@@ -23,6 +23,7 @@ func (b *builder) emitter(index int) {
 		SpectralIndex: b.number(get("spectral_index"), 0),
 	}
 	b.lights(e, get)
+	b.idle(index, get("profile").word, e.Light)
 	if rest := get("rest"); rest.given {
 		e.Rest = b.plain(rest, 0)
 	}

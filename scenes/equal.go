@@ -32,5 +32,6 @@ func (s Scene) clone() Scene {
 		e.Caps, e.Index, e.Breaks = slices.Clone(e.Caps), slices.Clone(e.Index), slices.Clone(e.Breaks)
 	}
 	s.Field.Frequency = slices.Clone(s.Field.Frequency)
+	s.Idle = slices.Clone(s.Idle)
 	return s
 }

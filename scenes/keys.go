@@ -37,6 +37,8 @@ type Key struct {
 	Range    Range    // of the number, in M, deg, uas, Msun, pc, Hz or without unit
 	Error    bool     // "+- error" may follow the number
 	Kinds    []string // kinds of object or emitter that have the key; empty: all
+	Profiles []string // profiles of a disk that have the key; empty: all
+	Lights   []string // lights of an emitter that have the key; empty: all
 	Required bool     // a file, or an inline table, without it is refused
 	Default  string   // as written in a file; "" when the key may stay away without one
 	Text     string   // what it is, one line
@@ -161,24 +163,24 @@ var emitterKeys = []Key{
 		Default: `"circular"`, Text: "motion of the gas; circular: plunging inside the isco of a black hole, not below 6 M around a star or shell; static: held at rest"},
 	{Section: "emitter", Name: "profile", Type: Choice, Choices: []string{powerLaw, novikovThorne, tabulated}, Kinds: onlyDisk,
 		Default: `"power"`, Text: "emissivity with radius in the gas frame; power: (r/M)^-index; novikov-thorne: an accretion disk without torque at the isco; table: read from a file"},
-	{Section: "emitter", Name: "index", Type: NumberList, Range: between(-20, 20), Kinds: onlyDisk,
+	{Section: "emitter", Name: "index", Type: NumberList, Range: between(-20, 20), Profiles: []string{powerLaw}, Kinds: onlyDisk,
 		Default: `3`, Text: "index of a power profile, or a list of them with breaks between"},
-	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(0), Kinds: onlyDisk,
+	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(0), Profiles: []string{powerLaw}, Kinds: onlyDisk,
 		Text: "radii between the indices of a broken power profile"},
-	{Section: "emitter", Name: "table", Type: Text, Kinds: onlyDisk, Text: "CSV file of a table profile, from the scene file's folder: r [M] growing, value; of a blackbody the effective temperature, K"},
-	{Section: "emitter", Name: "total_flux", Type: Quantity, Unit: "Jy", Units: fluxUnits, Range: above(0), Kinds: onlyDisk,
+	{Section: "emitter", Name: "table", Type: Text, Profiles: []string{tabulated}, Kinds: onlyDisk, Text: "CSV file of a table profile, from the scene file's folder: r [M] growing, value; of a blackbody the effective temperature, K"},
+	{Section: "emitter", Name: "total_flux", Type: Quantity, Unit: "Jy", Units: fluxUnits, Range: above(0), Profiles: []string{powerLaw, tabulated}, Lights: []string{monochromatic}, Kinds: onlyDisk,
 		Text: "flux at the first frequency to which a monochromatic power or table disk is scaled, that of its whole image"},
-	{Section: "emitter", Name: "luminosity", Type: Quantity, Unit: "Edd", Units: luminosityUnits, Range: above(0), Kinds: onlyDisk,
+	{Section: "emitter", Name: "luminosity", Type: Quantity, Unit: "Edd", Units: luminosityUnits, Range: above(0), Profiles: []string{novikovThorne}, Lights: []string{bolometric, blackbody}, Kinds: onlyDisk,
 		Text: "luminosity of a novikov-thorne disk, 0.0572 of the rest energy accreted; Edd: that of ionised hydrogen"},
-	{Section: "emitter", Name: "accretion_rate", Type: Quantity, Unit: "Msun/yr", Units: accretionUnits, Range: above(0), Kinds: onlyDisk,
+	{Section: "emitter", Name: "accretion_rate", Type: Quantity, Unit: "Msun/yr", Units: accretionUnits, Range: above(0), Profiles: []string{novikovThorne}, Lights: []string{bolometric, blackbody}, Kinds: onlyDisk,
 		Text: "accretion rate of a novikov-thorne disk, instead of its luminosity; Edd: the rate of that luminosity"},
-	{Section: "emitter", Name: "colour_correction", Type: Number, Range: between(0.1, 10), Kinds: []string{disk, surface},
+	{Section: "emitter", Name: "colour_correction", Type: Number, Range: between(0.1, 10), Lights: []string{blackbody}, Kinds: []string{disk, surface},
 		Text: "colour over effective temperature of a blackbody, f in B_nu(f T)/f^4; left out: 1"},
 	{Section: "emitter", Name: "light", Type: Choice, Choices: []string{bolometric, monochromatic, lineLight, blackbody},
 		Default: `"bolometric"`, Text: "what is added up: all frequencies (g^4), one (g^(3-s)), a narrow line (energy: g^4; photons: g^3), one of a blackbody"},
 	{Section: "emitter", Name: "spectral_index", Type: Number, Range: between(-10, 10),
 		Default: `0`, Text: "monochromatic: I_nu ~ nu^spectral_index"},
-	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Kinds: []string{disk, spot},
+	{Section: "emitter", Name: "rest", Type: Quantity, Unit: "keV", Units: frequencyUnits, Range: above(0), Lights: []string{lineLight}, Kinds: []string{disk, spot},
 		Text: "energy of a line in the gas frame; left out: profiles are in g"},
 	{Section: "emitter", Name: "optical_depth", Type: Choice, Choices: []string{"thin", "thick"}, OrNumber: true, Range: above(0), Kinds: onlyDisk,
 		Default: `"thin"`, Text: "thin: all crossings add up; thick: the first one ends the path; a number: that at normal incidence, tau, emits S (1 - exp(-tau/mu)) and lets exp(-tau/mu) through"},

@@ -1,6 +1,9 @@
 package scenes
 
-import "strings"
+import (
+	"slices"
+	"strings"
+)
 
 // Lights of emitters.
 const (
@@ -21,8 +24,25 @@ func (b *builder) lights(e Emitter, get func(string) reading) {
 	case e.Light == blackbody && e.Kind != disk && e.Kind != surface:
 		b.failAt(light, Error{Problem: article(e.Kind) + " has no temperature", Allowed: "light of a disk or a surface"})
 	}
-	if rest := get("rest"); rest.given && e.Light != lineLight {
-		b.failAt(rest, Error{Problem: "given without a line", Allowed: `only with light = "line"`})
+}
+
+// idle leaves out the keys of an emitter that mean nothing for its profile or
+// light, and notes them: a scene may be tried with one profile after another.
+func (b *builder) idle(index int, profile, light string) {
+	for _, entry := range b.src.entries {
+		if entry.section != "emitter" || entry.index != index {
+			continue
+		}
+		r := b.readings[entry.address]
+		blame := func(what, is string, fit []string) {
+			if len(fit) == 0 || slices.Contains(fit, is) || !b.readings[entry.address].given {
+				return
+			}
+			b.scene.Idle = append(b.scene.Idle, entry.address.String()+" means nothing with "+what+" = "+quote(is)+" and is ignored.")
+			delete(b.readings, entry.address)
+		}
+		blame("profile", profile, r.key.Profiles)
+		blame("light", light, r.key.Lights)
 	}
 }
 
@@ -30,9 +50,6 @@ func (b *builder) lights(e Emitter, get func(string) reading) {
 func (b *builder) thermal(e *Emitter, get func(string) reading) {
 	if colour := get("colour_correction"); colour.given {
 		e.ColourCorrection = b.number(colour, 0)
-		if e.Light != blackbody {
-			b.failAt(colour, Error{Problem: "given without a blackbody", Allowed: `only with light = "blackbody"`})
-		}
 	}
 	if e.Light == blackbody {
 		b.needsFrequency(get("light"), "a blackbody")

@@ -72,7 +72,7 @@ func TestBuiltIn(t *testing.T) {
 	for _, info := range all {
 		names = append(names, info.Name)
 	}
-	want := []string{"@first-light", "@two-caps", "@slow-room", "@last-look", "@behind-glass"}
+	want := []string{"@first-light", "@broad-line", "@late-twin", "@hot-disk", "@two-caps", "@slow-room", "@last-look", "@behind-glass"}
 	if !slices.Equal(names, want) {
 		t.Errorf("built-in scenes %q, want %q", names, want)
 	}

@@ -11,16 +11,6 @@ const (
 func (b *builder) profile(e *Emitter, get func(string) reading) {
 	profile := get("profile")
 	e.Profile = profile.word
-	only := func(key, profile string) {
-		if r := get(key); r.given && e.Profile != profile {
-			b.failAt(r, Error{Problem: "a profile of " + e.Profile + " has no " + key, Allowed: `only with profile = "` + profile + `"`})
-		}
-	}
-	only("index", powerLaw)
-	only("breaks", powerLaw)
-	only("table", tabulated)
-	only("luminosity", novikovThorne)
-	only("accretion_rate", novikovThorne)
 	switch e.Profile {
 	case powerLaw:
 		b.indices(e, get)
@@ -80,10 +70,6 @@ func (b *builder) shines(e *Emitter, get func(string) reading) {
 	e.TotalFlux = b.plain(flux, 0)
 	_, scaled := b.scene.ThetaG()
 	switch o := b.scene; {
-	case e.Profile == novikovThorne:
-		b.failAt(flux, Error{Problem: "a novikov-thorne disk is as bright as its luminosity says", Allowed: "only with a power or table profile"})
-	case e.Light != monochromatic:
-		b.failAt(flux, Error{Problem: "total_flux is a flux at one frequency", Allowed: `light = "monochromatic"`})
 	case !scaled:
 		b.failAt(flux, Error{Problem: o.noAngularScale("Jy")})
 	case o.Field.Projection != parallel || o.Observer.finite():
@@ -104,8 +90,6 @@ func (b *builder) accretion(e Emitter, get func(string) reading) {
 	switch {
 	case luminosity.given && rate.given:
 		b.failAt(rate, Error{Problem: "given together with luminosity", Allowed: "luminosity or accretion_rate"})
-	case given.given && e.Light != bolometric && e.Light != blackbody:
-		b.failAt(given, Error{Problem: "a luminosity says nothing about light that is " + e.Light, Allowed: `light = "bolometric" or "blackbody"`})
 	case given.given && !b.scene.Object.Mass.Given:
 		b.failAt(given, Error{Problem: "the flux from an accretion disk needs object.mass", Allowed: "object.mass"})
 	case e.Light != blackbody:

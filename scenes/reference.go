@@ -48,6 +48,8 @@ func (k Key) describe(w io.Writer) {
 	}
 	line("allowed", k.Allowed()+pick(k.Error, `; "+- error" may follow the number`, ""))
 	line("only for", strings.Join(k.Kinds, ", "))
+	line("only with profile", strings.Join(k.Profiles, ", "))
+	line("only with light", strings.Join(k.Lights, ", "))
 	line("default", k.Default+pick(k.Required, "none, the key is required", ""))
 	later := append([]string{}, k.LaterChoices...)
 	line(notInVersion, strings.Join(later, ", "))

@@ -11,6 +11,9 @@ type Scene struct {
 	Measured  Measured
 	Time      Time
 	Trace     Trace
+	// Idle says, a sentence each, which keys of the text mean nothing with
+	// the others. Equal does not look at it.
+	Idle []string
 }
 
 // Measure is a quantity that may carry the user's one-sigma error.

@@ -201,3 +201,25 @@ func TestFormatKeysNamesEveryKey(t *testing.T) {
 		}
 	}
 }
+
+// Keys that mean nothing with the others are ignored, and notes say so.
+func TestIdleKeys(t *testing.T) {
+	s := parse(t, top+`[[emitter]]
+profile = "novikov-thorne"
+index = [1, 2]
+rest = "6.4 keV"
+table = "x.csv"
+total_flux = 3
+colour_correction = 2
+`).Scene()
+	notes := strings.Join(s.Notes(), "\n")
+	for _, key := range []string{"index", "rest", "table", "total_flux", "colour_correction"} {
+		if !strings.Contains(notes, "emitter."+key+" means nothing") {
+			t.Errorf("nothing said about %s:\n%s", key, notes)
+		}
+	}
+	e := s.Emitters[0]
+	if len(s.Notes()) != 5 || e.Index != nil || e.Rest != 0 || e.Table != "" || e.TotalFlux != 0 || e.ColourCorrection != 0 {
+		t.Errorf("%+v, notes\n%s", e, notes)
+	}
+}

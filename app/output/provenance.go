@@ -3,6 +3,7 @@ package output
 import (
 	"encoding/json"
 	"fmt"
+	"slices"
 	"strings"
 
 	"annulet/app/files"
@@ -21,6 +22,7 @@ type Provenance struct {
 	Paths       int      `json:"paths"`
 	Integrated  int      `json:"integrated"` // of these, integrated one by one
 	NotIncluded []string `json:"not_included"`
+	Assumed     []string `json:"assumed,omitempty"`
 	Audit       string   `json:"audit,omitempty"` // its summary, if one was run
 	Scene       string   `json:"-"`               // the text of the file
 }
@@ -28,13 +30,21 @@ type Provenance struct {
 // NotIncluded is what the model leaves out.
 var NotIncluded = []string{"returning radiation", "self-occultation by thickness", "scattering"}
 
+// NotIncludedIn is that and the effects which the scene leaves out.
+func NotIncludedIn(s scenes.Scene) []string {
+	return append(slices.Clone(NotIncluded), s.Trace.LeftOut()...)
+}
+
+// NotIncludedLine says for people what is not included.
+func NotIncludedLine(all []string) string { return "Not included: " + strings.Join(all, ", ") + "." }
+
 // NewProvenance gathers it; plate tells counts and bounds, and may be nil
 // while they are not known.
 func NewProvenance(d *scenes.Document, version string, plate *raytrace.Plate) Provenance {
 	s := d.Scene()
 	p := Provenance{
 		Title: s.Title, Version: version, Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder,
-		NotIncluded: NotIncluded, Scene: string(d.Text()),
+		NotIncluded: NotIncludedIn(s), Assumed: s.Assumed(), Scene: string(d.Text()),
 	}
 	if plate != nil {
 		p.WorstBound, p.WorstAngle, p.Paths, p.Integrated = plate.WorstBound, plate.WorstAngle, plate.Paths, plate.Integrated
@@ -62,7 +72,10 @@ func (p Provenance) Lines() []string {
 	lines := []string{
 		fmt.Sprintf("Annulet %s, light paths at a relative tolerance of %g", p.Version, p.Tolerance),
 		fmt.Sprintf("%d paths; worst bound on r %.1e relative, on swept angles %.1e rad", p.Paths, p.WorstBound, p.WorstAngle),
-		"Not included: " + strings.Join(p.NotIncluded, ", ") + ".",
+		NotIncludedLine(p.NotIncluded),
+	}
+	for _, text := range p.Assumed {
+		lines = append(lines, "Assumed: "+text+".")
 	}
 	if p.Audit != "" {
 		lines = append(lines, "Audit: "+p.Audit)

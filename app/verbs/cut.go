@@ -63,7 +63,7 @@ func newCut(s streams) *cobra.Command {
 			if err != nil {
 				return err
 			}
-			return m.deliver(cmd, s, of, finding{table: cutTable(found, perUnit, unit)})
+			return m.deliver(cmd, s, of, finding{table: cutTable(found, perUnit, unit, of.view.Radiometry().Plate())})
 		},
 	}
 	addMeasuring(cmd, &m)
@@ -74,7 +74,7 @@ func newCut(s streams) *cobra.Command {
 	return cmd
 }
 
-func cutTable(points []measure.CutPoint, perUnit float64, unit string) output.Table {
+func cutTable(points []measure.CutPoint, perUnit float64, unit, intensityUnit string) output.Table {
 	t := output.Table{Columns: []output.Column{
 		{Name: "distance", Unit: unit}, {Name: "alpha", Unit: unit}, {Name: "beta", Unit: unit}, {Name: "intensity", Text: intensityUnit},
 	}}

@@ -115,7 +115,7 @@ func (m measuring) deliver(cmd *cobra.Command, s streams, of *measured, f findin
 	if err := f.table.WriteRows(s.out); err != nil {
 		return err
 	}
-	s.note("%s", notIncludedLine)
+	s.note("%s", output.NotIncludedLine(p.NotIncluded))
 	return nil
 }
 
@@ -140,7 +140,7 @@ func (f finding) document(p output.Provenance) ordered {
 		all = append(all, field{"units", units})
 	}
 	all = append(all, fields...)
-	return append(all, field{"numerics", p}, field{"not_included", notIncluded})
+	return append(all, field{"numerics", p}, field{"not_included", p.NotIncluded})
 }
 
 // rowsOf turns a table into JSON objects.

@@ -1,13 +1,9 @@
 package verbs
 
-import (
-	"strings"
-
-	"annulet/app/output"
-)
+import "annulet/app/output"
 
 // notIncluded is what the model leaves out. Every output says so.
 var notIncluded = output.NotIncluded
 
 // notIncludedLine is the same for people.
-var notIncludedLine = "Not included: " + strings.Join(notIncluded, ", ") + "."
+var notIncludedLine = output.NotIncludedLine(notIncluded)

@@ -10,6 +10,7 @@ import (
 
 	"github.com/spf13/cobra"
 
+	"annulet/app/output"
 	"annulet/raytrace"
 )
 
@@ -110,10 +111,6 @@ func (r probeRow) csv() string {
 	}, ",")
 }
 
-// intensityUnit is that of every intensity until a scene says how bright
-// its emitter is.
-const intensityUnit = "emitted at r = 1 M"
-
 func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	given := cmd.Flags().Changed("table")
 	if given == (len(o.at) > 0) {
@@ -176,8 +173,8 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 			NotIncluded []string          `json:"not_included"`
 		}{map[string]string{
 			"alpha": unit, "beta": unit, "r": "M", "phi_deg": "deg", "ell": "M",
-			"g": "1", "mu": "1", "delay": "M", "intensity": intensityUnit,
-		}, rows, notIncluded})
+			"g": "1", "mu": "1", "delay": "M", "intensity": view.Radiometry().Plate(),
+		}, rows, output.NotIncludedIn(document.Scene())})
 	}
 	out := bufio.NewWriter(s.out)
 	fmt.Fprintln(out, probeHeader)
@@ -187,7 +184,7 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	if err := out.Flush(); err != nil {
 		return err
 	}
-	s.note("%s", notIncludedLine)
+	s.note("%s", output.NotIncludedLine(output.NotIncludedIn(document.Scene())))
 	return nil
 }
 

@@ -17,13 +17,17 @@ import (
 	"annulet/app/tone"
 	"annulet/assets"
 	"annulet/raytrace"
+	"annulet/scenes"
 )
+
+// temperatureLayer is made of radii.
+const temperatureLayer = "temperature"
 
 // layerKind is one of the layers that a picture can show.
 type layerKind struct {
 	word    string
 	layer   raytrace.Layer
-	unit    string
+	unit    string     // "" for that of the plate
 	perUnit float64    // of the plate's value in that unit
 	colours string     // map by default
 	curve   tone.Curve // by default
@@ -31,12 +35,13 @@ type layerKind struct {
 }
 
 var layerKinds = []layerKind{
-	{"intensity", raytrace.Intensity, intensityUnit, 1, "ember", tone.SquareRoot, 0},
+	{"intensity", raytrace.Intensity, "", 1, "ember", tone.SquareRoot, 0},
 	{"g", raytrace.Redshift, "1", 1, "shift", tone.Linear, 1},
 	{"r", raytrace.Radius, "M", 1, "ember", tone.Linear, 0},
 	{"phi", raytrace.Azimuth, "deg", math.Pi / 180, "ember", tone.Linear, 0},
 	{"delay", raytrace.Delay, "M", 1, "ember", tone.Linear, 0},
 	{"mu", raytrace.Mu, "1", 1, "ember", tone.Linear, 0},
+	{temperatureLayer, raytrace.Radius, "K", 1, "ember", tone.Linear, 0}, // that of the gas at r
 }
 
 func layerWords() string {
@@ -68,7 +73,8 @@ type picture struct {
 	order   int // or total
 	tone    tone.Tone
 	colours *assets.Map
-	deep    bool // 16 bits a component
+	deep    bool                  // 16 bits a component
+	convert func(float64) float64 // to what is shown; nil for as it is
 }
 
 // rendering is what the flags of render say.
@@ -76,6 +82,7 @@ type rendering struct {
 	set, out                    []string
 	depth, workers              int
 	curve, limits, layer, order string
+	unit                        string
 	colours                     string
 	keep                        string
 	audit                       bool
@@ -91,8 +98,10 @@ func newRender(s streams) *cobra.Command {
 			"format: PNG and TIFF are pictures of one layer, FITS and NPZ hold the numbers of\n" +
 			"all of them. Every file carries the scene (see scene recover) and appears whole\n" +
 			"or not at all. Layers other than intensity belong to one image order: g, r (M),\n" +
-			"phi (deg), delay (M), mu; --limits are in these units. Images too large for the\n" +
-			"memory go to PNG and FITS in strips.",
+			"phi (deg), delay (M), mu, temperature (K: the effective one of a\n" +
+			"blackbody disk); --limits are in these units. --unit converts the intensity of a\n" +
+			"picture, if the scene says how bright it is. Images too large for the memory go to\n" +
+			"PNG and FITS in strips.",
 		Example: "  " + programName() + " render @first-light -o first-light.png\n" +
 			"  " + programName() + " render scene.toml --set observer.inclination=75deg --layer g --order 0 -o g.png\n" +
 			"  " + programName() + " render scene.toml --keep intensity,g -o scene.fits -o scene.npz",
@@ -103,6 +112,7 @@ func newRender(s streams) *cobra.Command {
 	f.StringArrayVarP(&o.out, "output", "o", nil, "`FILE` to write: "+formatWords+"; repeatable")
 	addSet(f, &o.set)
 	f.StringVar(&o.layer, "layer", "intensity", "what to show: "+layerWords())
+	f.StringVar(&o.unit, "unit", "", "`UNIT` of an intensity shown: "+raytrace.UnitWords())
 	f.StringVar(&o.order, "order", "", "image `ORDER` 0, 1, …; intensity also total (its default; else 0)")
 	f.StringVar(&o.curve, "curve", "", "value to colour: "+strings.Join(tone.CurveWords(), ", ")+" (default by layer)")
 	f.StringVar(&o.limits, "limits", "", "ends of the colour map, `LOW:HIGH` or P1%:P2% (default 0%:99.9%, an intensity from 0)")
@@ -183,17 +193,55 @@ func (p picture) layers() []raytrace.Layer {
 // values picks the layer, in the unit of the picture.
 func (p picture) values(plate *raytrace.Plate) []float32 {
 	if p.order == total {
-		return plate.Total
+		return p.converted(plate.Total)
 	}
-	values := plate.Layer(p.kind.layer, p.order)
-	if p.kind.perUnit == 1 {
+	return p.converted(plate.Layer(p.kind.layer, p.order))
+}
+
+// converted returns values of the plate as they are shown.
+func (p picture) converted(values []float32) []float32 {
+	if p.kind.perUnit == 1 && p.convert == nil {
 		return values
 	}
 	values = slices.Clone(values)
 	for k, v := range values {
-		values[k] = float32(float64(v) / p.kind.perUnit)
+		x := float64(v) / p.kind.perUnit
+		if p.convert != nil {
+			x = p.convert(x)
+		}
+		values[k] = float32(x)
 	}
 	return values
+}
+
+// calibrate settles the unit of what is shown.
+func (p *picture) calibrate(view *raytrace.View, scene scenes.Scene, unit string) error {
+	if p.kind.word == temperatureLayer {
+		if !slices.ContainsFunc(scene.Emitters, func(e scenes.Emitter) bool { return e.Kind == "disk" && e.Light == "blackbody" }) {
+			return refuse("--layer temperature needs a disk with light = \"blackbody\"")
+		}
+		p.convert = view.TemperatureAt
+	}
+	if p.kind.layer != raytrace.Intensity {
+		if unit != "" {
+			return refuse("--unit %s: only for --layer intensity", unit)
+		}
+		return nil
+	}
+	r := view.Radiometry()
+	p.kind.unit = r.Plate()
+	if unit == "" {
+		return nil
+	}
+	convert, err := r.In(raytrace.Unit(unit))
+	if err != nil {
+		return refuse("--unit: %w", err)
+	}
+	if u := raytrace.Unit(unit); u != raytrace.PlateUnit {
+		p.kind.unit = unit
+	}
+	p.convert = convert
+	return nil
 }
 
 // paint makes the picture of a layer.
@@ -285,6 +333,9 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	if err != nil {
 		return usage{err}
 	}
+	if err := p.calibrate(view, scene, o.unit); err != nil {
+		return err
+	}
 	audited := ""
 	if o.audit {
 		note, err := audit(cmd.Context(), document, auditSamples, auditSeed)
@@ -305,7 +356,7 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 
 	s.note("%d x %d pixels, %d paths, worst bound on r %.1e relative, %.2f s",
 		plate.Columns, plate.Rows, plate.Paths, plate.WorstBound, time.Since(begun).Seconds())
-	s.note("%s", notIncludedLine)
+	s.note("%s", output.NotIncludedLine(output.NotIncludedIn(scene)))
 	if !o.json {
 		_, err := fmt.Fprintln(s.out, strings.Join(o.out, "\n"))
 		return err
@@ -316,7 +367,7 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 		Pixels: [2]int{plate.Columns, plate.Rows}, Paths: plate.Paths, WorstBound: number(plate.WorstBound),
 		Layer: p.kind.word, Curve: p.tone.Curve.String(), Map: p.colours.Name(),
 		Limits:      [2]number{number(low), number(high)},
-		NotIncluded: notIncluded,
+		NotIncluded: output.NotIncludedIn(scene),
 	}
 	if p.order != total {
 		report.Order = &p.order

@@ -269,3 +269,49 @@ func TestInterruptLeavesNothing(t *testing.T) {
 		}
 	}
 }
+
+// What pictures show of physics: the temperature of a blackbody disk, its
+// intensity in units of observers, and what the scene leaves out.
+func TestRenderPhysics(t *testing.T) {
+	folder := t.TempDir()
+	file := filepath.Join(folder, "x.png")
+	small := []string{"--set", "field.pixels=[24,24]", "--json", "-o", file}
+	for _, c := range []struct {
+		args []string
+		unit string
+	}{
+		{[]string{"@hot-disk"}, "W m-2 Hz-1 sr-1"},
+		{[]string{"@hot-disk", "--layer", "temperature"}, "K"},
+		{[]string{"@hot-disk", "--unit", "K-planck"}, "K-planck"},
+		{[]string{"@hot-disk", "--unit", "mJy/pixel", "--order", "0"}, "mJy/pixel"},
+		{[]string{"@broad-line"}, "energy of the line, emitted at r = 1 M"},
+		{[]string{"@late-twin", "--set", "time.start=0.25 orbit"}, "emitted by a spot of contrast 1"},
+	} {
+		got := do(t, "", append(append([]string{"render"}, c.args...), small...)...)
+		if got.code != exitDone || !strings.Contains(got.out, `"limits": "`+c.unit+`"`) {
+			t.Errorf("%q: exit %d, %s\n%s", c.args, got.code, got.out, got.errors)
+		}
+	}
+	got := do(t, "", append([]string{"render", "@first-light", "--set", `trace.effects=["motion"]`}, small...)...)
+	if got.code != exitDone || !strings.Contains(got.out, "light bending (paths are straight)") || !strings.Contains(got.errors, "Left out on purpose") {
+		t.Errorf("exit %d, %s\n%s", got.code, got.out, got.errors)
+	}
+	data, err := os.ReadFile(file)
+	if err != nil || !strings.Contains(string(data), "gravitational redshift") {
+		t.Errorf("the picture does not say what is left out, %v", err)
+	}
+	for says, args := range map[string][]string{
+		"needs a disk with light":  {"@first-light", "--layer", "temperature"},
+		"unit Jy/pixel needs":      {"@first-light", "--unit", "Jy/pixel"},
+		`unit "Jy"`:                {"@hot-disk", "--unit", "Jy"},
+		"only for --layer":         {"@hot-disk", "--unit", "Jy/pixel", "--layer", "g"},
+		"needs telescope.beam":     {"@hot-disk", "--unit", "Jy/beam"},
+		"no such file":             {"@first-light", "--set", "emitter.profile=table", "--set", "emitter.table=none.csv"},
+		"needs the observer at in": {"@first-light", "--set", "observer.radius=50", "--set", "emitter.total_flux=1 Jy"},
+	} {
+		got := do(t, "", append(append([]string{"render"}, args...), small...)...)
+		if got.code != exitUsage || !strings.Contains(got.errors, says) {
+			t.Errorf("%q: exit %d, %s, want %q", args, got.code, got.errors, says)
+		}
+	}
+}

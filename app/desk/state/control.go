@@ -101,7 +101,16 @@ func (s *State) shows(k scenes.Key, scene scenes.Scene, n int) bool {
 	kind := scene.Object.Kind
 	switch k.Section {
 	case emitterSection:
-		kind = scene.Emitters[n].Kind
+		e := scene.Emitters[n]
+		kind = e.Kind
+		if len(k.Profiles) > 0 && !slices.Contains(k.Profiles, e.Profile) || len(k.Lights) > 0 && !slices.Contains(k.Lights, e.Light) {
+			return false
+		}
+	case "object":
+		accretes := func(e scenes.Emitter) bool { return e.Profile == "novikov-thorne" }
+		if k.Name == "charge" && slices.ContainsFunc(scene.Emitters, accretes) {
+			return false // theory knows that disk around an uncharged hole only
+		}
 	case "field":
 		if scene.Field.Projection == allSky && (k.Name == "width" || k.Name == "center") {
 			return false // it is every direction
