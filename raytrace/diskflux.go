@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"sync"
 
 	"annulet/geodesic"
 	"annulet/raytrace/emit"
@@ -14,12 +15,13 @@ import (
 
 // The integration over a disk.
 const (
-	fluxFirstAngles = 32   // screen angles to begin with; doubled until the sum stays
+	fluxFirstAngles = 16   // screen angles to begin with; doubled until the sum stays
 	fluxMostAngles  = 2048 // edge-on disks need most
-	fluxNodes       = 24   // Gauss-Legendre nodes between two marked radii
-	fluxSettled     = 1e-6 // relative change at which doubling ends
+	fluxNodes       = 16   // Gauss-Legendre nodes between two marked radii
+	fluxSettled     = 1e-5 // relative change at which doubling ends
+	leastSqueeze    = 0.01 // of screen angles edge-on, see angle
 	fluxSecants     = 60   // steps of the search for a radius
-	fluxRadius      = 1e-11
+	fluxRadius      = 1e-9 // relative error of a radius at which its search ends
 )
 
 // ErrDiskFlux: the flux of a disk is not known from on-disk integration here.
@@ -46,6 +48,7 @@ func (v *View) DiskFlux(d *emit.Disk) (orders []float64, change float64, err err
 		return nil, 0, err
 	}
 	f := &diskFlux{bench: b, disk: d, dark: round.DarkImpact(), sphere: round.PhotonSphere()}
+	f.squeeze = max(leastSqueeze, math.Sqrt(math.Abs(math.Cos(v.Observer.InclinationDeg*math.Pi/180))))
 	f.marks(round)
 	n := fluxFirstAngles
 	sum, err := f.angles(n, 0)
@@ -71,12 +74,13 @@ func (v *View) DiskFlux(d *emit.Disk) (orders []float64, change float64, err err
 }
 
 type diskFlux struct {
-	bench  *bench
-	disk   *emit.Disk
-	dark   float64   // b below which a path that misses the radius ends on the object
-	radii  []float64 // nodes, M, growing
-	weight []float64 // of each, in dr
-	sphere float64   // the photon sphere, M
+	bench   *bench
+	disk    *emit.Disk
+	dark    float64   // b below which a path that misses the radius ends on the object
+	radii   []float64 // nodes, M, growing
+	weight  []float64 // of each, in dr
+	sphere  float64   // the photon sphere, M
+	squeeze float64   // see angle
 
 	at      []float64 // b of the lines of sight, radius after radius for every angle
 	bracket []bracket
@@ -122,12 +126,12 @@ func (f *diskFlux) angles(n int, shift float64) ([]float64, error) {
 	f.at = make([]float64, size)
 	f.bracket = make([]bracket, size)
 	for order := range orders {
-		f.begin()
-		for step := range fluxSecants {
+		f.begin(order, n, shift)
+		for range fluxSecants {
 			if err := f.follow(n, shift); err != nil {
 				return nil, err
 			}
-			if f.narrow(order) && step > 0 {
+			if f.narrow(order) {
 				break
 			}
 		}
@@ -144,17 +148,31 @@ func (f *diskFlux) angles(n int, shift float64) ([]float64, error) {
 				}
 			}
 			s, _, _ := b.look(j)
-			ring := f.at[k] / math.Abs(b.at.Slope[j]) * f.weight[k%len(f.radii)]
+			_, rate := f.angle(k, n, shift)
+			ring := rate * f.at[k] / math.Abs(b.at.Slope[j]) * f.weight[k%len(f.radii)]
 			sums[order] += through * s.intensity * ring * 2 * math.Pi / float64(n)
 		}
 	}
 	return sums, nil
 }
 
-// begin brackets b around every radius.
-func (f *diskFlux) begin() {
+// begin brackets b around every radius, or finds it by closed form.
+func (f *diskFlux) begin(order, n int, shift float64) {
+	o := f.bench.view.Observer
+	sinI, cosI := math.Sincos(o.InclinationDeg * math.Pi / 180)
+	if o.InclinationDeg == 90 {
+		cosI = 0
+	}
+	closed := f.sphere == geodesic.PhotonSphere && o.Motion == geodesic.Static
 	for k := range f.at {
 		r := f.radii[k%len(f.radii)]
+		if closed {
+			s, _ := f.angle(k, n, shift)
+			psi := geodesic.FirstPlaneAngle(sinI, cosI, math.Sin(s)) + float64(order)*math.Pi
+			f.at[k] = geodesic.RimImpact(1/o.Radius, psi, r)
+			f.bracket[k] = bracket{lo: f.at[k], hi: f.at[k]}
+			continue
+		}
 		hi := f.dark * (1 + 1e-9)
 		if r > f.sphere { // no path of larger b comes as near
 			hi = r / f.disk.Gas.Lapse(r) * (1 + 1e-12)
@@ -164,12 +182,24 @@ func (f *diskFlux) begin() {
 	}
 }
 
+// angle is the screen angle s of line of sight k, radians, and ds/dt where t
+// goes around evenly. Edge-on the image changes within cos i of the horizontal:
+// s is squeezed towards it by the square root, with which the trapezoid rule
+// converges fastest, as functions of t are then analytic to either side of it
+// for as far from both causes.
+func (f *diskFlux) angle(k, n int, shift float64) (s, rate float64) {
+	sin, cos := math.Sincos(2 * math.Pi * (float64(k/len(f.radii)) + shift) / float64(n))
+	q := f.squeeze
+	return math.Atan2(q*sin, cos), q / (cos*cos + q*q*sin*sin)
+}
+
 // follow traces the lines of sight at these b.
 func (f *diskFlux) follow(n int, shift float64) error {
 	b := f.bench
 	b.screen = b.screen[:0]
 	for k, impact := range f.at {
-		sin, cos := math.Sincos(2 * math.Pi * (float64(k/len(f.radii)) + shift) / float64(n))
+		s, _ := f.angle(k, n, shift)
+		sin, cos := math.Sincos(s)
 		b.screen = append(b.screen, [2]float64{impact * cos, impact * sin})
 	}
 	_, err := b.follow(geodesic.Want{Delay: true, Slope: true})
@@ -200,10 +230,10 @@ func (f *diskFlux) narrow(order int) bool {
 			off = 1/f.bench.at.R[j] - 1/r
 			beyond = off < 0
 		}
-		if math.Abs(off)*r < fluxRadius {
+		p := &f.bracket[k]
+		if math.Abs(off)*r < fluxRadius || p.lo == p.hi {
 			continue
 		}
-		p := &f.bracket[k]
 		if beyond {
 			p.hi, p.offHi = f.at[k], off
 			if p.kept < 0 {
@@ -229,29 +259,51 @@ func (f *diskFlux) narrow(order int) bool {
 	return done
 }
 
-// scaleTo scales a disk to a flux, Jy, at infinity.
-func (l *lighting) scaleTo(d *emit.Disk, jansky float64) error {
+// wholeFlux is the sum of DiskFlux over orders. That of the last disk is
+// kept: a hand that moves the field asks for it again and again.
+func (v *View) wholeFlux(d *emit.Disk, e scenes.Emitter, o scenes.Object) (total float64, err error) {
+	lastFlux.Lock()
+	defer lastFlux.Unlock()
+	e.TotalFlux = 0
+	key := fmt.Sprint(e, o, v.Observer, v.Plan, v.scene.Trace)
+	if e.Table == "" && key == lastFlux.key { // a file may have changed
+		return lastFlux.total, nil
+	}
+	orders, _, err := v.DiskFlux(d)
+	for _, flux := range orders {
+		total += flux
+	}
+	if err == nil {
+		lastFlux.key, lastFlux.total = key, total
+	}
+	return total, err
+}
+
+var lastFlux struct {
+	sync.Mutex
+	key   string
+	total float64
+}
+
+// scaleTo scales a disk to its total flux, at infinity.
+func (l *lighting) scaleTo(d *emit.Disk, e scenes.Emitter) error {
 	theta, ok := l.scene.ThetaG()
 	if !ok {
 		return errors.New("total_flux needs the angle of M")
 	}
 	v := &View{
-		Spacetime: l.object, Field: Field{Projection: Parallel},
+		scene: l.scene, Spacetime: l.object, Field: Field{Projection: Parallel},
 		Plan: geodesic.Plan{Tolerance: l.scene.Trace.Tolerance, MaxOrder: l.scene.Trace.MaxOrder},
 	}
 	var err error
 	if v.Observer, err = newObserver(l.scene.Observer); err != nil {
 		return err
 	}
-	orders, _, err := v.DiskFlux(d)
+	total, err := v.wholeFlux(d, e, l.scene.Object)
 	if err != nil {
 		return fmt.Errorf("total_flux: %w", err)
 	}
-	total := 0.0
-	for _, flux := range orders {
-		total += flux
-	}
 	side := theta / scenes.MicroarcsecondsPerRadian
-	d.Scale *= jansky * scenes.Jansky / (total * side * side)
+	d.Scale *= e.TotalFlux * scenes.Jansky / (total * side * side)
 	return nil
 }

@@ -197,7 +197,7 @@ func (l *lighting) disk(e scenes.Emitter) (*emit.Disk, error) {
 		return nil, fmt.Errorf("profile %q cannot be traced in this version", e.Profile)
 	}
 	if e.TotalFlux > 0 {
-		if err := l.scaleTo(d, e.TotalFlux); err != nil {
+		if err := l.scaleTo(d, e); err != nil {
 			return nil, err
 		}
 	}

@@ -225,7 +225,10 @@ func (b *builder) trace() {
 	without := func(effect string) bool { return !slices.Contains(effects.words, effect) }
 	t := &b.scene.Trace
 	t.NoBending, t.NoGravity, t.NoMotion = without(bending), without(gravity), without(motion)
+	scaled := func(e Emitter) bool { return e.TotalFlux > 0 }
 	switch o := b.scene.Observer; {
+	case t.NoBending && slices.ContainsFunc(b.scene.Emitters, scaled):
+		b.failAt(effects, Error{Problem: "total_flux is a flux of bent light", Allowed: "bending among the effects, or no emitter.total_flux"})
 	case t.NoBending && o.Motion != "static":
 		b.failAt(effects, Error{Problem: "without bending the observer must be at rest", Allowed: `observer.motion = "static", or bending among the effects`})
 	case t.NoGravity && o.Radius <= b.scene.Object.Horizon():

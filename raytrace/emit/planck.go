@@ -104,3 +104,33 @@ func (s *Surface) Tuned(hertz, spectrum float64) *Surface {
 	other.Scale *= spectrum
 	return &other
 }
+
+// Bolometric returns the disk with the light of all frequencies, σT⁴/π of a
+// blackbody, received with g⁴.
+func (d *Disk) Bolometric() *Disk {
+	other := *d
+	other.GPower = 4
+	if h := d.Thermal; h != nil {
+		other.Thermal = nil
+		other.Scale = StefanBoltzmann / math.Pi
+		if h.Kelvin {
+			other.Profile = fourth{d.profile()}
+		} else {
+			other.Scale *= h.Scale * h.Scale * h.Scale * h.Scale
+		}
+	}
+	return &other
+}
+
+// fourth is the fourth power of a profile.
+type fourth struct{ Profile }
+
+// Fill implements Profile.
+func (p fourth) Fill(r []float64, lit []bool, values []float64) {
+	p.Profile.Fill(r, lit, values)
+	for j, is := range lit {
+		if is {
+			values[j] = power(values[j], 4)
+		}
+	}
+}

@@ -169,3 +169,22 @@ func TestAreaElement(t *testing.T) {
 	}
 	near(t, "at the ISCO", hole.CircularGas().AreaElement(6), 6*math.Sqrt2, 1e-14)
 }
+
+// All the light of a blackbody disk is σT⁴/π g⁴, however its temperature is
+// given.
+func TestBolometric(t *testing.T) {
+	shine := func(d *Disk) float64 {
+		b := d.Bolometric()
+		value := []float64{0}
+		b.profile().Fill([]float64{9}, []bool{true}, value)
+		return value[0] * b.gain(0.5, 1)
+	}
+	want := 5.670374419e-8 / math.Pi * math.Pow(3e6, 4) / 16
+	byPower := &Disk{Index: 2, Thermal: &Thermal{Scale: 9e6, Colour: 1.7}} // T ∝ r^(-1/2)
+	near(t, "power", shine(byPower)/want, 1, 1e-9)
+	table, err := readTable(strings.NewReader("6,3e6\n12,3e6"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	near(t, "table", shine(&Disk{Profile: table, Thermal: &Thermal{Kelvin: true, Colour: 1.7}})/want, 1, 1e-9)
+}

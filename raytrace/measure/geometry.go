@@ -32,7 +32,7 @@ const rootTolerance = 1e-12
 func NewGeometry(v *raytrace.View) (*Geometry, error) {
 	object, ok := v.Spacetime.(*geodesic.Round)
 	if !ok {
-		return nil, cannot("the spacetime is not round")
+		return nil, cannot("paths are straight: bending is not among trace.effects")
 	}
 	o := v.Observer
 	switch {

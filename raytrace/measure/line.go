@@ -98,9 +98,7 @@ func bolometric(v *raytrace.View) *raytrace.View {
 	changed.Emitters = nil
 	for _, e := range v.Emitters {
 		if d, ok := e.(*emit.Disk); ok {
-			copied := *d
-			copied.GPower = 4
-			e = &copied
+			e = d.Bolometric()
 		}
 		changed.Emitters = append(changed.Emitters, e)
 	}
