@@ -21,10 +21,12 @@ fast: ## the same programs for processors from 2015 on (AVX2, FMA); 1 to 3 % fas
 	CGO_ENABLED=0 GOAMD64=v3 $(GO) build -trimpath -buildvcs=false -o bin/annulet-batch ./app/annulet-batch
 	GOAMD64=v3 $(GO) build -trimpath -buildvcs=false -tags $(TAGS) -o bin/annulet ./app/annulet
 
-peers: ## single paths in GSL and Boost odeint, then ours: PEERS=folder of the peers' programs
-	CGO_ENABLED=0 GOAMD64=v3 $(GO) build -o bin/annulet-batch ./app/annulet-batch
-	REPS=3 bash $(PEERS)/run.sh
-	taskset -c 1 bin/annulet-batch bench --only single_paths --json
+peers: ## single paths against GSL and Boost odeint at equal error: PEERS=folder of the peers' sources
+	mkdir -p bin/peers
+	gcc -O3 -march=native -o bin/peers/gsl $(PEERS)/gsl_bench.c -lgsl -lgslcblas -lm
+	g++ -O3 -march=native -std=c++17 -o bin/peers/odeint $(PEERS)/odeint_bench.cpp
+	cp $(PEERS)/ref.bin bin/peers/
+	CGO_ENABLED=0 GOAMD64=v3 ANNULET_PEERS=$(CURDIR)/bin/peers $(GO) test -run '^$$' -bench Peers -benchtime 5x ./geodesic
 
 large: build ## nanoseconds a pixel from 1 to 64 megapixels; time and memory of 16384 x 16384
 	$(GO) test -run '^$$' -bench Linear ./raytrace

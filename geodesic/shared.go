@@ -386,7 +386,8 @@ func (tb *OrbitTable) conclude(checked []tableCheck) {
 }
 
 // bothPastEnd says whether, where the shorter of two neighbouring orbits stops
-// being held, the other has ended too, so that no crossing is lost there.
+// being held, the other has ended too, so that no crossing is lost there. One
+// continued past infinity may have turned back since.
 func (tb *OrbitTable) bothPastEnd(row int) bool {
 	k := int(min(tb.last[row], tb.last[row+1]))
 	if k == 0 {
@@ -396,7 +397,7 @@ func (tb *OrbitTable) bothPastEnd(row int) bool {
 		return true
 	}
 	a, b := tb.nodes[row*tb.knots+k-1], tb.nodes[(row+1)*tb.knots+k-1]
-	past := func(n node) bool { return n.u >= tb.object.edge && n.w > 0 || n.u <= 0 && n.w < 0 }
+	past := func(n node) bool { return n.u >= tb.object.edge && n.w > 0 || n.u < 0 }
 	return past(a) && past(b)
 }
 

@@ -34,6 +34,7 @@ func sharedCases(t *testing.T) []sharedCase {
 		{"hole, falling at 1.6 M", schwarzschild, Observer{Radius: 1.6, Motion: Infall}, false},
 		{"hole, falling at 9 M", schwarzschild, Observer{Radius: 9, Motion: Infall}, false},
 		{"charged from infinity", charged, Observer{Radius: inf}, true},
+		{"charged from 50 M", charged, Observer{Radius: 50}, true},
 		{"charged from 6 M", charged, Observer{Radius: 6}, true},
 		{"star from infinity", star, Observer{Radius: inf}, true},
 		{"star from 50 M", star, Observer{Radius: 50}, true},
@@ -161,6 +162,25 @@ func compareCrossings(t *testing.T, what string, c sharedCase, tolerance float64
 			}
 			if math.Abs(b/bc-1) > 1e-9 {
 				t.Errorf("%s: order %d at %g M is invented", ray, got.Order[i], got.R[i])
+			}
+		}
+	}
+}
+
+// Every pair of neighbouring orbits about a hole is shared. An orbit continued past infinity
+// may turn back there, which is no reason to integrate.
+func TestNoGapInTheTable(t *testing.T) {
+	for _, charge := range []float64{0, 0.6, 0.99} {
+		hole := must(t)(NewHole(charge))
+		for _, radius := range []float64{2.5, 6, 20, 50, 1000, math.Inf(1)} {
+			tb, err := hole.SharedOrbits(context.Background(), Share{Observer: Observer{Radius: radius}, Tolerance: 1e-8, MaxOrder: 2})
+			if err != nil {
+				t.Fatal(err)
+			}
+			for _, g := range tb.gaps {
+				if !g.sound {
+					t.Errorf("charge %g, %g M: nothing is shared between v = %g and %g", charge, radius, g.v, g.v+g.dv)
+				}
 			}
 		}
 	}

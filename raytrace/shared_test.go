@@ -40,7 +40,14 @@ func TestSharedPlates(t *testing.T) {
 			samePlate(t, fmt.Sprintf("%s, %d workers", name, workers), shared, render(t, view(t, s), Options{Workers: workers}))
 		}
 		exact := render(t, v, Options{PathByPath: true})
-		if exact.Integrated != exact.Paths || (s.Object.Interior != "uniform" && s.Object.Kind != "shell") && shared.Integrated > shared.Paths/20 {
+		most := shared.Paths / 1000 // rays integrated after all
+		switch {
+		case s.Object.Interior == "uniform" || s.Object.Kind == "shell":
+			most = shared.Paths // those that pass through
+		case s.Object.Kind == "star":
+			most = shared.Paths / 20 // those that graze it
+		}
+		if exact.Integrated != exact.Paths || shared.Integrated > most {
 			t.Errorf("%s: %d and %d of %d paths integrated", name, exact.Integrated, shared.Integrated, exact.Paths)
 		}
 		bound := shared.WorstBound + exact.WorstBound
