@@ -5,6 +5,7 @@ import (
 	"runtime"
 	"sync"
 	"sync/atomic"
+	"time"
 
 	"annulet/app/desk/imaging"
 	"annulet/raytrace"
@@ -17,6 +18,7 @@ type sight struct {
 	shown  raytrace.Field // of the picture
 	layers []raytrace.Layer
 	kept   *keptPaths
+	moving *atomic.Bool // the hand is, and no picture was traced yet
 }
 
 func (s sight) options(report func(raytrace.Progress)) raytrace.Options {
@@ -24,10 +26,15 @@ func (s sight) options(report func(raytrace.Progress)) raytrace.Options {
 }
 
 func (s sight) Trace(ctx context.Context, coarsening int, report func(raytrace.Progress)) (*raytrace.Plate, error) {
-	if coarsening == 1 {
-		return s.kept.render(ctx, s.View, s.options(report))
+	o := s.options(report)
+	if s.moving.Swap(false) {
+		// toning and drawing the picture before take about as long
+		o.Workers = max(1, o.Workers-1)
 	}
-	return s.Coarsened(coarsening).Render(ctx, s.options(report))
+	if coarsening == 1 {
+		return s.kept.render(ctx, s.View, o)
+	}
+	return s.Coarsened(coarsening).Render(ctx, o)
 }
 
 func (s sight) Of() raytrace.Field    { return s.Field }
@@ -79,12 +86,16 @@ func workers() int {
 	return runtime.NumCPU()
 }
 
+// handRests is how long after a change the hand is taken to rest. Taste.
+const handRests = 300 * time.Millisecond
+
 // views makes each scene ready once, for the picture and the readings alike:
 // finding the width of an automatic field takes longer than a preview may.
 // Its methods run off the window's thread, on any goroutine.
 type views struct {
 	mu     sync.Mutex
-	serial int // of the order that latest is of, plus one
+	serial int       // of the order that latest is of, plus one
+	asked  time.Time // that order
 	latest sight
 	err    error
 }
@@ -96,12 +107,14 @@ func (v *views) of(o imaging.Order) (sight, error) {
 		latest, err := prepare(o)
 		if err == nil {
 			latest.kept = new(keptPaths)
+			latest.moving = new(atomic.Bool)
+			latest.moving.Store(o.Asked.Sub(v.asked) < handRests)
 			if v.latest.View != nil {
 				latest.Follow(v.latest.View)
 				latest.kept = v.latest.kept
 			}
 		}
-		v.latest, v.err = latest, err
+		v.latest, v.err, v.asked = latest, err, o.Asked
 		v.serial = o.Serial + 1
 	}
 	return v.latest, v.err

@@ -11,8 +11,8 @@ import (
 	"annulet/scenes"
 )
 
-// patience is how long a coarse picture that has become stale may still go
-// on. It is longer than a coarse picture takes when the pace is known, so a
+// patience is how long the first picture of an order may still go on when it
+// has become stale. It is longer than one takes when the pace is known, so a
 // hand that never rests still sees every picture that was begun.
 const patience = 3 * previewTime
 
@@ -93,10 +93,12 @@ type Maker struct {
 	show    func(Frame)           // called from one goroutine, in order
 	report  func(done, tiles int) // called from several; never more than ten times a second
 
+	patience time.Duration
+
 	mu     sync.Mutex
 	order  Order     // the latest
 	begun  int       // Serial of the order being traced or already traced
-	coarse time.Time // when the coarse picture being traced was begun; zero for none
+	first  time.Time // when the first picture of an order, being traced, was begun; zero for none
 	cancel context.CancelFunc
 	plate  *Frame // the latest traced, without Image; nil before the first
 
@@ -106,7 +108,7 @@ type Maker struct {
 // NewMaker returns a maker; Run starts it.
 func NewMaker(prepare Prepare, show func(Frame), report func(done, tiles int)) *Maker {
 	return &Maker{
-		prepare: prepare, show: show, report: report,
+		prepare: prepare, show: show, report: report, patience: patience,
 		begun:     -1,
 		traceWake: make(chan struct{}, 1),
 		toneWake:  make(chan struct{}, 1),
@@ -119,9 +121,9 @@ func (m *Maker) Ask(o Order) {
 	retone := o.Serial == m.order.Serial && m.plate != nil
 	m.order = o
 	if o.Serial != m.begun && m.cancel != nil {
-		// A coarse picture goes on for a while, or a hand that never
+		// An order's first picture goes on for a while, or a hand that never
 		// rests would see none; anything finer is stale at once.
-		if m.coarse.IsZero() || time.Since(m.coarse) > patience {
+		if m.first.IsZero() || time.Since(m.first) > m.patience {
 			m.cancel()
 		}
 	}
@@ -172,7 +174,7 @@ func (m *Maker) traceLatest(ctx context.Context, speed *pace) bool {
 	}
 	rungs := speed.rungs(view.Of().Columns, view.Of().Rows, time.Since(begun))
 	for k, coarsening := range rungs {
-		frame, err := m.traceRung(ctx, view, o, coarsening, k == 0 && len(rungs) > 1)
+		frame, err := m.traceRung(ctx, view, o, coarsening, k == 0)
 		switch {
 		case errors.Is(err, context.Canceled):
 			return ctx.Err() == nil
@@ -190,16 +192,16 @@ func (m *Maker) traceLatest(ctx context.Context, speed *pace) bool {
 	return false
 }
 
-// traceRung traces one picture; coarse says that newer orders must let it
+// traceRung traces one picture; first says that newer orders must let it
 // finish.
-func (m *Maker) traceRung(ctx context.Context, view View, o Order, coarsening int, coarse bool) (Frame, error) {
+func (m *Maker) traceRung(ctx context.Context, view View, o Order, coarsening int, first bool) (Frame, error) {
 	ctx, cancel := context.WithCancel(ctx)
 	defer cancel()
 	begun := time.Now()
 	m.mu.Lock()
-	m.cancel, m.coarse = cancel, time.Time{}
-	if coarse {
-		m.coarse = begun
+	m.cancel, m.first = cancel, time.Time{}
+	if first {
+		m.first = begun
 	} else if m.order.Serial != o.Serial {
 		cancel() // a newer order came between two rungs
 	}

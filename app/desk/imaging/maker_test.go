@@ -65,6 +65,7 @@ func start(t *testing.T) (*Maker, *bench, <-chan Frame) {
 	b := &bench{begun: make(chan int), release: make(chan struct{})}
 	frames := make(chan Frame, 16)
 	m := NewMaker(func(o Order) (View, error) { return benchView{b, o}, nil }, func(f Frame) { frames <- f }, nil)
+	m.patience = time.Hour // tests hold plates as long as they like
 	var running sync.WaitGroup
 	running.Go(func() { m.Run(ctx) })
 	t.Cleanup(func() { cancel(); running.Wait() })
@@ -74,7 +75,7 @@ func start(t *testing.T) (*Maker, *bench, <-chan Frame) {
 func TestCoarseThenFull(t *testing.T) {
 	m, b, frames := start(t)
 	m.Ask(order(1))
-	for k, want := range []int{4, 1} { // 0.58 s at the guessed speed, 60 ms wanted
+	for k, want := range []int{3, 1} { // 0.58 s at the guessed speed, 80 ms wanted
 		if got := <-b.begun; got != want {
 			t.Fatalf("plate %d has coarsening %d, want %d", k, got, want)
 		}
@@ -101,9 +102,20 @@ func TestStaleFullPlateIsCancelled(t *testing.T) {
 	}
 }
 
-// A hand that never rests must see pictures: a coarse plate that has been
-// begun is finished although newer orders have come.
-func TestCoarsePlateOutlivesNewOrders(t *testing.T) {
+// A hand that never rests must see pictures: an order's first plate that has
+// been begun is finished although newer orders have come, be it coarse or not.
+func TestFirstPlateOutlivesNewOrders(t *testing.T) {
+	t.Run("coarse", func(t *testing.T) { firstPlateOutlivesNewOrders(t, order) })
+	t.Run("full", func(t *testing.T) {
+		firstPlateOutlivesNewOrders(t, func(serial int) Order {
+			o := order(serial)
+			o.Columns, o.Rows = leastSide, leastSide
+			return o
+		})
+	})
+}
+
+func firstPlateOutlivesNewOrders(t *testing.T, order func(serial int) Order) {
 	m, b, frames := start(t)
 	m.Ask(order(1))
 	<-b.begun
@@ -153,7 +165,7 @@ func TestPace(t *testing.T) {
 	if got := p.rungs(100, 100, 0); !slices.Equal(got, []int{1}) {
 		t.Errorf("a small picture is made in %v", got)
 	}
-	p.note(1000*1000, 6*time.Second) // a hundred times the preview's time
+	p.note(1000*1000, 100*previewTime)
 	if got := p.rungs(1000, 1000, 0); !slices.Equal(got, []int{10, 3, 1}) {
 		t.Errorf("a slow picture is made in %v, want 10 3 1", got)
 	}

@@ -6,10 +6,10 @@ import (
 )
 
 const (
-	// previewTime is how long a coarse picture may take to be made ready
-	// and traced. Taste: with toning and drawing it is on the screen
-	// within a tenth of a second.
-	previewTime = 60 * time.Millisecond
+	// previewTime is how long the first picture may take to be made ready
+	// and traced. Taste: ten and more in a second, and a million pixels
+	// traced by one of two cores.
+	previewTime = 80 * time.Millisecond
 
 	// guessPerPixel is the speed assumed before anything was measured.
 	guessPerPixel = 1e-7 // seconds a pixel, all workers together
