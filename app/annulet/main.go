@@ -43,7 +43,7 @@ func open(args []string) int {
 	case len(args) == 1:
 		name = args[0]
 	}
-	doc, err := scenes.Load(name)
+	doc, called, err := desk.Load(name)
 	if err != nil {
 		hint := ""
 		if errors.Is(err, fs.ErrNotExist) {
@@ -56,6 +56,6 @@ func open(args []string) int {
 		fmt.Fprintf(os.Stderr, "annulet: %v, so there can be no window; without one: annulet render %s -o image.png\n", err, name)
 		return exitCouldNot
 	}
-	desk.Run(doc, name, os.Stderr)
+	desk.Run(doc, called, os.Stderr)
 	return 0
 }

@@ -1,17 +1,21 @@
 package desk
 
 import (
+	"path/filepath"
+	"strings"
+
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/storage"
 
+	"annulet/app/output"
 	"annulet/scenes"
 )
 
 // openNamed opens a scene file or a built-in scene. One that cannot be read
 // leaves the old scene in place and tells why above the picture.
 func (c *commands) openNamed(name string) {
-	doc, err := scenes.Load(name)
+	doc, name, err := Load(name)
 	if err != nil {
 		c.tell(err)
 		return
@@ -24,6 +28,27 @@ func (c *commands) openNamed(name string) {
 		c.used(path)
 	}
 	c.log.line("opened scene=%q", name)
+}
+
+// inFile begins the name of a scene that was found inside a picture or table:
+// like a built-in one it has no file of its own until it is saved.
+const inFile = "@"
+
+// Load reads a scene file, a built-in scene, or the scene inside any other
+// file that Annulet wrote, and returns what to call it. Paths in a scene found
+// inside a file count from that file's folder.
+func Load(name string) (doc *scenes.Document, called string, err error) {
+	if !output.Recoverable(name) {
+		doc, err = scenes.Load(name)
+		return doc, name, err
+	}
+	path := strings.TrimPrefix(name, inFile)
+	text, err := output.Recover(path)
+	if err != nil {
+		return nil, "", err
+	}
+	doc, err = scenes.Parse(strings.TrimSuffix(path, filepath.Ext(path))+".toml", text)
+	return doc, inFile + path, err
 }
 
 // tell shows an error above the picture.
@@ -86,7 +111,7 @@ func (c *commands) open() {
 			c.openKept(file.URI().Path())
 		}
 	}, c.window)
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".toml"}))
+	d.SetFilter(storage.NewExtensionFileFilter(append([]string{".toml"}, output.Extensions...)))
 	if here, err := storage.ListerForURI(storage.NewFileURI(workingFolder())); err == nil {
 		d.SetLocation(here)
 	}

@@ -13,11 +13,11 @@ import (
 func smallDisk(t *testing.T) string {
 	t.Helper()
 	if os.Geteuid() != 0 {
-		t.Skip("only root can mount a small disk")
+		t.Skip("NOT RUN: only root can mount a small disk")
 	}
 	folder := t.TempDir()
 	if err := syscall.Mount("tmpfs", folder, "tmpfs", 0, "size=256k"); err != nil {
-		t.Skip("this machine lets root mount nothing: ", err)
+		t.Skip("NOT RUN: this machine lets root mount nothing: ", err)
 	}
 	t.Cleanup(func() {
 		if err := syscall.Unmount(folder, 0); err != nil {
@@ -55,7 +55,7 @@ func TestReadOnlyDisk(t *testing.T) {
 		t.Fatal(err)
 	}
 	if err := syscall.Mount("", folder, "", syscall.MS_REMOUNT|syscall.MS_RDONLY, ""); err != nil {
-		t.Skip("no read-only mount here: ", err)
+		t.Skip("NOT RUN: no read-only mount here: ", err)
 	}
 	for _, p := range []string{path, filepath.Join(folder, "new.png")} {
 		if err := CheckWritable(p); !errors.Is(err, ErrReadOnly) {

@@ -153,8 +153,12 @@ func numericsCards(p Provenance) []files.Card {
 		{Key: "TOLERANC", Value: p.Tolerance, Comment: "of light paths, relative"},
 		{Key: "MAXORDER", Value: p.MaxOrder, Comment: "image orders are 0 to this"},
 	}, boundCards(p)...)
-	for _, line := range p.Lines()[2:] {
-		cards = append(cards, files.Card{Key: "HISTORY", Comment: line})
+	cards = append(cards, files.Card{Key: "HISTORY", Comment: NotIncludedLine(p.NotIncluded)})
+	for _, text := range p.Assumed {
+		cards = append(cards, files.Card{Key: "HISTORY", Comment: "Assumed: " + text + "."})
+	}
+	if p.Audit != "" {
+		cards = append(cards, files.Card{Key: "HISTORY", Comment: "Audit: " + p.Audit})
 	}
 	return append(cards, files.Card{Key: "HISTORY", Comment: "The scene that made this file is in the extension " + sceneUnit + "."})
 }

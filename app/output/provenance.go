@@ -71,8 +71,10 @@ func (p Provenance) JSON() string {
 func (p Provenance) Lines() []string {
 	lines := []string{
 		fmt.Sprintf("Annulet %s, light paths at a relative tolerance of %g", p.Version, p.Tolerance),
-		fmt.Sprintf("%d paths; worst bound on r %.1e relative, on swept angles %.1e rad", p.Paths, p.WorstBound, p.WorstAngle),
 		NotIncludedLine(p.NotIncluded),
+	}
+	if p.Paths > 0 {
+		lines = append(lines, fmt.Sprintf("%d paths; worst bound on r %.1e relative, on swept angles %.1e rad", p.Paths, p.WorstBound, p.WorstAngle))
 	}
 	for _, text := range p.Assumed {
 		lines = append(lines, "Assumed: "+text+".")
@@ -88,7 +90,7 @@ func (p Provenance) PNGTexts() []files.Text {
 	return []files.Text{
 		{Keyword: "Title", Value: p.Title},
 		{Keyword: "Software", Value: "Annulet " + p.Version},
-		{Keyword: "Comment", Value: p.Lines()[2]},
+		{Keyword: "Comment", Value: NotIncludedLine(p.NotIncluded)},
 		{Keyword: numericsKeyword, Value: p.JSON()},
 		{Keyword: sceneKeyword, Value: p.Scene},
 	}

@@ -11,6 +11,7 @@ import (
 	"io"
 	"os"
 	"path"
+	"slices"
 	"strconv"
 	"strings"
 	"unicode/utf8"
@@ -267,9 +268,8 @@ func recoverCSV(f io.Reader) ([]byte, error) {
 
 // Recoverable says by a name's extension whether Recover may know the file.
 func Recoverable(name string) bool {
-	switch strings.ToLower(path.Ext(name)) {
-	case ".fits", ".npz", ".png", ".tif", ".tiff", ".csv", ".ecsv":
-		return true
-	}
-	return false
+	return slices.Contains(Extensions, strings.ToLower(path.Ext(name)))
 }
+
+// Extensions are those of the files that Recover knows.
+var Extensions = []string{".fits", ".npz", ".png", ".tif", ".tiff", ".csv", ".ecsv"}

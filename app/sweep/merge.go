@@ -2,17 +2,18 @@ package sweep
 
 import (
 	"context"
-	"encoding/csv"
 	"errors"
 	"fmt"
 	"io"
 	"io/fs"
 	"os"
 	"path/filepath"
-	"strconv"
+	"slices"
 	"time"
 
 	"annulet/app/files"
+	"annulet/app/output"
+	"annulet/scenes"
 )
 
 // Merge writes what a sweep has come to so far: the manifest with the states
@@ -59,12 +60,9 @@ func Merge(ctx context.Context, dir string, m *Manifest) (Count, error) {
 // mergeClaim is no case's name: these begin with a digit.
 const mergeClaim = "merge"
 
-// tableName is the merged table.
-const tableName = "table.csv"
-
 // writeTable writes a row for every case: its name, what varies, its state,
 // and its columns; the union of all cases' columns in the order in which
-// they first come. Units stand in the header in brackets.
+// they first come.
 func (m *Manifest) writeTable(ctx context.Context, dir string, records []Record) error {
 	var keys []string
 	seen := map[string]bool{}
@@ -86,40 +84,38 @@ func (m *Manifest) writeTable(ctx context.Context, dir string, records []Record)
 			}
 		}
 	}
-	return files.Write(ctx, filepath.Join(dir, tableName), 0o666, func(w io.Writer) error {
-		out := csv.NewWriter(w)
-		header := append(append([]string{"case"}, keys...), "state")
-		for _, c := range columns {
-			if c.Unit != "" {
-				c.Name += " [" + c.Unit + "]"
-			}
-			header = append(header, c.Name)
+	t := output.Table{Columns: []output.Column{{Name: "case", Kind: output.Text}}}
+	for _, key := range keys {
+		t.Columns = append(t.Columns, output.Column{Name: key, Kind: output.Text, Text: "as in the scene file"})
+	}
+	t.Columns = append(t.Columns, output.Column{Name: "state", Kind: output.Text})
+	for _, c := range columns {
+		t.Columns = append(t.Columns, output.Column{Name: c.Name, Unit: c.Unit})
+	}
+	for k, r := range records {
+		row := make([]any, len(t.Columns))
+		row[0], row[1+len(keys)] = m.Cases[k].Name, string(m.Cases[k].State)
+		for _, s := range m.Cases[k].Set {
+			row[1+slices.Index(keys, s.Key)] = s.Value
 		}
-		if err := out.Write(header); err != nil {
+		for _, c := range r.Columns {
+			if c.Value != nil {
+				row[2+len(keys)+at[c.Name]] = *c.Value
+			}
+		}
+		t.Rows = append(t.Rows, row)
+	}
+	d, err := scenes.Parse(m.Name, []byte(m.Scene))
+	if err != nil {
+		return err
+	}
+	p := output.NewProvenance(d, m.Version, nil)
+	for name, write := range map[string]func(io.Writer, output.Provenance) error{"table.csv": t.WriteCSV, "table.ecsv": t.WriteECSV} {
+		if err := files.Write(ctx, filepath.Join(dir, name), 0o666, func(w io.Writer) error { return write(w, p) }); err != nil {
 			return err
 		}
-		for k, r := range records {
-			row := make([]string, len(header))
-			row[0], row[1+len(keys)] = m.Cases[k].Name, string(m.Cases[k].State)
-			for _, s := range m.Cases[k].Set {
-				for i, key := range keys {
-					if key == s.Key {
-						row[1+i] = s.Value
-					}
-				}
-			}
-			for _, c := range r.Columns {
-				if c.Value != nil {
-					row[2+len(keys)+at[c.Name]] = strconv.FormatFloat(*c.Value, 'g', -1, 64)
-				}
-			}
-			if err := out.Write(row); err != nil {
-				return err
-			}
-		}
-		out.Flush()
-		return out.Error()
-	})
+	}
+	return nil
 }
 
 // sweepUp removes the temporary files that killed processes left and, last,

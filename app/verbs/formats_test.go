@@ -96,3 +96,34 @@ func TestFITSInStrips(t *testing.T) {
 		t.Errorf("%+v", got)
 	}
 }
+
+// A table goes to a file with its scene; stdout keeps the bare rows.
+func TestProbeToFile(t *testing.T) {
+	folder(t)
+	plain := do(t, "", "probe", "small.toml", "--at", "-8,0", "--at", "0,5")
+	for _, name := range []string{"a.csv", "a.ecsv"} {
+		if got := do(t, "", "probe", "small.toml", "--at", "-8,0", "--at", "0,5", "-o", name); got.code != exitDone || got.out != name+"\n" {
+			t.Fatalf("%+v", got)
+		}
+		file, err := os.ReadFile(name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var rows []string
+		for line := range strings.Lines(string(file)) {
+			if !strings.HasPrefix(line, "#") {
+				rows = append(rows, line)
+			}
+		}
+		if strings.Join(rows, "") != plain.out {
+			t.Errorf("%s: rows %q, want %q", name, rows, plain.out)
+		}
+		small, err := os.ReadFile("small.toml")
+		if got := do(t, "", "scene", "recover", name); err != nil || got.out != string(small) {
+			t.Errorf("%s: recovered %q (%v)", name, got.out, err)
+		}
+	}
+	if got := do(t, "", "probe", "small.toml", "--at", "0,5", "-o", "a.fits"); got.code != exitUsage {
+		t.Errorf("%+v", got)
+	}
+}

@@ -19,6 +19,7 @@ type probing struct {
 	set   []string
 	at    []string
 	table string
+	out   string
 	json  bool
 }
 
@@ -43,6 +44,7 @@ func newProbe(s streams) *cobra.Command {
 	f.StringArrayVar(&o.at, "at", nil, "a line of sight, `ALPHA,BETA`; repeatable")
 	f.StringVar(&o.table, "table", "", "CSV `FILE` with the columns alpha,beta, - for standard input")
 	addSet(f, &o.set)
+	f.StringVarP(&o.out, "output", "o", "", "CSV or ECSV `FILE` for the rows, with units and the scene")
 	f.BoolVar(&o.json, "json", false, "print one JSON document on stdout")
 	return cmd
 }
@@ -135,6 +137,11 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	if err != nil {
 		return err
 	}
+	if o.out != "" {
+		if err := checkTable(o.out); err != nil {
+			return err
+		}
+	}
 	view, err := raytrace.NewViewIn(document.Scene(), document.Dir())
 	if err != nil {
 		return usage{err}
@@ -162,6 +169,14 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	}
 	if len(rows) == 0 {
 		s.note("no line of sight meets anything that shines")
+	}
+	if o.out != "" {
+		if err := writeTable(cmd.Context(), o.out, probeTable(rows, unit), output.NewProvenance(document, Version, nil)); err != nil {
+			return err
+		}
+		s.note("%s", output.NotIncludedLine(output.NotIncludedIn(document.Scene())))
+		_, err := fmt.Fprintln(s.out, o.out)
+		return err
 	}
 	if o.json {
 		if rows == nil {
@@ -204,4 +219,22 @@ func probeRows(readings []raytrace.Reading, points, inside [][2]float64) []probe
 		})
 	}
 	return rows
+}
+
+// probeTable is the same for a file; screen is the unit of alpha and beta.
+func probeTable(rows []probeRow, screen string) output.Table {
+	t := output.Table{Columns: []output.Column{
+		{Name: "alpha", Unit: screen, Text: "screen coordinate, to the right"}, {Name: "beta", Unit: screen, Text: "screen coordinate, up"},
+		{Name: "order", Kind: output.Int, Text: "image order"}, {Name: "r", Unit: "M", Text: "circumferential radius"},
+		{Name: "phi_deg", Unit: "deg", Text: "azimuth about the disk axis"}, {Name: "ell", Unit: "M", Text: "Lz/E of the light"},
+		{Name: "g", Text: "redshift factor nu_obs/nu_em"}, {Name: "mu", Text: "cosine of the emission angle in the gas frame"},
+		{Name: "delay", Unit: "M", Text: "t_obs - t_em - r*(r_obs)"}, {Name: "intensity", Text: "received, relative to the emitter's own unit"},
+	}}
+	for _, r := range rows {
+		t.Rows = append(t.Rows, []any{
+			float64(r.Alpha), float64(r.Beta), r.Order, float64(r.R), float64(r.PhiDeg), float64(r.Ell),
+			float64(r.G), float64(r.Mu), float64(r.Delay), float64(r.Intensity),
+		})
+	}
+	return t
 }
