@@ -416,3 +416,30 @@ func TestSpotLightCurve(t *testing.T) {
 		}
 	}
 }
+
+// Several frequencies, and several times, from one trace: what is shaded again
+// is what would be traced anew, bit for bit.
+func TestOneTrace(t *testing.T) {
+	s := hotDisk(40)
+	s.Trace.MaxOrder = 1
+	s.Field.Frequency = append(s.Field.Frequency, 2*s.Field.Frequency[0])
+	s.Emitters = append(s.Emitters, scenes.Emitter{Kind: "spot", Radius: 10, Size: 0.5, Contrast: 1})
+	v := view(t, s)
+	traced, err := v.Trace(context.Background(), Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	tuned, err := v.WithFrequency(1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for what, w := range map[string]*View{"first": v, "second": tuned, "later": tuned.AtTime(30)} {
+		plate, err := traced.Shade(context.Background(), w, Options{})
+		if err != nil {
+			t.Fatal(what, err)
+		}
+		samePlate(t, what, plate, render(t, w, Options{}))
+	}
+	s.Field.Frequency = s.Field.Frequency[1:] // as the only one
+	samePlate(t, "only", render(t, tuned, Options{}), render(t, view(t, s), Options{}))
+}

@@ -14,6 +14,14 @@ func (s Scene) SecondsPerM() (float64, bool) {
 	return metres / SpeedOfLight, ok
 }
 
+// ObservedSecondsPerM returns how long a time M of the object lasts for an
+// observer far away, (1+z) GM/c³ in seconds; false when the scene gives no
+// mass.
+func (s Scene) ObservedSecondsPerM() (float64, bool) {
+	seconds, ok := s.SecondsPerM()
+	return seconds * (1 + s.Object.Redshift), ok
+}
+
 // ThetaG returns the angle GM/(c² D) in microarcseconds: the scene's theta_g,
 // or that of its mass and distance; false when it gives neither.
 func (s Scene) ThetaG() (uas float64, ok bool) {

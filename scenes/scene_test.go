@@ -223,3 +223,16 @@ colour_correction = 2
 		t.Errorf("%+v, notes\n%s", e, notes)
 	}
 }
+
+// A cosmological redshift makes observed times longer: 3 s at z = 0.5 are 2 s
+// there.
+func TestRedshiftedTimes(t *testing.T) {
+	s := parse(t, top+"[object]\nmass = 10\nredshift = 0.5\n[time]\nend = \"3 s\"\nstep = \"1 s\"").Scene()
+	const perM = 10 * 4.92549094764127e-6 // GM/c³, s
+	near(t, "end", s.Time.End, 2/perM, 1e-9/perM)
+	if frames := s.Time.Frames(); len(frames) != 4 || frames[3] != s.Time.Start+3*s.Time.Step {
+		t.Errorf("frames %v", frames)
+	}
+	seconds, _ := s.ObservedSecondsPerM()
+	near(t, "M", seconds, 1.5*perM, 1e-15)
+}

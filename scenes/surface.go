@@ -37,7 +37,7 @@ func (b *builder) slow(r reading, period float64) {
 	travel := 2 * math.Pi * radius / math.Sqrt(1-2/radius) // M
 	if speed := travel / period; speed > fastestEquator {
 		least := formatShort(travel/fastestEquator) + " M"
-		if seconds, ok := b.scene.SecondsPerM(); ok {
+		if seconds, ok := b.scene.ObservedSecondsPerM(); ok {
 			least += " (" + formatShort(travel/fastestEquator*seconds) + " s)"
 		}
 		b.failAt(r, Error{Problem: "rotation is stated for slow rotation only, and this equator would move at " + formatShort(speed) + " c",

@@ -102,11 +102,7 @@ func (d *Disk) shine(r []float64, light *Light) {
 
 // gain is received over emitted intensity, other than a blackbody's.
 func (d *Disk) gain(g, mu float64) float64 {
-	gain := power(g, d.GPower) * d.Angle.Intensity(mu)
-	if d.Scale != 0 {
-		gain *= d.Scale
-	}
-	return gain
+	return power(g, d.GPower) * d.Angle.Intensity(mu) * orOne(d.Scale)
 }
 
 // profile is the profile also of a power law.

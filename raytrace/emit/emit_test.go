@@ -281,7 +281,12 @@ func TestShadeAllocatesNothing(t *testing.T) {
 	}
 	white := newPicture(64, 32, make([]float32, 64*32))
 	for name, shade := range map[string]func(*geodesic.Rays, *geodesic.Crossings, *Pixels, *Light){
-		"disk":    (&Disk{Gas: star.CircularGas(), Inner: 6, Outer: 20, Index: 3, GPower: 4, Angle: Brightened}).Shade,
+		"disk": (&Disk{Gas: star.CircularGas(), Inner: 6, Outer: 20, Index: 3, GPower: 4, Angle: Brightened}).Shade,
+		"accretion disk": (&Disk{Gas: star.CircularGas(), Inner: 6, Outer: 20, Profile: NovikovThorne{}, Depth: 0.5,
+			Thermal: &Thermal{Scale: 1e8, Colour: 1.7, Frequency: 1e17, Brightness: 1}}).Shade,
+		"broken":  (&Disk{Gas: star.CircularGas(), Inner: 6, Outer: 20, Profile: NewBrokenPower([]float64{6, 3}, []float64{9}), GPower: 4}).Shade,
+		"without": (&Disk{Gas: star.StaticGas(), Inner: 6, Outer: 20, Without: Without{Gravity: true, Bending: true, ObserverLapse: 1}}).Shade,
+		"spot":    NewSpot(Disk{Gas: star.CircularGas(), Inner: 6, Outer: 20, GPower: 4}, 9, 0, 3, 1, 5).Shade,
 		"surface": (&Surface{Radius: 5, Brightness: 1, Spin: 0.01, GPower: 4, Caps: []Cap{NewCap(40, 0, 20, 3)}}).Shade,
 		"grid":    NewSky(NewGrid(), 4).Shade,
 		"stars":   NewSky(RandomStars(1), 4).Shade,

@@ -60,6 +60,9 @@ func (h *Thermal) Temperature(value float64) float64 {
 // received is the intensity that an observer sees, W m⁻² Hz⁻¹ sr⁻¹, of gas
 // at effective temperature t with redshift factor g.
 func (h *Thermal) received(t, g float64) float64 {
+	if g <= 0 { // at the horizon
+		return 0
+	}
 	f2 := h.Colour * h.Colour
 	return h.Brightness * g * g * g * BlackBody(h.Frequency/g, h.Colour*t) / (f2 * f2)
 }
@@ -74,16 +77,21 @@ func (h *Thermal) tuned(hertz float64) *Thermal {
 	return &other
 }
 
+// orOne is a scale of which 0 means 1.
+func orOne(scale float64) float64 {
+	if scale == 0 {
+		return 1
+	}
+	return scale
+}
+
 // Tuned returns the disk at another frequency, Hz before any cosmological
 // redshift; spectrum is by how much a spectrum that is not a blackbody's is
 // brighter there.
 func (d *Disk) Tuned(hertz, spectrum float64) *Disk {
 	other := *d
 	other.Thermal = d.Thermal.tuned(hertz)
-	if other.Scale == 0 {
-		other.Scale = 1
-	}
-	other.Scale *= spectrum
+	other.Scale = orOne(other.Scale) * spectrum
 	return &other
 }
 
@@ -98,10 +106,7 @@ func (s *Spot) Tuned(hertz, spectrum float64) *Spot {
 func (s *Surface) Tuned(hertz, spectrum float64) *Surface {
 	other := *s
 	other.Thermal = s.Thermal.tuned(hertz)
-	if other.Scale == 0 {
-		other.Scale = 1
-	}
-	other.Scale *= spectrum
+	other.Scale = orOne(other.Scale) * spectrum
 	return &other
 }
 

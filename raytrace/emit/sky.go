@@ -66,6 +66,7 @@ func (s *Sky) Reads() Reads { return Reads{Place: true} }
 func (s *Sky) Shade(rays *geodesic.Rays, at *geodesic.Crossings, pixels *Pixels, light *Light) {
 	light.Resize(len(at.R))
 	var f footprint
+	scale := orOne(s.Scale)
 	for k := range rays.Lambda {
 		for j := at.Start[k]; j < at.Start[k+1]; j++ {
 			if at.Surface[j] != geodesic.Sky {
@@ -86,10 +87,7 @@ func (s *Sky) Shade(rays *geodesic.Rays, at *geodesic.Crossings, pixels *Pixels,
 			}
 			light.Lit[j], light.Passes[j] = true, 0
 			light.G[j], light.Mu[j] = g, math.NaN()
-			light.Intensity[j] = seen * power(g, s.GPower)
-			if s.Scale != 0 {
-				light.Intensity[j] *= s.Scale
-			}
+			light.Intensity[j] = seen * power(g, s.GPower) * scale
 		}
 	}
 }

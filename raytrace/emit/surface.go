@@ -57,10 +57,7 @@ func (s *Surface) Shade(rays *geodesic.Rays, at *geodesic.Crossings, _ *Pixels, 
 	if s.Clockwise {
 		spin = -spin
 	}
-	scale := s.Scale
-	if scale == 0 {
-		scale = 1
-	}
+	scale := orOne(s.Scale)
 	across := 1.0 // of λ, see Without.redshift
 	if s.Without.Bending {
 		across = s.Without.ObserverLapse / lapse

@@ -97,6 +97,7 @@ func TestThermal(t *testing.T) {
 	near(t, "flux", total/(StefanBoltzmann*1e28), 1, 1e-6)
 	h.Frequency = 3e17
 	near(t, "shifted", h.received(1e7, 0.6)/(BlackBody(3e17, 1.7*0.6e7)/math.Pow(1.7, 4)), 1, 1e-12)
+	near(t, "from the horizon", h.received(1e7, 0), 0, 0)
 	near(t, "temperature of a profile", h.Temperature(16), 2e7, 1e-8)
 }
 
