@@ -3,6 +3,7 @@ package output
 import (
 	"io"
 	"math"
+	"slices"
 	"strings"
 
 	"annulet/app/files"
@@ -32,10 +33,15 @@ func NewFITS(w io.WriterAt, v *raytrace.View, s scenes.Scene, layers []raytrace.
 	f := &FITS{images: []fitsImage{{raytrace.Intensity, -1}}}
 	columns, rows := v.Field.Columns, v.Field.Rows
 	wcs := worldCoordinates(v.Field, s)
-	units := []files.HDU{{Columns: columns, Rows: rows, Cards: append(append(wcs, sceneCards(s)...), numericsCards(p)...)}}
+	light := v.Radiometry()
+	primary := slices.Concat(brightness(light, s), wcs, sceneCards(s), calibration(light), numericsCards(p))
+	units := []files.HDU{{Columns: columns, Rows: rows, Cards: primary}}
 	for _, l := range kept(layers) {
 		for order := range v.Plan.MaxOrder + 1 {
-			cards := append([]files.Card{}, wcs...)
+			cards := slices.Clone(wcs)
+			if l.Layer == raytrace.Intensity {
+				cards = append(cards, brightness(light, s)...)
+			}
 			if l.Unit != "" {
 				cards = append(cards, files.Card{Key: "BUNIT", Value: l.Unit})
 			}
@@ -76,9 +82,28 @@ func (f *FITS) Close(p Provenance) error {
 	return f.file.Close()
 }
 
+// brightness is the unit of intensities, where they are absolute; relative
+// ones have none. Units as in section 4.3 of the FITS standard.
+func brightness(r raytrace.Radiometry, s scenes.Scene) []files.Card {
+	if s.Radiance() == scenes.Relative {
+		return nil
+	}
+	return []files.Card{{Key: "BUNIT", Value: r.Plate(), Comment: "specific or bolometric intensity, observed"}}
+}
+
+// calibration says in words what intensities are, and their flux density.
+func calibration(r raytrace.Radiometry) []files.Card {
+	cards := []files.Card{{Key: "INTENSIT", Value: r.Plate(), Comment: "unit of intensities"}}
+	if perPixel, err := r.In(raytrace.JyPerPixel); err == nil {
+		cards = append(cards, files.Card{Key: "JYPERPIX", Value: perPixel(1), Comment: "[Jy/pixel] of an intensity of 1"})
+	}
+	return cards
+}
+
 // worldCoordinates places the pixels: in degrees on the sky about the object,
-// east left, where the scene gives an angular scale, else in M; and always by
-// the screen coordinates, as a second description A. Source: Greisen &
+// east left, where the scene gives an angular scale, else in M; with a scale
+// also by the screen coordinates in M as description A, and by offsets in
+// microarcseconds as B. Source: Greisen &
 // Calabretta, A&A 395, 1061 (2002), and Calabretta & Greisen, A&A 395, 1077
 // (2002).
 func worldCoordinates(f raytrace.Field, s scenes.Scene) []files.Card {
@@ -123,7 +148,12 @@ func worldCoordinates(f raytrace.Field, s scenes.Scene) []files.Card {
 		files.Card{Key: "WCSNAME", Value: "sky", Comment: "offsets from the object, put at RA = Dec = 0"},
 		files.Card{Key: "UASPIX", Value: across * theta, Comment: "[uas] side of a pixel"},
 		files.Card{Key: "UASM", Value: theta, Comment: "[uas] GM/(c2 D)"})
-	return append(cards, screen("A")...)
+	// without CUNIT: the standard has no microarcsecond, and readers refuse it
+	offsets := axes("B", "EAST", "NORTH", "", -across*theta, up*theta)
+	offsets = append(offsets,
+		files.Card{Key: "PC1_1B", Value: cos}, files.Card{Key: "PC1_2B", Value: -sin}, files.Card{Key: "PC2_1B", Value: sin}, files.Card{Key: "PC2_2B", Value: cos},
+		files.Card{Key: "WCSNAMEB", Value: "uas", Comment: "[uas] offsets from the object, tangent plane"})
+	return slices.Concat(cards, screen("A"), offsets)
 }
 
 // sceneCards tell the scene in keywords, for those who do not read its text.

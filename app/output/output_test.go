@@ -223,10 +223,12 @@ with fits.open(sys.argv[1], checksum=True) as f:
     f.verify("exception")
     sky = WCS(f[0].header)
     screen = WCS(f[0].header, key="A")
+    offsets = WCS(f[0].header, key="B")
     ra, dec = sky.pixel_to_world_values(10.0, 20.0)
     e, n = sky.pixel_to_world_values(19.0, 20.0)
     print(json.dumps({"total": f[0].data.tobytes().hex(), "delay": f["DELAY", 2].data.tobytes().hex(),
         "names": [x.name for x in f], "ra": (float(ra) + 180) % 360 - 180, "dec": float(dec), "screen": [float(x) for x in screen.pixel_to_world_values(10.0, 20.0)],
+        "offsets": [float(x) for x in offsets.pixel_to_world_values(10.0, 20.0)],
         "bound": f[0].header["RBOUND"], "uas": f[0].header["UASM"], "unit": f["PHI", 1].header["BUNIT"]}))
 `, paths["fits"])
 	var got struct {
@@ -234,7 +236,7 @@ with fits.open(sys.argv[1], checksum=True) as f:
 		Names              []string
 		RA, Dec, Bound     float64
 		UAS                float64
-		Screen             []float64
+		Screen, Offsets    []float64
 	}
 	if err := json.Unmarshal([]byte(out), &got); err != nil {
 		t.Fatalf("%v: %s", err, out)
@@ -254,6 +256,8 @@ with fits.open(sys.argv[1], checksum=True) as f:
 	theta := 5.1243315 * (4e6 / 4.297e6) * (8277. / 8000)
 	near(t, "GM/(c² D)", got.UAS, theta, 1e-6)
 	sin, cos := math.Sincos(math.Pi / 6)
+	near(t, "east, uas", got.Offsets[0], got.UAS*(beta*sin-alpha*cos), 1e-10)
+	near(t, "north, uas", got.Offsets[1], got.UAS*(beta*cos+alpha*sin), 1e-10)
 	const uas = 3600e6
 	near(t, "east, uas", got.RA*uas, theta*(beta*sin-alpha*cos), 1e-3) // a float64 next to 360 deg tells no less
 	near(t, "north, uas", got.Dec*uas, theta*(beta*cos+alpha*sin), 1e-5)
@@ -390,5 +394,59 @@ print(t.colnames, t["name"][2])
 `, paths["csv"])
 	if got := strings.TrimSpace(out); got != "['r', 'angle', 'order', 'name'] d" {
 		t.Errorf("CSV: %s", got)
+	}
+}
+
+// Absolute intensities have a unit that astropy knows, and the flux density in
+// the file is that of the scene: 0.6 Jy over the whole image, at 230 GHz.
+func TestFITSBrightness(t *testing.T) {
+	text := strings.Replace(trial, "kind = \"disk\"", `kind = "disk"
+light = "monochromatic"
+total_flux = "0.6 Jy"`, 1)
+	text = strings.Replace(text, `center = ["1 M", "-0.5 M"]`, `frequency = ["230 GHz"]`, 1)
+	text = strings.Replace(text, `width  = "30 M"`, `width  = "60 M"`, 1)
+	text = strings.Replace(text, "pixels = [40, 30]", "pixels = [240, 240]", 1)
+	d, v := load(t, text)
+	plate, err := v.Render(context.Background(), raytrace.Options{})
+	if err != nil {
+		t.Fatal(err)
+	}
+	p := NewProvenance(d, "0.0", plate)
+	path := filepath.Join(t.TempDir(), "a.fits")
+	err = files.WriteAt(context.Background(), path, 0o666, func(w io.WriterAt) error {
+		f, err := NewFITS(w, v, d.Scene(), []raytrace.Layer{raytrace.Intensity}, p)
+		if err != nil {
+			return err
+		}
+		if err := f.Put(plate, 0); err != nil {
+			return err
+		}
+		return f.Close(p)
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if out := foreign(t, "fitsverify", "-q", path); !strings.Contains(out, "verification OK") {
+		t.Error(out)
+	}
+	out := python(t, "astropy", `
+import sys, json, numpy
+from astropy.io import fits
+import astropy.units as u
+with fits.open(sys.argv[1]) as f:
+    h = f[0].header
+    unit = u.Unit(h["BUNIT"], format="fits")
+    side = (h["UASPIX"] * u.uas) ** 2
+    sum = f[0].data.astype("f8").sum() * unit * side
+    print(json.dumps([sum.to(u.Jy).value, float(f[0].data.astype("f8").sum() * h["JYPERPIX"]), h["FREQ"], f["INTENSITY", 1].header["BUNIT"] == h["BUNIT"]]))
+`, path)
+	var got []any
+	if err := json.Unmarshal([]byte(out), &got); err != nil || len(got) != 4 {
+		t.Fatalf("%v: %s", err, out)
+	}
+	near(t, "flux by BUNIT, Jy", got[0].(float64), 0.6, 0.006) // a sum over pixels of 1/4 M
+	near(t, "flux by JYPERPIX, Jy", got[1].(float64), got[0].(float64), 1e-9)
+	if got[2] != 230e9 || got[3] != true {
+		t.Errorf("%v", got)
 	}
 }

@@ -101,10 +101,16 @@ func newRender(s streams) *cobra.Command {
 			"phi (deg), delay (M), mu, temperature (K: the effective one of a\n" +
 			"blackbody disk); --limits are in these units. --unit converts the intensity of a\n" +
 			"picture, if the scene says how bright it is. Images too large for the memory go to\n" +
-			"PNG and FITS in strips.",
+			"PNG and FITS in strips.\n\n" +
+			"A name with %04d in it writes a file for every time of the scene (time.start to\n" +
+			"time.end), numbered from 0, each with the scene of its own time; the colours have\n" +
+			"the same limits in all. A movie is then made with\n" +
+			"  ffmpeg -framerate 25 -i frame-%04d.png -c:v libx264 -pix_fmt yuv420p movie.mp4\n" +
+			"which wants even numbers of pixels.",
 		Example: "  " + programName() + " render @first-light -o first-light.png\n" +
 			"  " + programName() + " render scene.toml --set observer.inclination=75deg --layer g --order 0 -o g.png\n" +
-			"  " + programName() + " render scene.toml --keep intensity,g -o scene.fits -o scene.npz",
+			"  " + programName() + " render scene.toml --keep intensity,g -o scene.fits -o scene.npz\n" +
+			"  " + programName() + " render @late-twin -o frame-%04d.png",
 		Args: takes(1, "one SCENE"),
 		RunE: func(cmd *cobra.Command, args []string) error { return render(cmd, s, o, args[0]) },
 	}
@@ -319,7 +325,18 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	if p.order > scene.Trace.MaxOrder {
 		return refuse("--order %d: the scene follows orders up to %d (trace.max_order)", p.order, scene.Trace.MaxOrder)
 	}
-	if err := checkOutputs(o.out, scenePath); err != nil {
+	movie, err := isMovie(o.out)
+	if err != nil {
+		return err
+	}
+	if frames := scene.Time.Frames(); movie && len(frames) == 1 {
+		return refuse("-o %s asks for a movie, and the scene has one time only; needed: time.end", o.out[0])
+	}
+	written := o.out
+	if movie {
+		written = framePaths(o.out, 0)
+	}
+	if err := checkOutputs(written, scenePath); err != nil {
 		return err
 	}
 	data, err := output.ParseLayers(o.keep)
@@ -347,7 +364,12 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	}
 	begun := time.Now()
 	job := renderJob{s: s, view: view, picture: p, document: document, options: raytrace.Options{Workers: o.workers}, data: data, hold: holdBytes, audit: audited}
-	plate, err := job.write(cmd.Context(), o.out)
+	var plate *raytrace.Plate
+	if movie {
+		plate, written, err = job.writeMovie(cmd.Context(), o.out)
+	} else {
+		plate, err = job.write(cmd.Context(), o.out)
+	}
 	if err != nil {
 		return err
 	}
@@ -358,12 +380,12 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 		plate.Columns, plate.Rows, plate.Paths, plate.WorstBound, time.Since(begun).Seconds())
 	s.note("%s", output.NotIncludedLine(output.NotIncludedIn(scene)))
 	if !o.json {
-		_, err := fmt.Fprintln(s.out, strings.Join(o.out, "\n"))
+		_, err := fmt.Fprintln(s.out, strings.Join(written, "\n"))
 		return err
 	}
 	report := renderReport{
 		Units:  map[string]string{"pixels": "count", "paths": "count", "worst_bound": "relative, on r", "limits": p.kind.unit},
-		Files:  o.out,
+		Files:  written,
 		Pixels: [2]int{plate.Columns, plate.Rows}, Paths: plate.Paths, WorstBound: number(plate.WorstBound),
 		Layer: p.kind.word, Curve: p.tone.Curve.String(), Map: p.colours.Name(),
 		Limits:      [2]number{number(low), number(high)},
