@@ -150,7 +150,7 @@ func newRoot(s streams) *cobra.Command {
 	root.AddCommand(
 		newTrace(s), newProbe(s), newRender(s), newScene(s),
 		newStations(s), newSweep(s), newBench(s), newAudit(s),
-		newRings(s), newLine(s), newCut(s), newVisibility(s), newCompare(s),
+		newRings(s), newLine(s), newCut(s), newVisibility(s), newCompare(s), newSpectrum(s), newLightcurve(s),
 		newVersion(s), newCompletion(s), newMan(s),
 	)
 	return root

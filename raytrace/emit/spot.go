@@ -57,8 +57,11 @@ func NewSpot(disk Disk, radius, azimuth, size, contrast, reach float64) *Spot {
 // 5 sigmas.
 const faintest = 12.5
 
-// Outer is the largest radius that the spot reaches, M.
+// Outer is the largest radius that the spot reaches, M, and Inner the least.
 func (s *Spot) Outer() float64 { return s.disk.Outer }
+
+// Inner: see Outer.
+func (s *Spot) Inner() float64 { return s.disk.Inner }
 
 // Reads implements what raytrace asks of an emitter.
 func (s *Spot) Reads() Reads { return Reads{Place: true, KR: s.disk.Reads().KR, Delay: true} }

@@ -183,3 +183,24 @@ func disks(v *raytrace.View) (found []*emit.Disk, at []int) {
 	}
 	return found, at
 }
+
+// rims returns between which radii an emitter lies on the disk plane.
+func rims(e raytrace.Emitter) (inner, outer float64, ok bool) {
+	switch e := e.(type) {
+	case *emit.Disk:
+		return e.Inner, e.Outer, true
+	case *emit.Spot:
+		return e.Inner(), e.Outer(), true
+	}
+	return 0, 0, false
+}
+
+// flats returns the places of the emitters of the disk plane.
+func flats(v *raytrace.View) (at []int) {
+	for k, e := range v.Emitters {
+		if _, _, flat := rims(e); flat {
+			at = append(at, k)
+		}
+	}
+	return at
+}

@@ -76,8 +76,8 @@ func newSampler(ctx context.Context, v *raytrace.View, delay bool, o Options) (*
 		return nil, err
 	}
 	found, _ := disks(v)
-	if len(found) == 0 {
-		return nil, cannot("the scene has no disk")
+	if len(flats(v)) == 0 {
+		return nil, cannot("the scene has neither disk nor spot")
 	}
 	o = o.filled()
 	s := &sampler{g: g, view: v, parallel: v.Field.IsParallel(), delay: delay, options: o}
@@ -145,20 +145,39 @@ func (s *sampler) area(b1, b2, turn float64) float64 {
 	return turn * (x2 - x1) * (x2 + x1) / (c1 + c2)
 }
 
+// circles between which the patches of a disk lie.
+func (s *sampler) circles(ctx context.Context, disk, order int) (*circles, error) {
+	inner, outer, _ := rims(s.view.Emitters[disk])
+	inner = max(inner, s.g.object.Edge())
+	r := make([]float64, s.options.Cells+1)
+	for k := range r {
+		r[k] = inner * math.Pow(outer/inner, float64(k)/float64(s.options.Cells))
+	}
+	r[len(r)-1] = outer
+	return s.g.newCircles(ctx, order, r)
+}
+
 // image returns the patches of one disk (a place among the view's emitters)
 // in one order, line by line.
 func (s *sampler) image(ctx context.Context, disk, order int) ([][]patch, error) {
-	d := s.view.Emitters[disk].(*emit.Disk)
-	r := make([]float64, s.options.Cells+1)
-	for k := range r {
-		r[k] = d.Inner * math.Pow(d.Outer/d.Inner, float64(k)/float64(s.options.Cells))
-	}
-	r[len(r)-1] = d.Outer
-	c, err := s.g.newCircles(ctx, order, r)
+	c, err := s.circles(ctx, disk, order)
 	if err != nil {
 		return nil, err
 	}
 	lines := make([][]patch, len(s.angles)-1)
+	err = s.around(ctx, c, func(w *lineWorker, k int) (err error) {
+		lines[k], err = w.line(s.angles[k], s.angles[k+1], disk, order)
+		return err
+	})
+	if err != nil {
+		return nil, err
+	}
+	s.slopes(lines)
+	return lines, nil
+}
+
+// around does work for every line, shared among goroutines.
+func (s *sampler) around(ctx context.Context, c *circles, work func(w *lineWorker, k int) error) error {
 	var next atomic.Int64
 	group, ctx := errgroup.WithContext(ctx)
 	for range s.options.Workers {
@@ -169,23 +188,19 @@ func (s *sampler) image(ctx context.Context, disk, order int) ([][]patch, error)
 			}
 			for {
 				k := int(next.Add(1)) - 1
-				if k >= len(lines) {
+				if k >= len(s.angles)-1 {
 					return nil
 				}
 				if err := ctx.Err(); err != nil {
 					return err
 				}
-				if lines[k], err = w.line(s.angles[k], s.angles[k+1], disk, order); err != nil {
+				if err := work(w, k); err != nil {
 					return err
 				}
 			}
 		})
 	}
-	if err := group.Wait(); err != nil {
-		return nil, err
-	}
-	s.slopes(lines)
-	return lines, nil
+	return group.Wait()
 }
 
 // lineWorker is the scratch of one goroutine.
@@ -209,6 +224,16 @@ func (s *sampler) worker(c *circles) (*lineWorker, error) {
 
 // line returns the patches between two screen angles.
 func (w *lineWorker) line(from, to float64, disk, order int) ([]patch, error) {
+	patches, err := w.trace(from, to, order)
+	if err != nil {
+		return nil, err
+	}
+	w.shade(w.s.view, patches, disk, order)
+	return patches, nil
+}
+
+// trace follows the paths through the patches between two screen angles.
+func (w *lineWorker) trace(from, to float64, order int) ([]patch, error) {
 	s := w.s
 	middle := (from + to) / 2
 	sin, cos := math.Sincos(middle)
@@ -234,16 +259,21 @@ func (w *lineWorker) line(from, to float64, disk, order int) ([]patch, error) {
 		return nil, err
 	}
 	w.tracer.Cross(&w.rays, geodesic.Want{Delay: s.delay}, &w.at)
-	for e, emitter := range s.view.Emitters {
-		if _, sky := emitter.(*emit.Sky); sky {
-			continue
+	return patches, nil
+}
+
+// shade fills in the light of traced patches; v is the sampler's view or one
+// at another frequency.
+func (w *lineWorker) shade(v *raytrace.View, patches []patch, disk, order int) {
+	for e, emitter := range v.Emitters {
+		if _, _, flat := rims(emitter); flat { // others neither shine here nor dim
+			emitter.Shade(&w.rays, &w.at, nil, &w.lights[e])
 		}
-		emitter.Shade(&w.rays, &w.at, nil, &w.lights[e])
 	}
 	for k := range patches {
+		patches[k].intensity, patches[k].passes = 0, 0
 		w.look(k, &patches[k], disk, order)
 	}
-	return patches, nil
 }
 
 // cut gathers where light from behind is dimmed or stopped along a line.
