@@ -169,11 +169,19 @@ func orDefault(u unit, name string) unit {
 }
 
 func (b *builder) telescope() {
+	t := &b.scene.Telescope
+	uv := b.get("telescope", 0, "uv")
+	t.UV = uv.word
+	if uv.given {
+		b.needsAngularScale(uv)
+	}
+	if resolution := b.get("telescope", 0, "resolution"); resolution.given {
+		t.Resolution = b.plain(resolution, 0)
+	}
 	beam := b.get("telescope", 0, "beam")
 	if !beam.given {
 		return
 	}
-	t := &b.scene.Telescope
 	t.GivenBeam = true
 	for i, q := range beam.numbers {
 		base, limit := "uas", above(0)

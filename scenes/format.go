@@ -78,9 +78,17 @@ func Format(s Scene) []byte {
 		w.quantity("step", s.Time.Step, "M")
 	}
 
+	if t := s.Telescope; t != (Telescope{}) {
+		w.header("[telescope]")
+		if t.UV != "" {
+			w.key("uv", quote(t.UV))
+		}
+		if t.Resolution > 0 {
+			w.quantity("resolution", t.Resolution, "Hz")
+		}
+	}
 	if s.Telescope.GivenBeam {
 		beam := s.Telescope.Beam
-		w.header("[telescope]")
 		w.list("beam", []string{formatQuantity(beam[0], 0, "uas"), formatQuantity(beam[1], 0, "uas"), formatQuantity(beam[2], 0, "deg")})
 	}
 

@@ -230,8 +230,8 @@ var capKeys = []Key{
 var telescopeKeys = []Key{
 	{Section: "telescope", Name: "beam", Type: QuantityList, Count: 3, Unit: "uas", Units: beamUnits, Range: anyNumber,
 		Text: "beam: FWHM major and minor in uas, position angle in deg"},
-	{Section: "telescope", Name: "uv", Type: Text, Later: true, Text: "CSV file of baselines: u, v [Glambda]"},
-	{Section: "telescope", Name: "resolution", Type: Quantity, Unit: "eV", Units: frequencyUnits, Range: above(0), Later: true, Text: "spectral FWHM"},
+	{Section: "telescope", Name: "uv", Type: Text, Text: "CSV file of baselines: u, v [Glambda], from the scene file's folder"},
+	{Section: "telescope", Name: "resolution", Type: Quantity, Unit: "eV", Units: frequencyUnits, Range: above(0), Text: "spectral FWHM; with it a line profile needs emitter.rest"},
 }
 
 var measuredKeys = []Key{

@@ -157,8 +157,8 @@ var refusals = []struct {
 	{"time backwards", "[time]\nstart = 3\nend = 2\nstep = 1", 5, 7, "time.end", []string{"before the start", "3 M or more"}},
 	{"too many frames", "[time]\nend = 1e9\nstep = 1", 5, 8, "time.step", []string{"too many frames", "1e4 M"}},
 	{"orbit without spot", "[time]\nend = \"1 orbit\"\nstep = 1", 4, 7, "time.end", []string{"orbit needs a spot"}},
-	{"uv", "[telescope]\nuv = \"uv.csv\"", 4, 1, "telescope.uv", []string{"not in this version"}},
-	{"resolution", "[telescope]\nresolution = \"5 eV\"", 4, 1, "telescope.resolution", []string{"not in this version"}},
+	{"uv without scale", "[telescope]\nuv = \"uv.csv\"", 4, 6, "telescope.uv", []string{"needs object.mass"}},
+	{"resolution", "[telescope]\nresolution = \"-5 eV\"", 4, 14, "telescope.resolution", []string{"out of range"}},
 	{"figure", "[[figure]]", 3, 3, "figure", []string{"not in this version"}},
 }
 

@@ -130,6 +130,9 @@ type Rim struct {
 type Telescope struct {
 	Beam      [3]float64 // FWHM major and minor in microarcseconds, position angle in deg
 	GivenBeam bool
+
+	UV         string  // path of a CSV file of baselines; "" when not given
+	Resolution float64 // spectral FWHM, Hz; 0 when not given
 }
 
 // Measured holds what was observed.

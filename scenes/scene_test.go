@@ -123,6 +123,7 @@ func TestFormatComesBack(t *testing.T) {
 		"",
 		"title = \"tab\\t, quote \\\", slash \\\\, µ, \\u0000 \\u007f\"",
 		"[object]\nmass = \"4.1e6 +- 0.1e6 Msun\"\ndistance = \"8178.3 +- 13.1 pc\"\n[measured]\nring_diameter = \"51.8 ± 2.3 µas\"\nestimator = \"ridge\"",
+		"[object]\ntheta_g = 3\n[telescope]\nuv = \"uv.csv\"\nresolution = \"5 eV\"",
 		"[object]\ntheta_g = \"3.8 +- 0.4 uas\"\n[telescope]\nbeam = [0.3e2, \"20.1 uas\", \"0.1 rad\"]",
 		"[observer]\nradius = 3.0000000000000004\ninclination = \"1 rad\"\nazimuth = -0.1\n[field]\nwidth = 0.1\ncenter = [1e-300, -7]\npixels = [3, 1]",
 		"[observer]\nradius = 2.5\n[field]\nprojection = \"perspective\"\nwidth = \"0.3 rad\"\ncenter = [\"1 uas\", 3]",

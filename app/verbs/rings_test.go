@@ -99,11 +99,68 @@ func TestLineVerb(t *testing.T) {
 	if !(f.GMin > 0 && f.GMin < f.GMax) {
 		t.Errorf("%+v", f)
 	}
+	broad := []string{"line", "small.toml", "--set", "emitter.light=line", "--set", "emitter.rest=6.4keV", "--set", "telescope.resolution=100eV", "--energies", "--continuum", "2,1.9", "--json"}
+	if got := do(t, "", broad...); got.code != exitDone || !strings.Contains(got.out, `"equivalent_width_keV": 0.`) || !strings.Contains(got.out, `"E_lo": `) {
+		t.Errorf("%+v", got)
+	}
+	if got := do(t, "", "line", "small.toml", "--energies"); got.code != exitUsage || !strings.Contains(got.errors, "emitter.rest") {
+		t.Errorf("%+v", got)
+	}
 	code := "from astropy.table import Table; t = Table.read('line.ecsv'); assert abs(t['flux'].sum() - 1) < 1e-9; assert 'scene' in t.meta"
 	if out, err := exec.Command("/usr/bin/python3", "-c", code).CombinedOutput(); err != nil {
 		if os.Getenv("CI") == "" && strings.Contains(string(out), "No module") {
 			t.Skip("NOT RUN: astropy is not here")
 		}
 		t.Errorf("astropy: %v\n%s", err, out)
+	}
+}
+
+func TestSpectrumAndLightCurveVerbs(t *testing.T) {
+	folder(t)
+	write(t, "hot.toml", `schema = 1
+[object]
+mass = "10 Msun"
+distance = "3 kpc"
+[field]
+frequency = ["1 keV"]
+[[emitter]]
+profile = "novikov-thorne"
+luminosity = "0.1 Edd"
+light = "blackbody"
+`)
+	got := do(t, "", "spectrum", "hot.toml", "--from", "0.1keV", "--to", "10keV", "--points", "5", "-o", "s.ecsv")
+	if got.code != exitDone || !strings.HasPrefix(got.out, "nu,E,F_nu,F_nu_bound,photon_flux,F_nu_0,F_nu_1,F_nu_2\n") || strings.Count(got.out, "\n") != 6 {
+		t.Fatalf("%+v", got)
+	}
+	row := strings.Split(strings.Split(got.out, "\n")[3], ",")
+	e, _ := parseFinite(row[1])
+	flux, _ := parseFinite(row[2])
+	photons, _ := parseFinite(row[4])
+	// 1 Jy at 1 keV is 1509.19 photons/cm²/s/keV: 1e-23 erg over h
+	if math.Abs(e-1) > 1e-12 || math.Abs(photons/flux/1509.19-1) > 1e-5 {
+		t.Errorf("%v", row)
+	}
+	write(t, "spot.toml", "schema = 1\n[field]\npixels = [16, 16]\n[[emitter]]\nkind = \"spot\"\nradius = 9\n[trace]\nmax_order = 1\n")
+	got = do(t, "", "lightcurve", "spot.toml", "--set", "time.end=1 orbit", "--set", "time.step=0.05 orbit", "--json")
+	var f struct {
+		Period float64
+		Orders []struct{ Amplitude, Delay *float64 }
+		Rows   []struct{ T, Flux float64 }
+	}
+	if got.code != exitDone {
+		t.Fatalf("%+v", got)
+	}
+	decode(t, got.out, &f)
+	if len(f.Rows) != 21 || math.Abs(f.Period-54*math.Pi) > 1e-9 || len(f.Orders) != 2 || f.Orders[0].Delay != nil || f.Orders[1].Delay == nil || f.Orders[1].Amplitude == nil {
+		t.Errorf("%s", got.out[:min(1500, len(got.out))])
+	}
+	if got := do(t, "", "lightcurve", "small.toml"); got.code != exitCouldNot || !strings.Contains(got.errors, "cannot be measured because") {
+		t.Errorf("%+v", got)
+	}
+	if got := do(t, "", "spectrum", "small.toml", "--from", "1keV", "--to", "2keV"); got.code != exitCouldNot || !strings.Contains(got.errors, "cannot be measured because") {
+		t.Errorf("%+v", got)
+	}
+	if got := do(t, "", "spectrum", "small.toml", "--from", "3keV", "--to", "2keV"); got.code != exitUsage {
+		t.Errorf("%+v", got)
 	}
 }

@@ -6,6 +6,7 @@ import (
 	"io"
 	"math"
 	"math/cmplx"
+	"path/filepath"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -37,7 +38,7 @@ func newVisibility(s streams) *cobra.Command {
 			"over the field's pixels (the map's by Fourier transform), with the response of the\n" +
 			"pixels divided out; the centre of phase is the object. V is in M^2 of the\n" +
 			"intensity. JSON along a line lists the minima of the amplitude. The scene needs\n" +
-			"mass and distance, or theta_g.",
+			"mass and distance, or theta_g. Without a choice, its telescope.uv tells the places.",
 		Example: "  " + programName() + " visibility @first-light --position-angle 90 --to 12 --orders\n" +
 			"  " + programName() + " visibility scene.toml --uv uv.csv -o v.ecsv",
 		Args: takes(1, "one SCENE"),
@@ -105,6 +106,11 @@ func visibility(cmd *cobra.Command, s streams, o looking, scenePath string) erro
 	frame, ok := newSkyFrame(of.scene)
 	if !ok {
 		return refuse("visibility needs the angular scale: object.mass and object.distance, or object.theta_g")
+	}
+	if uv := of.scene.Telescope.UV; uv != "" && ways == 0 && !o.to.given {
+		if o.uv = uv; !filepath.IsAbs(uv) {
+			o.uv = filepath.Join(of.document.Dir(), uv)
+		}
 	}
 	var places [][2]float64 // Glambda
 	if o.uv != "" {

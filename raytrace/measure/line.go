@@ -105,6 +105,64 @@ func bolometric(v *raytrace.View) *raytrace.View {
 	return &changed
 }
 
+// Smoothed returns the profile as an instrument sees it whose response is a
+// Gaussian of that FWHM in g; light is spread evenly in its bin. The edges
+// stay those of the light. It reaches further by five standard deviations.
+func (l *Line) Smoothed(fwhm float64) (*Line, error) {
+	if !(fwhm > 0) || math.IsInf(fwhm, 0) {
+		return nil, cannot("a resolution of %g in g is none", fwhm)
+	}
+	sigma := fwhm * sigmaPerFWHM
+	const reach = 5
+	more := int(math.Ceil(reach * sigma / l.Bin))
+	if more > mostBins {
+		return nil, cannot("the resolution of %g in g is much wider than the bins", fwhm)
+	}
+	// the share that moves by m bins: second differences of ∫Φ
+	integral := func(x float64) float64 {
+		x /= sigma
+		return sigma * (x*math.Erfc(-x/math.Sqrt2)/2 + math.Exp(-x*x/2)/math.Sqrt(2*math.Pi))
+	}
+	share := make([]float64, 2*more+1)
+	for k := range share {
+		x := float64(k-more) * l.Bin
+		share[k] = (integral(x+l.Bin) - 2*integral(x) + integral(x-l.Bin)) / l.Bin
+	}
+	norm := sum(share)
+	smooth := func(from []float64) []float64 {
+		to := make([]float64, len(from)+2*more)
+		for k, x := range from {
+			for i, w := range share {
+				to[k+i] += x * w / norm
+			}
+		}
+		return to
+	}
+	s := *l
+	s.First = l.First - more
+	s.Energy, s.Photon, s.Orders = smooth(l.Energy), smooth(l.Photon), nil
+	for _, order := range l.Orders {
+		s.Orders = append(s.Orders, smooth(order))
+	}
+	return &s, nil
+}
+
+// EquivalentWidth returns the equivalent width against a power-law continuum,
+// in the unit of energy that level is given in: ∫ N_line/N_cont dE
+// with N_cont = level g^-index photons per unit of energy, g = E/(energy in the
+// gas frame), level in units of the line's photons.
+func (l *Line) EquivalentWidth(level, index float64) float64 {
+	_, photons := l.Totals()
+	width := 0.0
+	for k, x := range l.Photon {
+		g := (float64(l.First+k) + 0.5) * l.Bin
+		if x > 0 && g > 0 {
+			width += x / photons / (level * math.Pow(g, -index))
+		}
+	}
+	return width
+}
+
 type profile struct {
 	energy, photon []float64
 	orders         [][]float64

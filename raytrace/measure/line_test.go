@@ -121,3 +121,29 @@ index = %g
 		}
 	}
 }
+
+// A spike of light becomes a Gaussian (any handbook: the error function) of
+// the same flux; for a flat continuum the equivalent width is photons over
+// level, and the index weighs them by g.
+func TestSmoothed(t *testing.T) {
+	l := &Line{Bin: 0.01, First: 99, Energy: []float64{2, 0}, Photon: []float64{3, 0}, Orders: [][]float64{{2, 0}}}
+	s, err := l.Smoothed(0.2)
+	if err != nil {
+		t.Fatal(err)
+	}
+	energy, photon := s.Totals()
+	near(t, "energy", energy, 2, 1e-12)
+	near(t, "photons", photon, 3, 1e-12)
+	below := 0.0
+	for k, x := range s.Energy {
+		below += x
+		edge := float64(s.First+k+1)*s.Bin - 0.995
+		want := 1 + math.Erf(edge/(0.2*sigmaPerFWHM)/math.Sqrt2)
+		near(t, fmt.Sprintf("below %+.3f", edge), below, want, 2e-3)
+	}
+	near(t, "flat", l.EquivalentWidth(0.25, 0), 4, 1e-12)
+	near(t, "steep", l.EquivalentWidth(0.25, 2), 4*0.995*0.995, 1e-12)
+	if _, err := l.Smoothed(0); err == nil {
+		t.Error("no resolution")
+	}
+}
