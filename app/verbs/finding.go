@@ -7,6 +7,7 @@ import (
 	"path/filepath"
 	"slices"
 	"strings"
+	"time"
 
 	"github.com/spf13/cobra"
 
@@ -90,7 +91,18 @@ func (m measuring) open(s streams, scenePath string) (*measured, error) {
 	if err != nil {
 		return nil, usage{err}
 	}
-	return &measured{d, scene, view, measure.Options{Workers: m.workers}}, nil
+	return &measured{d, scene, view, measure.Options{Workers: m.workers, Report: reporter(s)}}, nil
+}
+
+// reporter prints how far a measurement is, a line every few seconds.
+func reporter(s streams) func(done, all int) {
+	next := time.Now().Add(lineEvery)
+	return func(done, all int) {
+		if now := time.Now(); done < all && now.After(next) {
+			next = now.Add(lineEvery)
+			s.note("measuring: %d %%", 100*done/all)
+		}
+	}
 }
 
 // deliver writes the files, then prints.

@@ -62,7 +62,7 @@ func Edges(ctx context.Context, v *raytrace.View, angles []float64, plate *raytr
 					if e.Impact, err = p.impact(s, n, r); err != nil {
 						return nil, err
 					}
-					if rim != nil {
+					if rim != nil && !math.IsNaN(e.Impact) { // else something stands in the way
 						e.Measured, e.MeasuredBound = rim.at(s, r)
 					}
 					edges = append(edges, e)
@@ -135,7 +135,8 @@ const (
 // at returns where the image shows radius r at screen angle s: the impact
 // parameter fitted to nearby pixels as a polynomial in 1/r and the swept
 // angle, taken at the rim. The bound is what the highest terms of the fit
-// change, and its largest residual. NaN where too few pixels show the disk.
+// change, and its largest residual. NaN where it would be more than a pixel,
+// or no pixel nearby shows the disk.
 func (m *imageRim) at(s, r float64) (b, bound float64) {
 	near := m.nearest(s, r)
 	if len(near) < leastRimPixels {
@@ -148,12 +149,28 @@ func (m *imageRim) at(s, r float64) (b, bound float64) {
 	}
 	lower, _ := m.fit(near, s, psi, 1/r, degree-1)
 	fitted, residual := m.fit(near, s, psi, 1/r, degree)
-	return fitted, math.Abs(fitted-lower) + residual + m.resolution(fitted)
+	bound = math.Abs(fitted-lower) + residual + m.resolution(fitted)
+	if !(bound < m.pitch) || !m.shown(s, fitted) {
+		return math.NaN(), math.NaN()
+	}
+	return fitted, bound
 }
 
 // resolution is the part of the bound that a float32 radius leaves, and a
 // thousandth of a pixel for what a fit of its own data cannot know.
 func (m *imageRim) resolution(b float64) float64 { return 1e-3*m.pitch + 3e-7*b }
+
+// shown says whether a lit pixel is near the place: within rimReach pixels
+// in b, and in an angle within which even thin rings show themselves.
+func (m *imageRim) shown(s, b float64) bool {
+	const turn = 0.35 // radians
+	for _, p := range m.lit {
+		if math.Abs(p.b-b) < rimReach*m.pitch && math.Abs(math.Remainder(p.s-s, 2*math.Pi)) < turn {
+			return true
+		}
+	}
+	return false
+}
 
 // nearest returns the lit pixels nearest to the edge, in the sector.
 func (m *imageRim) nearest(s, r float64) []litPixel {

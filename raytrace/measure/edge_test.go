@@ -4,8 +4,10 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"strings"
 	"testing"
 
+	"annulet/geodesic"
 	"annulet/raytrace"
 	"annulet/scenes"
 )
@@ -110,5 +112,42 @@ func TestEdgesFollowTheImage(t *testing.T) {
 	}
 	for k, e := range measured(wide) {
 		near(t, fmt.Sprintf("stretched, order %d", e.Order), e.Measured, was[k].Measured*stretch, pixel/10)
+	}
+}
+
+// Edge-on every path meets the plane behind the object; a star hides the
+// lensed image; a rim outside the field or hidden is not measured.
+func TestEdgesAtTheLimits(t *testing.T) {
+	edges := func(text string, deg float64) []Edge {
+		v, _ := viewOf(t, text)
+		plate, err := v.Render(context.Background(), raytrace.Options{Layers: []raytrace.Layer{raytrace.Radius}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		e, err := Edges(context.Background(), v, []float64{deg * math.Pi / 180}, plate)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return e
+	}
+	for _, deg := range []float64{0, 37, 90, 180} {
+		for _, e := range edges(diskScene(90, 200), deg) {
+			near(t, fmt.Sprintf("edge-on at %g", deg), e.Impact, e.Closed, 1e-8)
+			near(t, "edge-on", e.Closed, geodesic.RimImpact(0, float64(e.Order+1)*math.Pi, map[bool]float64{false: 6, true: 20}[e.Outer]), 1e-12)
+		}
+	}
+	star := diskScene(75, 200) + "[object]\nkind = \"star\"\nradius = 5\n"
+	e := edges(star, 0)
+	near(t, "beside a star", e[0].Impact, 6.932148479189, 1e-9)
+	for _, hidden := range e[2:] {
+		if !math.IsNaN(hidden.Impact) || !math.IsNaN(hidden.Closed) || !math.IsNaN(hidden.Measured) {
+			t.Errorf("behind a star: %+v", hidden)
+		}
+	}
+	inside := strings.Replace(diskScene(40, 200), "[field]", "[field]\nwidth = 24", 1)
+	e = edges(inside, 0)
+	near(t, "in the field", e[0].Measured, e[0].Closed, e[0].MeasuredBound)
+	if !math.IsNaN(e[1].Measured) {
+		t.Errorf("a rim outside the field is measured: %+v", e[1])
 	}
 }

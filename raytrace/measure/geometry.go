@@ -119,6 +119,11 @@ func (g *Geometry) pencil(maxOrder int) (*pencil, error) {
 // meets the plane in order n: 0 if it ended before, +Inf if it escaped.
 func (p *pencil) radius(b, s float64, n int) (float64, error) {
 	sin, cos := math.Sincos(s)
+	if p.g.cosI == 0 && math.Abs(sin) < rounding*4 {
+		// within the plane nothing is crossed; next to it, and at every other
+		// screen angle, all is met behind the object
+		sin, cos = 1, 0
+	}
 	p.dirs = append(p.dirs[:0], geodesic.Direction{Alpha: b * cos, Beta: b * sin})
 	if err := p.g.object.Aim(p.g.observer, true, p.dirs, &p.rays); err != nil {
 		return 0, err

@@ -71,7 +71,6 @@ func spotCurve(ctx context.Context, v *raytrace.View, times []float64, size floa
 	if err != nil {
 		return nil, err
 	}
-	o.Report = nil
 	coarse, err := overViews(ctx, v, views, true, o.coarser())
 	if err != nil {
 		return nil, err

@@ -36,7 +36,7 @@ func (o Options) filled() Options {
 }
 
 func (o Options) coarser() Options {
-	o.Lines, o.Cells = o.Lines/2, o.Cells/2
+	o.Lines, o.Cells, o.Report = o.Lines/2, o.Cells/2, nil
 	return o
 }
 

@@ -48,7 +48,6 @@ func NewSpectrum(ctx context.Context, v *raytrace.View, from int, o Options) (*S
 	if err != nil {
 		return nil, err
 	}
-	o.Report = nil
 	coarse, err := overViews(ctx, v, views, false, o.coarser())
 	if err != nil {
 		return nil, err
