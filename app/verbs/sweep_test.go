@@ -160,3 +160,26 @@ func TestSweepRefusals(t *testing.T) {
 		t.Errorf("another sweep in its place: %+v", got)
 	}
 }
+
+// A sweep's table has the rings of every case by default, a scene without
+// disks none.
+func TestSweepRings(t *testing.T) {
+	folder(t)
+	got, s := sweepOf(t, "small.toml", "--vary", "observer.inclination=20,60", "--out", "a")
+	if got.code != exitDone || s.Done != 2 {
+		t.Fatalf("%+v", got)
+	}
+	table, err := os.ReadFile(filepath.Join("a", "table.csv"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	// physics reference: r = 6 M at 60 deg
+	for _, part := range []string{"inner_diameter_horizontal_1 [M]", "14.341137829", "11.293862343"} {
+		if !strings.Contains(string(table), part) {
+			t.Errorf("no %s in\n%s", part, table)
+		}
+	}
+	if got, s := sweepOf(t, "@slow-room", "--set", "field.pixels=[16,8]", "--vary", "observer.azimuth=0,10", "--out", "b"); got.code != exitDone || s.Done != 2 {
+		t.Errorf("%+v", got)
+	}
+}

@@ -52,7 +52,9 @@ func (g *Geometry) newCircles(ctx context.Context, order int, r []float64) (*cir
 	}
 }
 
-// shape is the swept angle's screen angle's sine; paths are rooted there.
+// rootAt returns the impact parameter at which a circle appears at a swept
+// angle: by closed form where there is one, else rooted on traced paths. What
+// an opaque surface hides is not left out.
 func (g *Geometry) rootAt(p *pencil, psi, r float64, order int) (float64, error) {
 	if g.closed {
 		return g.exterior(psi, r), nil

@@ -132,8 +132,12 @@ func TestEdgesAtTheLimits(t *testing.T) {
 	}
 	for _, deg := range []float64{0, 37, 90, 180} {
 		for _, e := range edges(diskScene(90, 200), deg) {
+			rim := 6.0
+			if e.Outer {
+				rim = 20
+			}
 			near(t, fmt.Sprintf("edge-on at %g", deg), e.Impact, e.Closed, 1e-8)
-			near(t, "edge-on", e.Closed, geodesic.RimImpact(0, float64(e.Order+1)*math.Pi, map[bool]float64{false: 6, true: 20}[e.Outer]), 1e-12)
+			near(t, "edge-on", e.Closed, geodesic.RimImpact(0, float64(e.Order+1)*math.Pi, rim), 1e-12)
 		}
 	}
 	star := diskScene(75, 200) + "[object]\nkind = \"star\"\nradius = 5\n"

@@ -33,7 +33,11 @@ func (v benchView) Of() raytrace.Field {
 func (v benchView) Shown() raytrace.Field { return v.Of() }
 
 func (v benchView) Trace(ctx context.Context, coarsening int, _ func(raytrace.Progress)) (*raytrace.Plate, error) {
-	v.begun <- coarsening
+	select { // nobody takes it once the test is over
+	case v.begun <- coarsening:
+	case <-ctx.Done():
+		return nil, ctx.Err()
+	}
 	select {
 	case <-v.release:
 	case <-ctx.Done():
