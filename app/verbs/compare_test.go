@@ -102,6 +102,9 @@ func TestVisibilityVerb(t *testing.T) {
 	if got := do(t, "", "visibility", "scaled.toml", "--triangles", "triangles.csv"); got.code != exitDone || !strings.HasPrefix(got.out, "u1,v1,u2,v2,closure_phase\n1,0,0,1,") {
 		t.Errorf("%+v", got)
 	}
+	if got := do(t, "", "visibility", "scaled.toml", "--exact", "--to", "300", "--steps", "5", "--orders"); got.code != exitDone || strings.Count(got.out, "\n") != 7 {
+		t.Errorf("%+v", got)
+	}
 	if got := do(t, "", "visibility", "scaled.toml", "--map", "--to", "3"); got.code != exitDone || strings.Count(got.out, "\n") < 10 {
 		t.Errorf("%+v", got)
 	}

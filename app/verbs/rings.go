@@ -1,6 +1,8 @@
 package verbs
 
 import (
+	"context"
+	"errors"
 	"math"
 
 	"github.com/spf13/cobra"
@@ -15,6 +17,7 @@ func newRings(s streams) *cobra.Command {
 	var m measuring
 	var angles []string
 	var which string
+	var estimate bool
 	cmd := &cobra.Command{
 		Use:   "rings SCENE",
 		Short: "measure the critical curve and the image orders of the disks",
@@ -27,15 +30,60 @@ func newRings(s streams) *cobra.Command {
 		Example: "  " + programName() + " rings @first-light --json\n" +
 			"  " + programName() + " rings scene.toml --at-angle 0 --at-angle 90 --table edges -o edges.ecsv",
 		Args: takes(1, "one SCENE"),
-		RunE: func(cmd *cobra.Command, args []string) error { return rings(cmd, s, m, angles, which, args[0]) },
+		RunE: func(cmd *cobra.Command, args []string) error {
+			return rings(cmd, s, m, angles, which, estimate, args[0])
+		},
 	}
 	addMeasuring(cmd, &m)
 	cmd.Flags().StringArrayVar(&angles, "at-angle", nil, "screen angle `DEG` of edges; repeatable (default 0, 90, 180, 270)")
 	cmd.Flags().StringVar(&which, "table", "rings", "of CSV and ECSV: rings or edges; JSON holds both")
+	cmd.Flags().BoolVar(&estimate, "estimate", false, "also read rings off the image, sharp and with telescope.beam, by every estimator (JSON)")
 	return cmd
 }
 
-func rings(cmd *cobra.Command, s streams, m measuring, texts []string, which, scenePath string) error {
+// estimates reads rings off the total intensity, sharp and blurred.
+func estimates(ctx context.Context, of *measured, plate *raytrace.Plate) ([]ordered, error) {
+	sharp, err := measure.NewImage(of.view.Field, plate.Total)
+	if err != nil {
+		return nil, err
+	}
+	images := map[string]*measure.Image{"sharp": sharp}
+	if beam, ok := beamOf(of.scene); ok {
+		if images["blurred"], err = sharp.Blurred(ctx, beam); err != nil {
+			return nil, err
+		}
+	}
+	theta, angular := of.scene.ThetaG()
+	if !angular {
+		theta = math.NaN()
+	}
+	found := []ordered{}
+	for _, name := range []string{"sharp", "blurred"} {
+		if images[name] == nil {
+			continue
+		}
+		for _, e := range measure.Estimators() {
+			r, err := images[name].Estimate(ctx, e)
+			row := ordered{{"image", name}, {"estimator", string(e)}}
+			switch {
+			case errors.Is(err, measure.ErrCannot):
+				found = append(found, append(row, field{"cannot", err.Error()}))
+				continue
+			case err != nil:
+				return nil, err
+			}
+			found = append(found, append(row, ordered{
+				{"diameter", number(r.Diameter)}, {"diameter_bound", number(r.Bound)}, {"diameter_uas", number(r.Diameter * theta)},
+				{"width", number(r.Width)}, {"asymmetry", number(r.Asymmetry)},
+				{"brightest_position_angle_deg", number(positionAngle(r.Brightest*180/math.Pi, of.scene))},
+				{"central_depression", number(r.Depression)}, {"centre_alpha", number(r.Center[0])}, {"centre_beta", number(r.Center[1])},
+			}...))
+		}
+	}
+	return found, nil
+}
+
+func rings(cmd *cobra.Command, s streams, m measuring, texts []string, which string, estimate bool, scenePath string) error {
 	if which != "rings" && which != "edges" {
 		return refuse("--table %q: allowed: rings, edges", which)
 	}
@@ -84,6 +132,13 @@ func rings(cmd *cobra.Command, s streams, m measuring, texts []string, which, sc
 		{"rings", ringObjects(ringTable)},
 		{"inner_shadow", innerShadow(table, of.scene)},
 		{"flux", number(table.Flux)}, {"flux_bound", number(table.Bound)}, {"flux_outside_field", number(table.Outside)},
+	}
+	if estimate {
+		found, err := estimates(cmd.Context(), of, plate)
+		if err != nil {
+			return err
+		}
+		f.fields = append(f.fields, field{"estimates", found})
 	}
 	return m.deliver(cmd, s, of, f)
 }
@@ -217,6 +272,12 @@ func ringUnits(tables ...output.Table) map[string]string {
 	}
 	for _, name := range outlineNames {
 		units[name] = "M"
+	}
+	for name, unit := range map[string]string{
+		"diameter": "M", "diameter_bound": "M", "diameter_uas": "uas", "asymmetry": "1", "brightest_position_angle_deg": "deg",
+		"central_depression": "1", "centre_alpha": "M", "centre_beta": "M",
+	} {
+		units[name] = unit
 	}
 	if _, ok := units["inner_diameter_horizontal_uas"]; ok {
 		units["diameter_horizontal_uas"], units["diameter_vertical_uas"] = "uas", "uas"

@@ -53,6 +53,10 @@ func TestRingsVerb(t *testing.T) {
 			t.Errorf("no unit of %s", name)
 		}
 	}
+	got = do(t, "", "rings", "@first-light", "--set", "field.pixels=[80,80]", "--estimate", "--json")
+	if got.code != exitDone || strings.Count(got.out, `"estimator": "annulus-fit"`) != 2 || !strings.Contains(got.out, `"image": "blurred"`) {
+		t.Errorf("%+v", got)
+	}
 	if got := do(t, "", "rings", "small.toml", "--table", "edges"); got.code != exitDone ||
 		!strings.HasPrefix(got.out, "emitter,order,at_angle_deg,position_angle_deg,edge,b,closed_form_b,measured_b,measured_b_bound\n") {
 		t.Errorf("%+v", got)

@@ -25,6 +25,7 @@ type looking struct {
 	steps         int
 	uv, triangles string
 	grid, orders  bool
+	exact         bool
 }
 
 func newVisibility(s streams) *cobra.Command {
@@ -53,6 +54,7 @@ func newVisibility(s streams) *cobra.Command {
 	f.StringVar(&o.triangles, "triangles", "", "CSV `FILE` with the columns u1,v1,u2,v2 [Glambda]: closure phases")
 	f.BoolVar(&o.grid, "map", false, "a square grid up to the longest baseline")
 	f.BoolVar(&o.orders, "orders", false, "also the amplitude of each image order")
+	f.BoolVar(&o.exact, "exact", false, "integrate the disks' whole images instead of the field's pixels; baselines may be long")
 	return cmd
 }
 
@@ -96,6 +98,8 @@ func visibility(cmd *cobra.Command, s streams, o looking, scenePath string) erro
 	switch {
 	case ways > 1:
 		return refuse("visibility needs one of --position-angle, --uv, --triangles, --map")
+	case o.exact && (o.grid || o.triangles != ""):
+		return refuse("--exact goes with --position-angle or --uv, not with --map or --triangles")
 	case o.steps < 2 || o.steps > 1_000_000:
 		return refuse("--steps %d: allowed: 2 to 1000000", o.steps)
 	}
@@ -132,6 +136,17 @@ func visibility(cmd *cobra.Command, s streams, o looking, scenePath string) erro
 	if o.to.given {
 		most = o.to.value
 	}
+	line := o.uv == "" && !o.grid && o.triangles == ""
+	if line {
+		sin, cos := math.Sincos(o.angle.value * math.Pi / 180)
+		for k := range o.steps + 1 {
+			x := most * float64(k) / float64(o.steps)
+			places = append(places, [2]float64{x * sin, x * cos})
+		}
+	}
+	if o.exact {
+		return o.wholeDisks(cmd, s, of, frame, places)
+	}
 	layers := []raytrace.Layer{}
 	if o.orders {
 		layers = append(layers, raytrace.Intensity)
@@ -146,14 +161,6 @@ func visibility(cmd *cobra.Command, s streams, o looking, scenePath string) erro
 	}
 	if corners != nil {
 		return o.closures(cmd, s, of, images[0], frame, corners)
-	}
-	line := o.uv == "" && !o.grid
-	if line {
-		sin, cos := math.Sincos(o.angle.value * math.Pi / 180)
-		for k := range o.steps + 1 {
-			x := most * float64(k) / float64(o.steps)
-			places = append(places, [2]float64{x * sin, x * cos})
-		}
 	}
 	var rows [][]measure.Visibility
 	for _, m := range images {
@@ -191,6 +198,30 @@ func visibility(cmd *cobra.Command, s streams, o looking, scenePath string) erro
 	}
 	f.fields = append(f.fields, field{"rows", rowsOf(t)})
 	return o.deliver(cmd, s, of, f)
+}
+
+// wholeDisks sums over no pixels.
+func (o looking) wholeDisks(cmd *cobra.Command, s streams, of *measured, frame sky, places [][2]float64) error {
+	screen := make([][2]float64, len(places))
+	for k, p := range places {
+		screen[k][0], screen[k][1] = frame.screen(p[0], p[1])
+	}
+	orders, err := measure.DiskVisibilities(cmd.Context(), of.view, screen, of.options)
+	if err != nil {
+		return err
+	}
+	total := make([]measure.Visibility, len(places))
+	for _, order := range orders {
+		for k, v := range order {
+			total[k].Value += v.Value
+		}
+	}
+	rows := [][]measure.Visibility{total}
+	if o.orders {
+		rows = append(rows, orders...)
+	}
+	t := visibilityTable(places, rows)
+	return o.deliver(cmd, s, of, finding{table: t, fields: []field{{"scale", scaleOf(of.scene)}, {"rows", rowsOf(t)}}})
 }
 
 // images are the total and, if asked for, every order.

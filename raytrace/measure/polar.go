@@ -22,15 +22,18 @@ type Options struct {
 	Cells   int                 // from rim to rim, 0 means 240
 }
 
+// The usual grid. Method: line profiles come out to 1e-4 of their peak.
+const defaultLines, defaultCells = 720, 240
+
 func (o Options) filled() Options {
 	if o.Workers <= 0 {
 		o.Workers = runtime.GOMAXPROCS(0)
 	}
 	if o.Lines <= 0 {
-		o.Lines = 720
+		o.Lines = defaultLines
 	}
 	if o.Cells <= 0 {
-		o.Cells = 240
+		o.Cells = defaultCells
 	}
 	return o
 }
@@ -50,6 +53,7 @@ type patch struct {
 	g, r        float64
 	delay       float64
 	alpha, beta float64 // of its middle, M
+	turn, span  float64 // its size in screen angle and in b, M
 	along       float64 // change of g from screen angle to screen angle
 	across      float64 // and from circle to circle
 }
@@ -251,7 +255,10 @@ func (w *lineWorker) trace(from, to float64, order int) ([]patch, error) {
 		w.edges = append(w.edges, w.b[k])
 		for i := 1; i < len(w.edges); i++ {
 			b := (w.edges[i-1] + w.edges[i]) / 2
-			patches = append(patches, patch{base: k - 1, area: s.area(w.edges[i-1], w.edges[i], to-from), alpha: b * cos, beta: b * sin})
+			patches = append(patches, patch{
+				base: k - 1, area: s.area(w.edges[i-1], w.edges[i], to-from), alpha: b * cos, beta: b * sin,
+				turn: to - from, span: w.edges[i] - w.edges[i-1],
+			})
 			w.dirs = append(w.dirs, geodesic.Direction{Alpha: b * cos, Beta: b * sin})
 		}
 	}

@@ -2,10 +2,14 @@ package measure
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"math/cmplx"
 	"testing"
 
+	"gonum.org/v1/gonum/integrate/quad"
+
+	"annulet/geodesic"
 	"annulet/raytrace"
 )
 
@@ -73,4 +77,60 @@ func TestVisibilityMap(t *testing.T) {
 	if math.Abs(closure(m)) < 1e-3 {
 		t.Errorf("the image is too even to tell: %g", closure(m))
 	}
+}
+
+// Face-on, each order is a set of rings: V is Hankel's transform ∫ I(b)
+// J₀(2πub) 2πb db of closed-form radii (Darwin 1959). At long baselines
+// orders 1 and 2 ring as J₀ does, and fall as u^(-1/2) up to the inverse of
+// their widths: Johnson et al., Sci. Adv. 6, eaaz1310 (2020).
+func TestOrdersRing(t *testing.T) {
+	v, _ := viewOf(t, diskScene(0, 10))
+	const step, places = 0.013, 160
+	var at [][2]float64
+	for k := range places + 1 {
+		u := step * float64(k)
+		at = append(at, [2]float64{u * math.Cos(0.4), u * math.Sin(0.4)})
+	}
+	orders, err := DiskVisibilities(context.Background(), v, at, Options{Lines: 360, Cells: 200})
+	if err != nil {
+		t.Fatal(err)
+	}
+	hankel := func(n int, u float64) float64 {
+		psi := (float64(n) + 0.5) * math.Pi
+		integrand := func(b float64) float64 {
+			orbit := geodesic.NewClosedOrbit(b)
+			r := orbit.RadiusAt(0, psi)
+			return math.Pow(1-3/r, 2) * math.Pow(r, -3) * math.J0(2*math.Pi*u*b) * 2 * math.Pi * b
+		}
+		return quad.Fixed(integrand, geodesic.RimImpact(0, psi, 6), geodesic.RimImpact(0, psi, 20), 200, nil, 0)
+	}
+	for n, order := range orders {
+		flux := hankel(n, 0)
+		for k := 0; k <= places; k += 16 {
+			want := hankel(n, step*float64(k))
+			near(t, fmt.Sprintf("order %d at %g", n, step*float64(k)), cmplx.Abs(order[k].Value-complex(want, 0))/flux, 0, 2e-4)
+		}
+	}
+	// nulls of order 2, a ring of some 10.42 M: one in every 1/d
+	nulls := 0
+	for k := 1; k <= places; k++ {
+		if real(orders[2][k].Value)*real(orders[2][k-1].Value) < 0 {
+			nulls++
+		}
+	}
+	near(t, "nulls of order 2", float64(nulls), step*places*10.42, 1)
+	// order 0 is as good as gone where order 1 still rings, and order 1
+	// falls before order 2 does
+	peak := func(n, from, to int) (most float64) {
+		for k := from; k < to; k++ {
+			most = max(most, cmplx.Abs(orders[n][k].Value))
+		}
+		return most
+	}
+	if !(peak(0, 140, places)/peak(0, 0, 20) < peak(1, 140, places)/peak(1, 0, 20)) ||
+		!(peak(1, 140, places)/peak(1, 0, 20) < peak(2, 140, places)/peak(2, 0, 20)) {
+		t.Error("orders do not outlast each other")
+	}
+	fall := peak(2, 140, places) / peak(2, 60, 80)
+	near(t, "fall of order 2", fall/math.Sqrt(70./150), 1, 0.1)
 }
