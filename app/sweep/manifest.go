@@ -94,6 +94,13 @@ func Begin(ctx context.Context, dir string, m *Manifest) (*Manifest, bool, error
 		return nil, false, err
 	}
 	old, err := Load(dir)
+	var entries []os.DirEntry
+	if errors.Is(err, ErrNoSweep) {
+		if entries, err = os.ReadDir(dir); err != nil {
+			return nil, false, err
+		}
+		old, err = Load(dir) // another process may have begun it before the listing
+	}
 	switch {
 	case err == nil:
 		if why := old.differs(m); why != "" {
@@ -101,8 +108,8 @@ func Begin(ctx context.Context, dir string, m *Manifest) (*Manifest, bool, error
 		}
 		return old, true, nil
 	case errors.Is(err, ErrNoSweep):
-		if entries, err := os.ReadDir(dir); err != nil || len(entries) > 0 && !looksLikeSweep(entries) {
-			return nil, false, errors.Join(err, fmt.Errorf("%s: the folder is not empty, and holds no sweep", dir))
+		if !looksLikeSweep(entries) {
+			return nil, false, fmt.Errorf("%s: the folder is not empty, and holds no sweep", dir)
 		}
 	case !errors.Is(err, ErrDamaged):
 		return nil, false, err
