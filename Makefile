@@ -39,7 +39,7 @@ bench: ## benchmarks of the pure packages
 fuzz: ## half a minute of every fuzz target
 	@for d in $$(grep -rl --include='*_test.go' '^func Fuzz' . | xargs -n1 dirname | sort -u); do \
 	  for f in $$(grep -ho '^func Fuzz[A-Za-z0-9_]*' $$d/*_test.go | cut -c6-); do \
-	    echo "$$d $$f"; $(GO) test -run '^$$' -fuzz "^$$f\$$" -fuzztime 30s $$d || exit 1; \
+	    echo "$$d $$f"; $(GO) test -run '^$$' -fuzz "^$$f\$$" -fuzztime 30s -fuzzminimizetime 50x $$d || exit 1; \
 	  done; done
 
 shots: build ## the README's picture

@@ -67,20 +67,29 @@ func (c clock) as(leg float64, s *Round, u, p float64) clock {
 }
 
 // delay interpolates the delay in a cell at share s of the way to the next
-// row, where the path is at u.
+// row, where the path is at u. Between rows it interpolates time/b: in flat
+// space time itself is b tan(ψ/2), and wide paths' rows are far apart in b.
 func (tb *OrbitTable) delay(c *cell, s, u float64) float64 {
 	i := c.row*tb.knots + c.knot
 	leg := tb.times[i].leg
-	ta, sa := tb.timeAlong(i, c.a, c.theta, leg, tb.v[c.row])
-	tn, sn := tb.timeAlong(i+tb.knots, c.b, c.theta, leg, tb.v[c.row+1])
-	return cubic(s, ta, tn, sa*c.dv, sn*c.dv) - leg*tb.object.tortoise(u)
+	va, vn := tb.v[c.row], tb.v[c.row+1]
+	ta, sa := tb.timeAlong(i, c.a, c.theta, leg, va)
+	tn, sn := tb.timeAlong(i+tb.knots, c.b, c.theta, leg, vn)
+	ea, en := tb.perB(va), tb.perB(vn)
+	scaled := cubic(s, ea*ta, en*tn, (ea*sa+ta*va/ea)*c.dv, (en*sn+tn*vn/en)*c.dv)
+	return scaled/tb.perB(va+s*c.dv) - leg*tb.object.tortoise(u)
+}
+
+// perB is 1/b of the path with that slope at the observer; d(1/b)/dv = v b.
+func (tb *OrbitTable) perB(v float64) float64 {
+	return math.Sqrt(v*v + tb.uObs*tb.uObs*tb.object.lapse2(tb.uObs))
 }
 
 // timeAlong interpolates time and its slope within one row, time by the
 // quintic, with its rate 1/(e + leg w) and that rate's change.
 func (tb *OrbitTable) timeAlong(i int, n *[2]node, theta, leg, v float64) (time, slope float64) {
 	s := tb.object
-	e := math.Sqrt(v*v + tb.uObs*tb.uObs*s.lapse2(tb.uObs))
+	e := tb.perB(v)
 	curve := 2 * s.charge2
 	var at [2]clock
 	var rate, bent, rateV [2]float64
