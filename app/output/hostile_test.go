@@ -4,6 +4,7 @@ import (
 	"archive/zip"
 	"bytes"
 	"encoding/binary"
+	"errors"
 	"fmt"
 	"strings"
 	"testing"
@@ -51,5 +52,23 @@ func hostile(t *testing.T) map[string][]byte {
 		"text":             []byte("schema = 1\n"),
 		"empty":            nil,
 		"zip without data": []byte("PK\x03\x04"),
+	}
+}
+
+// The directory of a zip is not held whatever its length.
+func TestRecoverManyMembers(t *testing.T) {
+	var file bytes.Buffer
+	z := zip.NewWriter(&file)
+	name := strings.Repeat("x", 200)
+	for k := range 20_000 {
+		if _, err := z.Create(fmt.Sprint(name, k)); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if err := z.Close(); err != nil {
+		t.Fatal(err)
+	}
+	if _, err := recoverFrom(bytes.NewReader(file.Bytes()), int64(file.Len())); !errors.Is(err, ErrDamaged) {
+		t.Errorf("%v, want ErrDamaged", err)
 	}
 }

@@ -168,10 +168,13 @@ func recoverFITS(f source, size int64) ([]byte, error) {
 
 // recoverNPZ reads one member; what it unpacks to is bounded.
 func recoverNPZ(f io.ReaderAt, size int64) ([]byte, error) {
-	z, err := zip.NewReader(f, size)
+	const directory = 1 << 20 // bytes, thousands of members; Annulet writes ten
+	allowed := &allowance{f, directory}
+	z, err := zip.NewReader(allowed, size)
 	if err != nil {
 		return nil, orNoScene(err)
 	}
+	allowed.left = 4 * maxScene
 	for _, member := range z.File {
 		if member.Name != sceneMember+".npy" {
 			continue
@@ -197,6 +200,20 @@ func recoverNPZ(f io.ReaderAt, size int64) ([]byte, error) {
 		return text[skip:], nil
 	}
 	return nil, ErrNoScene
+}
+
+// allowance reads no more than it is given: a zip's directory is held whole,
+// and a file may be nothing but directory.
+type allowance struct {
+	io.ReaderAt
+	left int
+}
+
+func (a *allowance) ReadAt(p []byte, at int64) (int, error) {
+	if a.left -= len(p); a.left < 0 {
+		return 0, errors.New("its directory or its scene is too long")
+	}
+	return a.ReaderAt.ReadAt(p, at)
 }
 
 // recoverTIFF reads the description of the first picture.
