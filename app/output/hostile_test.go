@@ -50,6 +50,9 @@ func hostile(t *testing.T) map[string][]byte {
 		"FITS axes":        []byte(header(card("SIMPLE  =                    T"), card("BITPIX  =                   64"), card("NAXIS   =                  999"), card("NAXIS1  =                 9999"))),
 		"CSV of one line":  []byte("# " + strings.Repeat("x", 6<<20)),
 		"text":             []byte("schema = 1\n"),
+		"JSON without end": []byte(`{"scene": "` + strings.Repeat("x", 9<<20)),
+		"JSON nested":      []byte(`{"scene": ` + strings.Repeat("[", 9<<20)),
+		"JSON of others":   []byte(`{"rows": [], "scene": ""}`),
 		"empty":            nil,
 		"zip without data": []byte("PK\x03\x04"),
 	}

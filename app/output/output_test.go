@@ -150,6 +150,7 @@ func FuzzRecover(f *testing.F) {
 		f.Add(whole)
 	}
 	f.Add([]byte("PK\x03\x04"))
+	f.Add([]byte(`{"scene": "schema = 1"}`))
 	f.Add([]byte("# no scene\n1,2\n"))
 	f.Fuzz(func(t *testing.T, file []byte) {
 		scene, err := recoverFrom(bytes.NewReader(file), int64(len(file)))

@@ -23,7 +23,7 @@ var (
 	// ErrNoScene: a sound file, but no scene in it.
 	ErrNoScene = errors.New("there is no scene in this file")
 	// ErrKind: a file of a kind that Annulet does not write.
-	ErrKind = errors.New("this is no file that Annulet writes: FITS, NPZ, PNG, TIFF, CSV, ECSV")
+	ErrKind = errors.New("this is no file that Annulet writes: FITS, NPZ, PNG, TIFF, CSV, ECSV, JSON")
 	// ErrDamaged: a file that ends early or contradicts itself.
 	ErrDamaged = errors.New("the file is damaged")
 )
@@ -82,6 +82,8 @@ func recoverFrom(f source, size int64) ([]byte, error) {
 		return recoverTIFF(f, size)
 	case strings.HasPrefix(head, "# "):
 		return recoverCSV(f)
+	case strings.HasPrefix(head, "{"):
+		return recoverJSON(f)
 	}
 	return nil, ErrKind
 }
@@ -283,10 +285,34 @@ func recoverCSV(f io.Reader) ([]byte, error) {
 	return scene, nil
 }
 
+// SceneKey is the first key of a JSON document that a verb writes; its value
+// is the scene.
+const SceneKey = "scene"
+
+// recoverJSON reads no further than the first key and its value.
+func recoverJSON(f io.Reader) ([]byte, error) {
+	document := json.NewDecoder(io.LimitReader(f, 8*maxScene)) // a byte takes up to six
+	var tokens [3]json.Token
+	for k := range tokens {
+		var err error
+		if tokens[k], err = document.Token(); err != nil {
+			return nil, orNoScene(err)
+		}
+		if k == 1 && tokens[k] != SceneKey {
+			return nil, ErrNoScene
+		}
+	}
+	scene, ok := tokens[2].(string)
+	if !ok || len(scene) > maxScene {
+		return nil, orNoScene(errors.New("its scene is no text, or too long"))
+	}
+	return []byte(scene), nil
+}
+
 // Recoverable says by a name's extension whether Recover may know the file.
 func Recoverable(name string) bool {
 	return slices.Contains(Extensions, strings.ToLower(path.Ext(name)))
 }
 
 // Extensions are those of the files that Recover knows.
-var Extensions = []string{".fits", ".npz", ".png", ".tif", ".tiff", ".csv", ".ecsv"}
+var Extensions = []string{".fits", ".npz", ".png", ".tif", ".tiff", ".csv", ".ecsv", ".json"}

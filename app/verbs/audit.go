@@ -74,6 +74,7 @@ func newAudit(s streams) *cobra.Command {
 
 // checkNote is what an audit finds.
 type checkNote struct {
+	Scene     string            `json:"scene"` // first, where scene recover looks
 	Units     map[string]string `json:"units"`
 	Title     string            `json:"title"`
 	Version   string            `json:"version"`
@@ -121,7 +122,7 @@ func audit(ctx context.Context, d *scenes.Document, samples int, seed uint64) (*
 			"r":      "relative, on the disk plane", "g": "relative", "delay": "M", "angle": "rad, place on star or sky", "flux": "of a pixel, relative to the brightest one drawn",
 			"tolerance": "relative",
 		},
-		Title: scene.Title, Version: Version, Tolerance: number(scene.Trace.Tolerance), Samples: samples, Seed: seed,
+		Scene: string(d.Text()), Title: scene.Title, Version: Version, Tolerance: number(scene.Trace.Tolerance), Samples: samples, Seed: seed,
 		Crossings: a.Crossings, Missed: a.Missed, Shared: a.Shared,
 		R: of(a.R), G: of(a.G), Delay: of(a.Delay), Angle: of(a.Angle), Flux: of(a.Intensity),
 	}

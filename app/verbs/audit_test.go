@@ -37,6 +37,10 @@ func TestAudit(t *testing.T) {
 	if file, err := os.ReadFile("check.json"); err != nil || string(file) != got.out {
 		t.Errorf("the file differs from stdout (%v)", err)
 	}
+	small, err := os.ReadFile("small.toml")
+	if scene := do(t, "", "scene", "recover", "check.json"); err != nil || scene.out != string(small) {
+		t.Errorf("recovered %q (%v)", scene.out, err)
+	}
 	if again := do(t, "", "audit", "small.toml", "--samples", "300", "--seed", "7", "--json"); again.out != got.out {
 		t.Error("the same seed gives another note")
 	}

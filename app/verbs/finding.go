@@ -110,14 +110,13 @@ func (m measuring) deliver(cmd *cobra.Command, s streams, of *measured, f findin
 	p := output.NewProvenance(of.document, Version, nil)
 	document := func(w io.Writer) error { return writeJSON(w, f.document(p)) }
 	for _, path := range m.out {
-		fill := document
-		switch strings.ToLower(filepath.Ext(path)) {
-		case ".csv":
-			fill = func(w io.Writer) error { return f.table.WriteCSV(w, p) }
-		case ".ecsv":
-			fill = func(w io.Writer) error { return f.table.WriteECSV(w, p) }
+		var err error
+		if strings.EqualFold(filepath.Ext(path), ".json") {
+			err = writeFile(cmd.Context(), path, document)
+		} else {
+			err = writeTable(cmd.Context(), path, f.table, p)
 		}
-		if err := writeFile(cmd.Context(), path, fill); err != nil {
+		if err != nil {
 			return err
 		}
 	}
@@ -147,7 +146,7 @@ func (f finding) document(p output.Provenance) ordered {
 			units = append(units, field{c.Name, unit})
 		}
 	}
-	all := ordered{}
+	all := ordered{{output.SceneKey, p.Scene}} // first, where scene recover looks
 	if !slices.ContainsFunc(fields, func(f field) bool { return f.name == "units" }) {
 		all = append(all, field{"units", units})
 	}

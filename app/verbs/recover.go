@@ -12,7 +12,7 @@ func newSceneRecover(s streams) *cobra.Command {
 	cmd := &cobra.Command{
 		Use:   "recover FILE",
 		Short: "print the scene inside any file that Annulet wrote",
-		Long: "Prints the scene inside a PNG, TIFF, FITS, NPZ, CSV or ECSV file that Annulet\n" +
+		Long: "Prints the scene inside a PNG, TIFF, FITS, NPZ, CSV, ECSV or JSON file that Annulet\n" +
 			"wrote, to the byte; render it again for the same numbers.",
 		Example: "  " + programName() + " scene recover figure.png > scene.toml",
 		Args:    takes(1, "one FILE"),
