@@ -80,9 +80,13 @@ index = %g
 		sinI, cosI := math.Sincos(c.i * math.Pi / 180)
 		for n, got := range l.Orders {
 			want := make([]float64, len(got))
-			const around, out = 900, 400
+			around := 900
+			const out = 400
+			if c.i == 0 {
+				around = 30 // every line is the same but for its shift
+			}
 			for j := range around {
-				s := 2 * math.Pi * (float64(j) + 0.3) / around
+				s := 2 * math.Pi * (float64(j) + 0.3) / float64(around)
 				psi := geodesic.FirstPlaneAngle(sinI, cosI, math.Sin(s)) + float64(n)*math.Pi
 				lo, hi := geodesic.RimImpact(0, psi, c.inner), geodesic.RimImpact(0, psi, c.outer)
 				for k := range out {
@@ -94,7 +98,7 @@ index = %g
 					r := orbit.RadiusAt(0, psi)
 					g := math.Sqrt(1-3/r) / (1 + b*math.Cos(s)*sinI*math.Pow(r, -1.5))
 					at := int(math.Floor(g/bin)) - l.First
-					want[at] += math.Pow(g, 4) * math.Pow(r, -c.index) * b * 2 * x * (hi - lo) / out * 2 * math.Pi / around
+					want[at] += math.Pow(g, 4) * math.Pow(r, -c.index) * b * 2 * x * (hi - lo) / out * 2 * math.Pi / float64(around)
 				}
 			}
 			peak, worst := 0.0, 0.0
