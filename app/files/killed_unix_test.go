@@ -84,13 +84,20 @@ func TestKilledHalfWay(t *testing.T) {
 	if got, err := os.ReadFile(path); err != nil || string(got) != oldText {
 		t.Errorf("the old file holds %.40q (%v)", got, err)
 	}
-	// Nobody could remove the temporary file; it is hidden and named as ours.
+	// Where files can be without a name nothing is left; elsewhere nobody could
+	// remove the temporary file, which is hidden and named as ours.
+	probe, unnamed := createUnnamed(path+"x", mode)
+	if unnamed {
+		if err := probe.Close(); err != nil {
+			t.Error(err)
+		}
+	}
 	entries, err := os.ReadDir(folder)
 	if err != nil {
 		t.Fatal(err)
 	}
 	for _, e := range entries {
-		if n := e.Name(); n != "image.png" && !(strings.HasPrefix(n, temporaryPrefix) && strings.HasSuffix(n, temporarySuffix)) {
+		if n := e.Name(); n != "image.png" && (unnamed || !strings.HasPrefix(n, temporaryPrefix) || !strings.HasSuffix(n, temporarySuffix)) {
 			t.Errorf("%s is left in the folder", n)
 		}
 	}

@@ -21,8 +21,9 @@ var unfinished register
 
 type register struct {
 	mu        sync.Mutex
-	files     map[*os.File]struct{}
+	files     map[*os.File]bool // true for those that have no name yet
 	abandoned bool
+	named     bool // always: files without a name could get none here
 }
 
 // create opens a new temporary file beside target, for writing.
@@ -32,14 +33,22 @@ func (r *register) create(target string, mode fs.FileMode) (*os.File, error) {
 	if r.abandoned {
 		return nil, ErrAbandoned
 	}
-	file, err := os.OpenFile(temporaryFor(target), os.O_WRONLY|os.O_CREATE|os.O_EXCL, mode)
-	if err != nil {
-		return nil, err
+	name := temporaryFor(target)
+	var file *os.File
+	unnamed := false
+	if !r.named {
+		file, unnamed = createUnnamed(name, mode)
+	}
+	if !unnamed {
+		var err error
+		if file, err = os.OpenFile(name, os.O_WRONLY|os.O_CREATE|os.O_EXCL, mode); err != nil {
+			return nil, err
+		}
 	}
 	if r.files == nil {
-		r.files = map[*os.File]struct{}{}
+		r.files = map[*os.File]bool{}
 	}
-	r.files[file] = struct{}{}
+	r.files[file] = unnamed
 	return file, nil
 }
 
@@ -50,6 +59,12 @@ func (r *register) finish(file *os.File, target string) error {
 	defer r.mu.Unlock()
 	if r.abandoned {
 		return ErrAbandoned
+	}
+	if r.files[file] {
+		if err := giveName(file); err != nil {
+			return err
+		}
+		r.files[file] = false
 	}
 	if err := file.Close(); err != nil {
 		return err
@@ -74,8 +89,10 @@ func (r *register) abandon() error {
 	defer r.mu.Unlock()
 	r.abandoned = true
 	var err error
-	for file := range r.files {
-		err = errors.Join(err, os.Remove(file.Name()))
+	for file, unnamed := range r.files {
+		if !unnamed {
+			err = errors.Join(err, os.Remove(file.Name()))
+		}
 	}
 	clear(r.files)
 	return err
@@ -93,12 +110,23 @@ func discard(file *os.File) error {
 	return errors.Join(closed, removed)
 }
 
-// tryCreate makes a temporary file beside target and removes it.
+// tryCreate makes a temporary file beside target, with a name, and removes it.
+// Where a file without a name can get none, all later ones have names: long
+// work must not end there.
 func (r *register) tryCreate(target string) error {
 	const mode = 0o600
 	file, err := r.create(target, mode)
 	if err != nil {
 		return err
 	}
-	return r.drop(file)
+	r.mu.Lock()
+	if r.files[file] && giveName(file) != nil {
+		r.named = true
+	}
+	again := r.named && r.files[file]
+	r.mu.Unlock()
+	if err := r.drop(file); err != nil || !again {
+		return err
+	}
+	return r.tryCreate(target) // with a name from the start
 }

@@ -300,3 +300,26 @@ func ExampleWrite() {
 	fmt.Printf("%v %q\n", err, text)
 	// Output: <nil> "order,width\n"
 }
+
+// Where files without a name can get none, they have one from the start.
+func TestNamedFromTheStart(t *testing.T) {
+	folder, path := withOld(t)
+	r := register{named: true}
+	if err := r.tryCreate(path); err != nil {
+		t.Fatal(err)
+	}
+	file, err := r.create(path, mode)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, err := os.Stat(file.Name()); err != nil || r.files[file] {
+		t.Errorf("%s has no name (%v)", file.Name(), err)
+	}
+	if _, err := file.WriteString(newText); err != nil {
+		t.Fatal(err)
+	}
+	if err := r.finish(file, path); err != nil {
+		t.Fatal(err)
+	}
+	holds(t, folder, map[string]string{"image.png": newText})
+}
