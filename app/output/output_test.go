@@ -92,20 +92,25 @@ func writeAll(t testing.TB, dir string) (map[string]string, *raytrace.Plate) {
 	put("csv", func(w io.Writer) error { return table.WriteCSV(w, p) })
 	put("ecsv", func(w io.Writer) error { return table.WriteECSV(w, p) })
 	paths["fits"] = filepath.Join(dir, "a.fits")
-	err = files.WriteAt(context.Background(), paths["fits"], 0o666, func(w io.WriterAt) error {
-		f, err := NewFITS(w, v, d.Scene(), layers, NewProvenance(d, "0.0", nil))
+	writeFITS(t, paths["fits"], d, v, plate, layers)
+	return paths, plate
+}
+
+func writeFITS(t testing.TB, path string, d *scenes.Document, v *raytrace.View, plate *raytrace.Plate, layers []raytrace.Layer) {
+	t.Helper()
+	err := files.WriteAt(context.Background(), path, 0o666, func(w io.WriterAt) error {
+		f, err := NewFITS(w, v, d.Scene(), layers, NewProvenance(d, "0.0", nil)) // bounds come with Close
 		if err != nil {
 			return err
 		}
 		if err := f.Put(plate, 0); err != nil {
 			return err
 		}
-		return f.Close(p)
+		return f.Close(NewProvenance(d, "0.0", plate))
 	})
 	if err != nil {
 		t.Fatal(err)
 	}
-	return paths, plate
 }
 
 // Every file brings its scene back, to the byte.
@@ -412,21 +417,8 @@ total_flux = "0.6 Jy"`, 1)
 	if err != nil {
 		t.Fatal(err)
 	}
-	p := NewProvenance(d, "0.0", plate)
 	path := filepath.Join(t.TempDir(), "a.fits")
-	err = files.WriteAt(context.Background(), path, 0o666, func(w io.WriterAt) error {
-		f, err := NewFITS(w, v, d.Scene(), []raytrace.Layer{raytrace.Intensity}, p)
-		if err != nil {
-			return err
-		}
-		if err := f.Put(plate, 0); err != nil {
-			return err
-		}
-		return f.Close(p)
-	})
-	if err != nil {
-		t.Fatal(err)
-	}
+	writeFITS(t, path, d, v, plate, []raytrace.Layer{raytrace.Intensity})
 	if out := foreign(t, "fitsverify", "-q", path); !strings.Contains(out, "verification OK") {
 		t.Error(out)
 	}
