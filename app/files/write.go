@@ -38,25 +38,22 @@ const bufferBytes = 1 << 16
 // ErrDiskFull where one of these is the cause, else what fill, the system or
 // ctx said.
 func Write(ctx context.Context, path string, mode fs.FileMode, fill func(io.Writer) error) error {
-	if err := ctx.Err(); err != nil {
-		return fmt.Errorf("%s: not written: %w", path, err)
-	}
-	target, err := examine(path)
-	if err != nil {
-		return err
-	}
-	if target.direct {
-		return describe(path, writeDirect(ctx, target.path, fill))
-	}
-	if target.exists {
-		mode = target.mode
-	}
-	return describe(path, replace(ctx, target, mode, func(file *os.File) error { return pour(ctx, file, fill) }))
+	return write(ctx, path, mode,
+		func(file *os.File) error { return pour(ctx, file, fill) },
+		func(target string) error { return writeDirect(ctx, target, fill) })
 }
 
 // WriteAt is Write for formats that are not written from front to back. What
 // is neither file nor folder is refused.
 func WriteAt(ctx context.Context, path string, mode fs.FileMode, fill func(io.WriterAt) error) error {
+	return write(ctx, path, mode,
+		func(file *os.File) error { return fill(atWhileLive{ctx, file}) },
+		func(string) error { return errors.New("this format can only be written to a file") })
+}
+
+// write fills an ordinary file, or hands what is neither file nor folder to
+// direct.
+func write(ctx context.Context, path string, mode fs.FileMode, fill func(*os.File) error, direct func(target string) error) error {
 	if err := ctx.Err(); err != nil {
 		return fmt.Errorf("%s: not written: %w", path, err)
 	}
@@ -65,12 +62,12 @@ func WriteAt(ctx context.Context, path string, mode fs.FileMode, fill func(io.Wr
 		return err
 	}
 	if target.direct {
-		return fmt.Errorf("%s: this format can only be written to a file", path)
+		return describe(path, direct(target.path))
 	}
 	if target.exists {
 		mode = target.mode
 	}
-	return describe(path, replace(ctx, target, mode, func(file *os.File) error { return fill(atWhileLive{ctx, file}) }))
+	return describe(path, replace(ctx, target, mode, fill))
 }
 
 // atWhileLive passes writes on until ctx ends.
