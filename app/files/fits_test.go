@@ -5,14 +5,14 @@ import (
 	"encoding/json"
 	"io"
 	"math"
-	"os"
-	"os/exec"
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"annulet/app/files/foreign"
 )
 
-// trial writes a FITS file with all that the writer can do.
+// trialFITS writes a FITS file with all that the writer can do.
 func trialFITS(t *testing.T) string {
 	t.Helper()
 	path := filepath.Join(t.TempDir(), "a.fits")
@@ -53,51 +53,16 @@ func trialFITS(t *testing.T) string {
 	return path
 }
 
-// foreign runs a program of others; in CI it must be there.
-func foreign(t *testing.T, name string, args ...string) string {
-	t.Helper()
-	if _, err := exec.LookPath(name); err != nil {
-		notHere(t, name)
-	}
-	out, err := exec.Command(name, args...).CombinedOutput()
-	if err != nil {
-		t.Fatalf("%s: %v: %s", name, err, out)
-	}
-	return string(out)
-}
-
-func notHere(t *testing.T, what string) {
-	t.Helper()
-	if os.Getenv("CI") == "true" {
-		t.Fatalf("%s is not here; sh .ci/setup test installs it", what)
-	}
-	t.Skipf("NOT RUN: %s is not here", what)
-}
-
-// python runs a program of astropy's or NumPy's.
-func python(t *testing.T, module, program string, args ...string) string {
-	t.Helper()
-	const interpreter = "/usr/bin/python3" // Debian's, for which its modules are
-	if exec.Command(interpreter, "-c", "import "+module).Run() != nil {
-		notHere(t, "Python's "+module)
-	}
-	out, err := exec.Command(interpreter, append([]string{"-W", "error", "-c", program}, args...)...).CombinedOutput()
-	if err != nil {
-		t.Fatalf("%v: %s", err, out)
-	}
-	return string(out)
-}
-
 // fitsverify is HEASARC's judge of the standard.
 func TestFITSVerify(t *testing.T) {
-	out := foreign(t, "fitsverify", "-q", trialFITS(t))
+	out := foreign.Run(t, "fitsverify", "-q", trialFITS(t))
 	if !strings.Contains(out, "verification OK") {
 		t.Errorf("%s", out)
 	}
 }
 
 func TestFITSAstropy(t *testing.T) {
-	out := python(t, "astropy", `
+	out := foreign.Python(t, "astropy", `
 import json, sys
 from astropy.io import fits
 with fits.open(sys.argv[1], checksum=True) as f:

@@ -8,6 +8,8 @@ import (
 	"strings"
 	"testing"
 
+	"annulet/app/files/foreign"
+
 	"codeberg.org/sbinet/npyio/npz"
 )
 
@@ -66,7 +68,7 @@ func numpyReads(t *testing.T, file []byte) {
 	if err := os.WriteFile(path, file, 0o666); err != nil {
 		t.Fatal(err)
 	}
-	out := python(t, "numpy", `
+	out := foreign.Python(t, "numpy", `
 import numpy, sys
 f = numpy.load(sys.argv[1])
 print(sorted(f.files), f["image"].shape, f["image"].dtype, f["image"][1, 1], f["many"][20000] == 20000**.5, f["none"].shape, repr(bytes(f["scene"]).decode()))

@@ -9,13 +9,13 @@ import (
 	"io"
 	"math"
 	"os"
-	"os/exec"
 	"path/filepath"
 	"slices"
 	"strings"
 	"testing"
 
 	"annulet/app/files"
+	"annulet/app/files/foreign"
 	"annulet/raytrace"
 	"annulet/scenes"
 )
@@ -175,43 +175,9 @@ func TestRecoverHostile(t *testing.T) {
 	}
 }
 
-// python runs a program of astropy's, NumPy's or tifffile's.
-func python(t *testing.T, module, program string, args ...string) string {
-	t.Helper()
-	const interpreter = "/usr/bin/python3" // Debian's, for which its modules are
-	if exec.Command(interpreter, "-c", "import "+module).Run() != nil {
-		notHere(t, "Python's "+module)
-	}
-	out, err := exec.Command(interpreter, append([]string{"-W", "error", "-c", program}, args...)...).CombinedOutput()
-	if err != nil {
-		t.Fatalf("%v: %s", err, out)
-	}
-	return string(out)
-}
-
-func notHere(t *testing.T, what string) {
-	t.Helper()
-	if os.Getenv("CI") == "true" {
-		t.Fatalf("%s is not here; sh .ci/setup test installs it", what)
-	}
-	t.Skipf("NOT RUN: %s is not here", what)
-}
-
-func foreign(t *testing.T, name string, args ...string) string {
-	t.Helper()
-	if _, err := exec.LookPath(name); err != nil {
-		notHere(t, name)
-	}
-	out, err := exec.Command(name, args...).CombinedOutput()
-	if err != nil {
-		t.Fatalf("%s: %v: %s", name, err, out)
-	}
-	return string(out)
-}
-
 func TestFITSIsSound(t *testing.T) {
 	paths, _ := writeAll(t, t.TempDir())
-	if out := foreign(t, "fitsverify", "-q", paths["fits"]); !strings.Contains(out, "verification OK") {
+	if out := foreign.Run(t, "fitsverify", "-q", paths["fits"]); !strings.Contains(out, "verification OK") {
 		t.Error(out)
 	}
 }
@@ -221,7 +187,7 @@ func TestFITSIsSound(t *testing.T) {
 // points to (east sin 30, north cos 30) and alpha to (-cos 30, sin 30).
 func TestFITSInAstropy(t *testing.T) {
 	paths, plate := writeAll(t, t.TempDir())
-	out := python(t, "astropy", `
+	out := foreign.Python(t, "astropy", `
 import json, sys
 from astropy.io import fits
 from astropy.wcs import WCS
@@ -272,7 +238,7 @@ with fits.open(sys.argv[1], checksum=True) as f:
 // The approaching side is left, and east when N is north.
 func TestBlueSideIsEast(t *testing.T) {
 	paths, _ := writeAll(t, t.TempDir())
-	out := python(t, "astropy", `
+	out := foreign.Python(t, "astropy", `
 import sys, numpy
 from astropy.io import fits
 from astropy.wcs import WCS
@@ -306,7 +272,7 @@ func near(t *testing.T, what string, got, want, within float64) {
 
 func TestNPZInNumPy(t *testing.T) {
 	paths, plate := writeAll(t, t.TempDir())
-	out := python(t, "numpy", `
+	out := foreign.Python(t, "numpy", `
 import sys, json, numpy
 f = numpy.load(sys.argv[1])
 print(json.dumps({"shape": f["g"].shape, "total": f["total"].astype(">f4").tobytes().hex(), "alpha": float(f["alpha"][0]), "beta": float(f["beta"][-1]),
@@ -329,7 +295,7 @@ print(json.dumps({"shape": f["g"].shape, "total": f["total"].astype(">f4").tobyt
 
 func TestTIFFInTifffile(t *testing.T) {
 	paths, _ := writeAll(t, t.TempDir())
-	out := python(t, "tifffile", `
+	out := foreign.Python(t, "tifffile", `
 import sys, tifffile
 with tifffile.TiffFile(sys.argv[1]) as f:
     page = f.pages[0]
@@ -341,7 +307,7 @@ with tifffile.TiffFile(sys.argv[1]) as f:
 	if got := strings.TrimSpace(out); got != want {
 		t.Errorf("%s, want %s", got, want)
 	}
-	if out := foreign(t, "exiftool", "-s3", "-BitsPerSample", paths["tiff"]); !strings.HasPrefix(out, "16 16 16") {
+	if out := foreign.Run(t, "exiftool", "-s3", "-BitsPerSample", paths["tiff"]); !strings.HasPrefix(out, "16 16 16") {
 		t.Errorf("exiftool: %s", out)
 	}
 }
@@ -370,7 +336,7 @@ func TestReadmeSnippets(t *testing.T) {
 print(total.shape, g.shape[-2:], "%.9g" % total.max(), scene.startswith("schema = 1"))
 `
 		want := fmt.Sprintf("(30, 40) (30, 40) %.9g True", float64(slices.Max(plate.Total)))
-		if got := strings.TrimSpace(python(t, module, program)); got != want {
+		if got := strings.TrimSpace(foreign.Python(t, module, program)); got != want {
 			t.Errorf("snippet %d: %s, want %s", k+1, got, want)
 		}
 	}
@@ -378,7 +344,7 @@ print(total.shape, g.shape[-2:], "%.9g" % total.max(), scene.startswith("schema 
 
 func TestECSVInAstropy(t *testing.T) {
 	paths, _ := writeAll(t, t.TempDir())
-	out := python(t, "astropy", `
+	out := foreign.Python(t, "astropy", `
 import sys, json
 from astropy.table import Table
 t = Table.read(sys.argv[1], format="ascii.ecsv")
@@ -392,7 +358,7 @@ print(json.dumps([t.colnames, str(t["angle"].unit), str(t["order"].dtype), t["na
 	if fmt.Sprint(got) != fmt.Sprint(want) {
 		t.Errorf("%q\nwant %q", got, want)
 	}
-	out = python(t, "astropy", `
+	out = foreign.Python(t, "astropy", `
 import sys
 from astropy.table import Table
 t = Table.read(sys.argv[1], format="ascii.csv", comment="#")
@@ -419,10 +385,10 @@ total_flux = "0.6 Jy"`, 1)
 	}
 	path := filepath.Join(t.TempDir(), "a.fits")
 	writeFITS(t, path, d, v, plate, []raytrace.Layer{raytrace.Intensity})
-	if out := foreign(t, "fitsverify", "-q", path); !strings.Contains(out, "verification OK") {
+	if out := foreign.Run(t, "fitsverify", "-q", path); !strings.Contains(out, "verification OK") {
 		t.Error(out)
 	}
-	out := python(t, "astropy", `
+	out := foreign.Python(t, "astropy", `
 import sys, json, numpy
 from astropy.io import fits
 import astropy.units as u

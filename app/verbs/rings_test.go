@@ -3,9 +3,10 @@ package verbs
 import (
 	"math"
 	"os"
-	"os/exec"
 	"strings"
 	"testing"
+
+	"annulet/app/files/foreign"
 )
 
 func TestRingsVerb(t *testing.T) {
@@ -111,12 +112,7 @@ func TestLineVerb(t *testing.T) {
 		t.Errorf("%+v", got)
 	}
 	code := "from astropy.table import Table; t = Table.read('line.ecsv'); assert abs(t['flux'].sum() - 1) < 1e-9; assert 'scene' in t.meta"
-	if out, err := exec.Command("/usr/bin/python3", "-c", code).CombinedOutput(); err != nil {
-		if os.Getenv("CI") == "" && strings.Contains(string(out), "No module") {
-			t.Skip("NOT RUN: astropy is not here")
-		}
-		t.Errorf("astropy: %v\n%s", err, out)
-	}
+	foreign.Python(t, "astropy", code)
 }
 
 func TestSpectrumAndLightCurveVerbs(t *testing.T) {
