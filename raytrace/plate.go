@@ -72,6 +72,14 @@ func (p *Plate) Layer(l Layer, order int) []float32 {
 	return p.layers[order*int(layerCount)+int(l)]
 }
 
+// Tally adds the counts of another plate, and takes over the worse bounds.
+func (p *Plate) Tally(other *Plate) {
+	p.Paths += other.Paths
+	p.Integrated += other.Integrated
+	p.WorstBound = max(p.WorstBound, other.WorstBound)
+	p.WorstAngle = max(p.WorstAngle, other.WorstAngle)
+}
+
 // emptied returns a plate in the memory of p, which has at least that many
 // rows, on which nothing shines.
 func (p *Plate) emptied(rows int) *Plate {

@@ -59,12 +59,7 @@ func (v *View) Render(ctx context.Context, o Options) (*Plate, error) {
 	want := v.want(kept)
 	tiles := tilesOutward(plate.Columns, plate.Rows, o.tileSide())
 	err := v.onTiles(ctx, o, want, tiles, func(b *bench, k int) (tileReport, error) {
-		integrated, err := b.followTile(tiles[k], want)
-		if err != nil {
-			return tileReport{}, err
-		}
-		b.shade()
-		return tileReport{b.exposeTile(tiles[k], plate), integrated}, nil
+		return b.renderTile(tiles[k], want, plate)
 	}, plate)
 	if err != nil {
 		return nil, err
@@ -161,6 +156,16 @@ type bounds struct{ radius, angle float64 }
 func (b *bench) followTile(tile image.Rectangle, want geodesic.Want) (integrated int, err error) {
 	b.screen = b.view.Field.tileCenters(tile, b.screen[:0])
 	return b.follow(want)
+}
+
+// renderTile traces and shades a tile onto the plate.
+func (b *bench) renderTile(tile image.Rectangle, want geodesic.Want, plate *Plate) (tileReport, error) {
+	integrated, err := b.followTile(tile, want)
+	if err != nil {
+		return tileReport{}, err
+	}
+	b.shade()
+	return tileReport{b.exposeTile(tile, plate), integrated}, nil
 }
 
 // exposeTile writes the shaded block to its pixels and returns the worst

@@ -73,20 +73,12 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 			plate.firstRow = from
 			rows := tileRow(whole.Columns, from, to, side)
 			if err := v.onTiles(ctx, o, want, rows, func(b *bench, k int) (tileReport, error) {
-				integrated, err := b.followTile(rows[k], want)
-				if err != nil {
-					return tileReport{}, err
-				}
-				b.shade()
-				return tileReport{b.exposeTile(rows[k], plate), integrated}, nil
+				return b.renderTile(rows[k], want, plate)
 			}, plate); err != nil {
 				return err
 			}
 			done += len(rows)
-			whole.Paths += plate.Paths
-			whole.Integrated += plate.Integrated
-			whole.WorstBound = max(whole.WorstBound, plate.WorstBound)
-			whole.WorstAngle = max(whole.WorstAngle, plate.WorstAngle)
+			whole.Tally(plate)
 			select {
 			case ready <- Strip{Plate: plate, FirstRow: from}:
 			case <-ctx.Done():

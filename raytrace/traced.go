@@ -17,7 +17,6 @@ type Traced struct {
 	want   geodesic.Want
 	tiles  []image.Rectangle
 	blocks []block // one a tile
-	paths  int
 	direct int
 }
 
@@ -48,7 +47,7 @@ func (v *View) Trace(ctx context.Context, o Options) (*Traced, error) {
 	if err != nil {
 		return nil, err
 	}
-	t.paths, t.direct = counts.Paths, counts.Integrated
+	t.direct = counts.Integrated
 	return t, nil
 }
 

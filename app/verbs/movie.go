@@ -125,10 +125,7 @@ func (j *renderJob) writeMovie(ctx context.Context, patterns []string) (*raytrac
 			return nil, nil, fmt.Errorf("frame %d of %d, at %g M: %w", k, len(times), t, err)
 		}
 		written = append(written, paths...)
-		all.Paths += plate.Paths
-		all.Integrated += plate.Integrated
-		all.WorstBound = max(all.WorstBound, plate.WorstBound)
-		all.WorstAngle = max(all.WorstAngle, plate.WorstAngle)
+		all.Tally(plate)
 	}
 	j.s.note("render: %d frames from %g to %g M, %.2f s a frame", len(times), times[0], times[len(times)-1],
 		time.Since(begun).Seconds()/float64(len(times)))
