@@ -2,9 +2,9 @@ package geodesic
 
 import "math"
 
-// sinCosDeg returns sine and cosine of an angle in degrees, exact at the
+// SinCosDeg returns sine and cosine of an angle in degrees, exact at the
 // multiples of 90.
-func sinCosDeg(deg float64) (sin, cos float64) {
+func SinCosDeg(deg float64) (sin, cos float64) {
 	switch math.Mod(math.Abs(deg), 360) {
 	case 0:
 		return 0, 1

@@ -54,7 +54,7 @@ func (s *Round) newTracer(o Observer, plan Plan) (*roundTracer, error) {
 	}
 	t.observer.Radius = max(o.Radius, centreRadius)
 	t.uObs = 1 / t.observer.Radius
-	t.sinI, t.cosI = sinCosDeg(o.InclinationDeg)
+	t.sinI, t.cosI = SinCosDeg(o.InclinationDeg)
 	t.tanI = math.Inf(1)
 	if t.cosI != 0 {
 		t.tanI = t.sinI / t.cosI

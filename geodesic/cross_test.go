@@ -44,7 +44,7 @@ func TestCrossingsAgainstClosedForm(t *testing.T) {
 			for _, radius := range []float64{6, 12, 1000, math.Inf(1)} {
 				o := Observer{Radius: radius, InclinationDeg: inclination}
 				rays, at := block(t, rng, o, Plan{Tolerance: tolerance, MaxOrder: 2, Plane: true}, Want{}, 200)
-				sinI, cosI := sinCosDeg(inclination)
+				sinI, cosI := SinCosDeg(inclination)
 				for k := range rays.Lambda {
 					if !rays.Seen[k] {
 						continue
@@ -97,7 +97,7 @@ func TestDelayAndSlope(t *testing.T) {
 	rng := rand.New(rand.NewPCG(11, 12))
 	o := Observer{Radius: 50, InclinationDeg: 70}
 	rays, at := block(t, rng, o, Plan{Tolerance: 1e-11, MaxOrder: 2, Plane: true}, Want{Delay: true, Slope: true}, 2000)
-	sinI, cosI := sinCosDeg(70)
+	sinI, cosI := SinCosDeg(70)
 	compared := 0
 	for k := range rays.Lambda {
 		for j := at.Start[k]; j < at.Start[k+1]; j++ {
@@ -146,13 +146,13 @@ func TestDelayAndSlope(t *testing.T) {
 // against values on which closed form and quadrature agree.
 func TestInclinedRings(t *testing.T) {
 	for _, inclination := range []float64{0, 1, 30, 60, 89, 120, 180} {
-		sinI, cosI := sinCosDeg(inclination)
+		sinI, cosI := SinCosDeg(inclination)
 		for n, want := range []float64{6.932148479189, 5.478913722084, 5.207989587555} {
 			psi := FirstPlaneAngle(sinI, cosI, 0) + float64(n)*math.Pi
 			near(t, fmt.Sprintf("side at i = %g, order %d", inclination, n), RimImpact(0, psi, 6), want, 2e-11)
 		}
 	}
-	sinI, cosI := sinCosDeg(60)
+	sinI, cosI := SinCosDeg(60)
 	for _, c := range []struct {
 		order       int
 		sinS, wantB float64
@@ -195,7 +195,7 @@ func TestOutwardStarts(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	sinI, cosI := sinCosDeg(40)
+	sinI, cosI := SinCosDeg(40)
 	checked := 0
 	for deg := 91.0; deg < 179; deg += 0.5 {
 		sin, cos := math.Sincos(deg * math.Pi / 180)
@@ -274,7 +274,7 @@ func BenchmarkCross(b *testing.B) {
 	for b.Loop() {
 		tracer.Cross(&r, Want{Delay: true}, &c)
 	}
-	sinI, cosI := sinCosDeg(75)
+	sinI, cosI := SinCosDeg(75)
 	for k := range dirs {
 		closed := NewClosedOrbit(r.Impact(k))
 		for j := c.Start[k]; j < c.Start[k+1]; j++ {

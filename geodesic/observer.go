@@ -173,7 +173,7 @@ func (s *Round) Aim(o Observer, parallel bool, dirs []Direction, rays *Rays) err
 		s.aimParallel(o, dirs, rays)
 		return nil
 	}
-	sinI, cosI := sinCosDeg(o.InclinationDeg)
+	sinI, cosI := SinCosDeg(o.InclinationDeg)
 	for k, d := range dirs {
 		l := s.angular(o, d)
 		alpha, beta := l.b*l.cosS, l.b*l.sinS
@@ -190,7 +190,7 @@ func (s *Round) Aim(o Observer, parallel bool, dirs []Direction, rays *Rays) err
 
 // aimParallel is Aim for components of L/E on a static observer's field.
 func (s *Round) aimParallel(o Observer, dirs []Direction, rays *Rays) {
-	sinI, cosI := sinCosDeg(o.InclinationDeg)
+	sinI, cosI := SinCosDeg(o.InclinationDeg)
 	cos2 := cosI * cosI
 	u := 1 / o.Radius
 	reach2 := u * u * s.lapse2(u) // 1 over the square of the largest b

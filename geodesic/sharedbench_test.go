@@ -26,7 +26,7 @@ func BenchmarkShared(b *testing.B) {
 			var r Rays
 			var c Crossings
 			worst := 0.0
-			sinI, cosI := sinCosDeg(inclination)
+			sinI, cosI := SinCosDeg(inclination)
 			row := func(y int) {
 				dirs = dirs[:0]
 				for x := range side {

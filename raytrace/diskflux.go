@@ -159,10 +159,7 @@ func (f *diskFlux) angles(n int, shift float64) ([]float64, error) {
 // begin brackets b around every radius, or finds it by closed form.
 func (f *diskFlux) begin(order, n int, shift float64) {
 	o := f.bench.view.Observer
-	sinI, cosI := math.Sincos(o.InclinationDeg * math.Pi / 180)
-	if o.InclinationDeg == 90 {
-		cosI = 0
-	}
+	sinI, cosI := geodesic.SinCosDeg(o.InclinationDeg)
 	closed := f.sphere == geodesic.PhotonSphere && o.Motion == geodesic.Static
 	for k := range f.at {
 		r := f.radii[k%len(f.radii)]

@@ -72,10 +72,7 @@ func (f Field) reach(alpha, beta float64) float64 {
 // static observer outside an object without charge.
 func exactReach(v *View, object *geodesic.Round) (half float64) {
 	f, o := v.Field, v.Observer
-	sinI, cosI := math.Sincos(o.InclinationDeg * math.Pi / 180)
-	if o.InclinationDeg == 90 {
-		cosI = 0
-	}
+	sinI, cosI := geodesic.SinCosDeg(o.InclinationDeg)
 	lapse := object.Lapse(o.Radius)
 	size := func(b float64) float64 {
 		if f.IsParallel() {

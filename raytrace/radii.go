@@ -49,7 +49,7 @@ func (v *View) Radii(ctx context.Context, o Options, r *Radii) error {
 // form does not have, or that is missing, counts as 1.
 func (r *Radii) WorstError(ctx context.Context, v *View, reach float64, workers int) (worst float64, compared int, err error) {
 	uObs := 1 / v.Observer.Radius
-	sinI, cosI := math.Sincos(v.Observer.InclinationDeg * math.Pi / 180)
+	sinI, cosI := geodesic.SinCosDeg(v.Observer.InclinationDeg)
 	var mu sync.Mutex
 	err = v.onTiles(ctx, Options{Workers: workers, PathByPath: true}, geodesic.Want{}, r.tiles, func(b *bench, k int) (tileReport, error) {
 		b.screen = v.Field.tileCenters(r.tiles[k], b.screen[:0])

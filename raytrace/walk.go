@@ -33,7 +33,7 @@ func (v *View) Walk(alpha, beta float64, perTurn int) (Track, error) {
 		return Track{}, nil
 	}
 	t := Track{Impact: seen.B[0]}
-	sinI, cosI := math.Sincos(v.Observer.InclinationDeg * math.Pi / 180)
+	sinI, cosI := geodesic.SinCosDeg(v.Observer.InclinationDeg)
 	for n := range v.Plan.MaxOrder + 1 {
 		t.Disk = append(t.Disk, geodesic.FirstPlaneAngle(sinI, cosI, seen.SinS[0])+float64(n)*math.Pi)
 	}

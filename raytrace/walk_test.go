@@ -52,3 +52,27 @@ func TestWalkFollowsTheOrbit(t *testing.T) {
 		}
 	}
 }
+
+// Edge-on every path meets the plane behind the object, after half a turn,
+// in the lower half of the screen too.
+func TestWalkEdgeOn(t *testing.T) {
+	d, err := scenes.Parse("walk.toml", []byte("schema = 1\n[observer]\ninclination = 90\n[[emitter]]\n"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	v, err := NewView(d.Scene())
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, beta := range []float64{7, -7} {
+		track, err := v.Walk(3, beta, 4)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for n, psi := range track.Disk {
+			if want := math.Pi * float64(n+1); psi != want {
+				t.Errorf("beta = %g: order %d crosses after %g rad, want %g", beta, n, psi, want)
+			}
+		}
+	}
+}

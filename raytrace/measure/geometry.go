@@ -44,10 +44,7 @@ func NewGeometry(v *raytrace.View) (*Geometry, error) {
 		return nil, cannot("light passes through the object, so that a circle has several images of one order")
 	}
 	g := &Geometry{object: object, observer: o, uObs: 1 / o.Radius, widest: math.Inf(1)}
-	g.sinI, g.cosI = math.Sincos(o.InclinationDeg * math.Pi / 180)
-	if o.InclinationDeg == 90 {
-		g.cosI = 0
-	}
+	g.sinI, g.cosI = geodesic.SinCosDeg(o.InclinationDeg)
 	if !math.IsInf(o.Radius, 1) {
 		g.widest = o.Radius / object.Lapse(o.Radius)
 	}

@@ -61,7 +61,7 @@ func Rims(s scenes.Scene) []Rim {
 
 func rims(s scenes.Scene) []Rim {
 	var all []Rim
-	sinI, cosI := math.Sincos(s.Observer.Inclination * math.Pi / 180)
+	sinI, cosI := geodesic.SinCosDeg(s.Observer.Inclination)
 	for e, emitter := range s.Emitters {
 		if emitter.Kind != "disk" {
 			continue
