@@ -38,10 +38,7 @@ func newCut(s streams) *cobra.Command {
 				return err
 			}
 			f := of.view.Field
-			perUnit, unit := math.Pi/180, "deg"
-			if f.IsParallel() {
-				perUnit, unit = 1, "M"
-			}
+			perUnit, unit := screenUnit(f)
 			var ends [2][2]float64
 			if from == "" {
 				sin, cos := math.Sincos(angle.value * math.Pi / 180)

@@ -62,22 +62,14 @@ func (m measuring) open(s streams, scenePath string) (*measured, error) {
 	if err := checkWorkers(m.workers); err != nil {
 		return nil, err
 	}
-	var seen []string
-	for _, path := range m.out {
+	err := checkFiles(m.out, scenePath, func(path string) error {
 		if !slices.Contains(strings.Split(tableFormats, ", "), strings.ToLower(filepath.Ext(path))) {
-			return nil, refuse("-o %s: extension %q is not that of a table; allowed: %s", path, filepath.Ext(path), tableFormats)
+			return refuse("-o %s: extension %q is not that of a table; allowed: %s", path, filepath.Ext(path), tableFormats)
 		}
-		clean := filepath.Clean(path)
-		if slices.Contains(seen, clean) {
-			return nil, refuse("-o %s comes twice", path)
-		}
-		seen = append(seen, clean)
-		if same(path, scenePath) {
-			return nil, refuse("-o %s would overwrite the scene", path)
-		}
-		if err := checkWritable(path); err != nil {
-			return nil, err
-		}
+		return nil
+	})
+	if err != nil {
+		return nil, err
 	}
 	d, err := loadScene(scenePath, m.set)
 	if err != nil {

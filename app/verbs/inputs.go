@@ -4,11 +4,16 @@ import (
 	"context"
 	"io"
 	"io/fs"
+	"math"
+	"os"
+	"path/filepath"
+	"slices"
 	"strings"
 
 	"github.com/spf13/pflag"
 
 	"annulet/app/files"
+	"annulet/raytrace"
 	"annulet/scenes"
 )
 
@@ -46,6 +51,46 @@ func checkWritable(path string) error {
 		return usage{err}
 	}
 	return nil
+}
+
+// checkFiles refuses names of -o before any work is done: those whose kind is
+// refused, that come twice, that are the scene, or that cannot be written.
+func checkFiles(paths []string, scenePath string, kind func(path string) error) error {
+	var seen []string
+	for _, path := range paths {
+		if err := kind(path); err != nil {
+			return err
+		}
+		clean := filepath.Clean(path)
+		if slices.Contains(seen, clean) {
+			return refuse("-o %s comes twice", path)
+		}
+		seen = append(seen, clean)
+		if same(path, scenePath) {
+			return refuse("-o %s would overwrite the scene", path)
+		}
+		if err := checkWritable(path); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// same says whether two names mean one existing file.
+func same(a, b string) bool {
+	infoA, errA := os.Stat(a)
+	infoB, errB := os.Stat(b)
+	return errA == nil && errB == nil && os.SameFile(infoA, infoB)
+}
+
+// screenUnit returns the unit in which people give screen coordinates of a
+// field, and how much of the library's it is: M, or degrees of the tangent
+// plane, which the library wants in radians.
+func screenUnit(f raytrace.Field) (perUnit float64, unit string) {
+	if f.IsParallel() {
+		return 1, "M"
+	}
+	return math.Pi / 180, "deg"
 }
 
 // newFileMode is that of new files, before the umask.

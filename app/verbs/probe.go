@@ -147,11 +147,7 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 		return usage{err}
 	}
 
-	// The library wants radians of the tangent plane on a perspective field.
-	perUnit, unit := math.Pi/180, "deg"
-	if view.Field.IsParallel() {
-		perUnit, unit = 1, "M"
-	}
+	perUnit, unit := screenUnit(view.Field)
 	var rows []probeRow
 	err = inOrder(cmd.Context(), points, 0, func(some [][2]float64) ([]probeRow, error) {
 		inside := make([][2]float64, len(some))

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"image"
 	"math"
-	"os"
 	"path/filepath"
 	"slices"
 	"strconv"
@@ -267,34 +266,15 @@ func checkOutputs(paths []string, scenePath string) error {
 	if len(paths) == 0 {
 		return refuse("render needs an output: -o FILE.png, say; allowed: %s", formatWords)
 	}
-	var seen []string
-	for _, path := range paths {
-		if path == "" {
+	return checkFiles(paths, scenePath, func(path string) error {
+		switch {
+		case path == "":
 			return refuse("-o: the name of the file is empty")
-		}
-		if formatOf(path) == "" {
+		case formatOf(path) == "":
 			return refuse("-o %s: extension %q is not in this version; allowed: %s", path, filepath.Ext(path), formatWords)
 		}
-		clean := filepath.Clean(path)
-		if slices.Contains(seen, clean) {
-			return refuse("-o %s comes twice", path)
-		}
-		seen = append(seen, clean)
-		if same(path, scenePath) {
-			return refuse("-o %s would overwrite the scene", path)
-		}
-		if err := checkWritable(path); err != nil {
-			return err
-		}
-	}
-	return nil
-}
-
-// same says whether two names mean one existing file.
-func same(a, b string) bool {
-	infoA, errA := os.Stat(a)
-	infoB, errB := os.Stat(b)
-	return errA == nil && errB == nil && os.SameFile(infoA, infoB)
+		return nil
+	})
 }
 
 // renderReport is the JSON of a render.
