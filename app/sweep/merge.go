@@ -18,21 +18,22 @@ import (
 
 // Merge writes what a sweep has come to so far: the manifest with the states
 // of all cases, and the merged table. When every case is finished and nobody
-// is at work it also takes away the claims and what killed processes left.
-func Merge(ctx context.Context, dir string, m *Manifest) (Count, error) {
+// is at work it also takes away the claims and what killed processes left. It
+// returns what it found, as Survey does.
+func Merge(ctx context.Context, dir string, m *Manifest) ([]Record, Count, error) {
 	c := openClaims(dir)
 	defer c.close()
 	for { // one process at a time: each takes away what it thinks is litter
 		mine, err := c.take(mergeClaim)
 		if err != nil {
-			return nil, err
+			return nil, nil, err
 		}
 		if mine != nil {
 			break
 		}
 		select {
 		case <-ctx.Done():
-			return nil, ctx.Err()
+			return nil, nil, ctx.Err()
 		case <-time.After(pollEvery):
 		}
 	}
@@ -45,16 +46,14 @@ func Merge(ctx context.Context, dir string, m *Manifest) (Count, error) {
 		}
 		merged.Cases[k] = Listing{m.Cases[k].Case, r.State, r.Reason, r.Files}
 	}
-	if err := merged.writeTable(ctx, dir, records); err != nil {
-		return count, err
+	err := merged.writeTable(ctx, dir, records)
+	if err == nil {
+		err = merged.write(ctx, dir)
 	}
-	if err := merged.write(ctx, dir); err != nil {
-		return count, err
+	if err == nil && count[Waiting]+count[Running] == 0 {
+		err = sweepUp(dir)
 	}
-	if count[Waiting]+count[Running] == 0 {
-		return count, sweepUp(dir)
-	}
-	return count, nil
+	return records, count, err
 }
 
 // mergeClaim is no case's name: these begin with a digit.

@@ -45,7 +45,7 @@ func work(ctx context.Context, dir string, pause time.Duration) error {
 	if _, err := Run(ctx, dir, m, Options{Workers: 1}, produce(dir, pause)); err != nil {
 		return err
 	}
-	_, err = Merge(ctx, dir, m)
+	_, _, err = Merge(ctx, dir, m)
 	return err
 }
 
@@ -324,7 +324,7 @@ func TestFailuresAreRecorded(t *testing.T) {
 	if tally, err = Run(t.Context(), dir, m, Options{Workers: 2}, faulty); err != nil || tally.Made != 2 || tally.Failed != 0 {
 		t.Errorf("second run: %+v, %v", tally, err)
 	}
-	if _, err := Merge(t.Context(), dir, m); err != nil {
+	if _, _, err := Merge(t.Context(), dir, m); err != nil {
 		t.Fatal(err)
 	}
 	same(t, contents(t, dir), undisturbed(t))

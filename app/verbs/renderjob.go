@@ -107,14 +107,14 @@ func (j *renderJob) writeOne(ctx context.Context, path string, plate *raytrace.P
 	switch formatOf(path) {
 	case formatFITS:
 		return files.WriteAt(ctx, path, newFileMode, func(w io.WriterAt) error {
-			f, err := output.NewFITS(w, j.view, j.document.Scene(), j.data, p)
-			if err != nil {
-				return err
+			s, err := j.fitsSink(w)
+			if err == nil {
+				err = s.take(raytrace.Strip{Plate: plate})
 			}
-			if err := f.Put(plate, 0); err != nil {
-				return err
+			if err == nil {
+				err = s.close(plate)
 			}
-			return f.Close(p)
+			return err
 		})
 	case formatNPZ:
 		return writeFile(ctx, path, func(w io.Writer) error { return output.WriteNPZ(w, plate, j.view.Field, j.data, p) })

@@ -124,7 +124,11 @@ func newSweepResume(s streams) *cobra.Command {
 				return refuse("%s was begun by version %s, this is %s: its cases would not be alike", args[0], m.Version, Version)
 			}
 			o.dir = args[0]
-			return o.work(cmd.Context(), s, m)
+			r, err := o.running(m)
+			if err != nil {
+				return err
+			}
+			return o.work(cmd.Context(), s, m, r)
 		},
 	}
 	cmd.Flags().StringVar(&o.chunk, "chunk", "", "only part `K/N` of the cases, K from 0 to N-1, and do not merge")
@@ -175,7 +179,8 @@ func (o *sweepOptions) begin(ctx context.Context, s streams, scene string) error
 		return refuse("--task-cores %d --tasks-at-once %d --tasks %d: allowed: 1 or more, 0 or more, 0 to the number of cases, %d",
 			o.slurm.Cores, o.slurm.AtOnce, o.slurm.Chunks, len(m.Cases))
 	}
-	if _, _, err := o.running(m); err != nil {
+	r, err := o.running(m)
+	if err != nil {
 		return err
 	}
 	if o.dryRun {
@@ -194,7 +199,7 @@ func (o *sweepOptions) begin(ctx context.Context, s streams, scene string) error
 	if o.cluster != "" {
 		return o.submit(ctx, s, m)
 	}
-	return o.work(ctx, s, m)
+	return o.work(ctx, s, m, r)
 }
 
 // manifest works out the cases. The scene and the first case must be right;
@@ -261,15 +266,10 @@ func (o *sweepOptions) listCases() (cases []sweep.Case, axes []sweep.Axis, err e
 }
 
 // work makes the cases here and, unless it is only a part, merges.
-func (o *sweepOptions) work(ctx context.Context, s streams, m *sweep.Manifest) error {
-	options, cores, err := o.running(m)
-	if err != nil {
-		return err
-	}
-	p := newSweepProgress(s.err)
-	options.Report = p.report
-	kitchen := newKitchen(m.Products, max(1, cores/options.Workers))
-	tally, err := sweep.Run(ctx, o.dir, m, options, kitchen.make)
+func (o *sweepOptions) work(ctx context.Context, s streams, m *sweep.Manifest, r running) error {
+	r.Report = newSweepProgress(s.err).report
+	kitchen := newKitchen(m.Products, max(1, r.cores/r.Workers))
+	tally, err := sweep.Run(ctx, o.dir, m, r.Options, kitchen.make)
 	if err != nil {
 		return err
 	}
@@ -283,26 +283,32 @@ func (o *sweepOptions) work(ctx context.Context, s streams, m *sweep.Manifest) e
 	return nil
 }
 
-// running works out how many cases to make at a time, and on how many cores.
-func (o *sweepOptions) running(m *sweep.Manifest) (options sweep.Options, cores int, err error) {
+// running is how many cases to make at a time, which, and on how many cores.
+type running struct {
+	sweep.Options
+	cores int
+}
+
+// running works it out.
+func (o *sweepOptions) running(m *sweep.Manifest) (r running, err error) {
 	if err := checkWorkers(o.workers); err != nil {
-		return options, 0, err
+		return r, err
 	}
-	options.Workers = o.workers
-	if options.Workers == 0 {
-		options.Workers = allottedCores()
+	r.Workers = o.workers
+	if r.Workers == 0 {
+		r.Workers = allottedCores()
 	}
 	if o.chunk != "" {
 		k, n, ok := strings.Cut(o.chunk, "/")
 		var err2 error
-		options.Chunk, err = strconv.Atoi(k)
-		options.Chunks, err2 = strconv.Atoi(n)
-		if !ok || err != nil || err2 != nil || options.Chunks < 1 || options.Chunk < 0 || options.Chunk >= options.Chunks {
-			return options, 0, refuse("--chunk %q: allowed: K/N with K from 0 to N-1, as in 3/20", o.chunk)
+		r.Chunk, err = strconv.Atoi(k)
+		r.Chunks, err2 = strconv.Atoi(n)
+		if !ok || err != nil || err2 != nil || r.Chunks < 1 || r.Chunk < 0 || r.Chunk >= r.Chunks {
+			return r, refuse("--chunk %q: allowed: K/N with K from 0 to N-1, as in 3/20", o.chunk)
 		}
 	}
-	cores = options.Workers
-	return options, cores, o.fitMemory(m, &options)
+	r.cores = r.Workers
+	return r, o.fitMemory(m, &r.Options)
 }
 
 // allottedCores is how many processors Slurm gave the task, or those of the
@@ -352,11 +358,10 @@ func largestCase(m *sweep.Manifest) int64 {
 
 // finishSweep merges and says how it went.
 func finishSweep(ctx context.Context, s streams, dir string, m *sweep.Manifest, asJSON bool) error {
-	count, err := sweep.Merge(ctx, dir, m)
+	records, count, err := sweep.Merge(ctx, dir, m)
 	if err != nil {
 		return err
 	}
-	records, _ := sweep.Survey(dir, m, true)
 	if asJSON {
 		err = writeJSON(s.out, sweepSummary(dir, m, records, count, nil))
 	} else {
