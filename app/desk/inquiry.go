@@ -8,6 +8,7 @@ import (
 	"annulet/app/desk/imaging"
 	"annulet/app/desk/state"
 	"annulet/raytrace"
+	"annulet/raytrace/measure"
 	"annulet/scenes"
 )
 
@@ -175,9 +176,6 @@ const cutSamples = 600
 
 // cutGraph draws intensity along a line of the screen.
 func cutGraph(ctx context.Context, view *raytrace.View, s scenes.Scene, cut state.Cut) *graph.Graph {
-	var at [][2]float64
-	index := map[[2]float64]int{}
-	length := math.Hypot(cut.To[0]-cut.From[0], cut.To[1]-cut.From[1])
 	g := &graph.Graph{Title: "intensity along the cut", XName: "distance from its start", XUnit: "M", YName: "I", FromZero: true}
 	unit := 1.
 	switch {
@@ -188,31 +186,19 @@ func cutGraph(ctx context.Context, view *raytrace.View, s scenes.Scene, cut stat
 	default:
 		unit, g.XUnit = 180/math.Pi, "deg"
 	}
-	total := graph.Curve{}
-	orders := make([]graph.Curve, s.Trace.MaxOrder+1)
-	for k := range cutSamples {
-		t := (float64(k) + 0.5) / cutSamples
-		p := [2]float64{cut.From[0] + t*(cut.To[0]-cut.From[0]), cut.From[1] + t*(cut.To[1]-cut.From[1])}
-		index[p] = k
-		at = append(at, p)
-		x := t * length * unit
-		total.X, total.Y = append(total.X, x), append(total.Y, 0)
-		for n := range orders {
-			orders[n].X, orders[n].Y = append(orders[n].X, x), append(orders[n].Y, 0)
-		}
-	}
-	readings, err := view.Probe(ctx, at)
+	points, err := measure.Cut(ctx, view, cut.From, cut.To, cutSamples)
 	if err != nil {
 		return nil
 	}
-	for _, r := range readings {
-		k := index[[2]float64{r.Alpha, r.Beta}]
-		total.Y[k] += r.Intensity
-		if r.Order < len(orders) {
-			orders[r.Order].Y[k] += r.Intensity
+	total := graph.Curve{Name: "total"}
+	orders := make([]graph.Curve, len(points[0].Orders))
+	for _, p := range points {
+		x := p.Distance * unit
+		total.X, total.Y = append(total.X, x), append(total.Y, p.Intensity)
+		for n, o := range p.Orders {
+			orders[n].X, orders[n].Y = append(orders[n].X, x), append(orders[n].Y, o.Intensity)
 		}
 	}
-	total.Name = "total"
 	g.Curves = append(g.Curves, total)
 	styles := []graph.Style{graph.Dashed, graph.Dotted, graph.DashDotted}
 	for n := 1; n < len(orders) && n <= len(styles); n++ {
