@@ -1,13 +1,14 @@
 package measure
 
 import (
-	"errors"
 	"fmt"
+
+	"annulet/raytrace/rim"
 )
 
 // ErrCannot marks what has no answer for this scene or image; the message
 // says why.
-var ErrCannot = errors.New("cannot be measured")
+var ErrCannot = rim.ErrCannot
 
 // cannot returns an error that wraps ErrCannot.
 func cannot(format string, args ...any) error {

@@ -8,6 +8,7 @@ import (
 
 	"annulet/raytrace"
 	"annulet/raytrace/emit"
+	"annulet/raytrace/rim"
 )
 
 // Edge is the image of one rim of a disk at one screen angle, in one image
@@ -29,11 +30,11 @@ type Edge struct {
 // Plate is the view's image with its Radius layers; nil leaves the measured
 // values out.
 func Edges(ctx context.Context, v *raytrace.View, angles []float64, plate *raytrace.Plate) ([]Edge, error) {
-	g, err := NewGeometry(v)
+	g, err := newGeometry(v)
 	if err != nil {
 		return nil, err
 	}
-	p, err := g.pencil(v.Plan.MaxOrder)
+	p, err := g.NewPencil(v.Plan.MaxOrder)
 	if err != nil {
 		return nil, err
 	}
@@ -59,7 +60,7 @@ func Edges(ctx context.Context, v *raytrace.View, angles []float64, plate *raytr
 						Emitter: at[k], Order: n, ScreenAngle: s, Outer: r == d.Outer,
 						Closed: g.ClosedImpact(g.Swept(s, n), r), Measured: math.NaN(), MeasuredBound: math.NaN(),
 					}
-					if e.Impact, err = p.impact(s, n, r); err != nil {
+					if e.Impact, err = p.Impact(s, n, r); err != nil {
 						return nil, err
 					}
 					if rim != nil && !math.IsNaN(e.Impact) { // else something stands in the way
@@ -75,7 +76,7 @@ func Edges(ctx context.Context, v *raytrace.View, angles []float64, plate *raytr
 
 // imageRim is what an image shows of one disk in one order: its lit pixels.
 type imageRim struct {
-	g     *Geometry
+	g     *rim.Geometry
 	order int
 	pitch float64 // M
 	lit   []litPixel
@@ -85,7 +86,7 @@ type imageRim struct {
 type litPixel struct{ alpha, beta, b, s, u, psi float64 }
 
 // newImageRim gathers the pixels of a Radius layer that show the disk.
-func newImageRim(g *Geometry, v *raytrace.View, radius []float32, n int, d *emit.Disk) (*imageRim, error) {
+func newImageRim(g *rim.Geometry, v *raytrace.View, radius []float32, n int, d *emit.Disk) (*imageRim, error) {
 	if radius == nil {
 		return nil, cannot("the image holds no radius layer")
 	}
@@ -94,7 +95,7 @@ func newImageRim(g *Geometry, v *raytrace.View, radius []float32, n int, d *emit
 	rim.pitch = f.Pitch()
 	perRadian := 1.0
 	if !f.IsParallel() {
-		perRadian = g.widest // b = (r_o/√A) sin a
+		perRadian = g.Widest // b = (r_o/√A) sin a
 		rim.pitch *= perRadian
 	}
 	for k, r := range radius {

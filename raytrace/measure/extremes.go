@@ -6,6 +6,7 @@ import (
 
 	"annulet/geodesic"
 	"annulet/raytrace/emit"
+	"annulet/raytrace/rim"
 )
 
 // Range is the least and the largest redshift factor.
@@ -24,8 +25,8 @@ const (
 // order, by optimisation over radius and azimuth, whether or not something
 // stands in the way. Edge-on it is the limit of inclinations towards 90 deg,
 // light within the plane of the disk included.
-func (g *Geometry) Extremes(ctx context.Context, d *emit.Disk, order int) (Range, error) {
-	p, err := g.pencil(order)
+func Extremes(ctx context.Context, g *rim.Geometry, d *emit.Disk, order int) (Range, error) {
+	p, err := g.NewPencil(order)
 	if err != nil {
 		return Range{}, err
 	}
@@ -35,7 +36,7 @@ func (g *Geometry) Extremes(ctx context.Context, d *emit.Disk, order int) (Range
 		if x == math.Log(d.Inner) {
 			r = d.Inner
 		}
-		value, err := g.redshift(p, d, order, r, turn)
+		value, err := redshift(g, p, d, order, r, turn)
 		if err != nil {
 			failed = err
 		}
@@ -110,9 +111,9 @@ func golden(f func(float64) float64, lo, hi float64) (x, value float64) {
 
 // redshift returns g of the light of one order from a place of the disk, at
 // an azimuth from the observer's; NaN if there is none.
-func (g *Geometry) redshift(p *pencil, d *emit.Disk, order int, r, turn float64) (float64, error) {
+func redshift(g *rim.Geometry, p *rim.Pencil, d *emit.Disk, order int, r, turn float64) (float64, error) {
 	sin, cos := math.Sincos(turn)
-	psi := math.Acos(max(-1, min(1, g.sinI*cos)))
+	psi := math.Acos(max(-1, min(1, g.SinI*cos)))
 	if order%2 == 1 {
 		psi = 2*math.Pi - psi
 	}
@@ -128,17 +129,17 @@ func (g *Geometry) redshift(p *pencil, d *emit.Disk, order int, r, turn float64)
 	var b float64
 	var err error
 	s := math.Acos(cosS)
-	if (psi-(float64(order)+0.5)*math.Pi)*g.cosI < 0 {
+	if (psi-(float64(order)+0.5)*math.Pi)*g.CosI < 0 {
 		s = -s
 	}
-	if g.closed {
-		b = g.exterior(psi, r)
-	} else if b, err = p.impact(s, order, r); err != nil {
+	if g.Closed {
+		b = g.Exterior(psi, r)
+	} else if b, err = p.Impact(s, order, r); err != nil {
 		return 0, err
 	}
 	kr := 0.0
 	if d.Gas.Plunges(r) {
-		if kr, err = g.leaving(p, order, psi, s, r, b); err != nil {
+		if kr, err = leaving(g, p, order, psi, s, r, b); err != nil {
 			return 0, err
 		}
 	}
@@ -146,30 +147,30 @@ func (g *Geometry) redshift(p *pencil, d *emit.Disk, order int, r, turn float64)
 	if d.Clockwise {
 		sense = -1
 	}
-	return d.Gas.RedshiftFactor(r, 1/g.object.Lapse(g.observer.Radius), -b*cosS*g.sinI, kr, sense), nil
+	return d.Gas.RedshiftFactor(r, 1/g.Object.Lapse(g.Observer.Radius), -b*cosS*g.SinI, kr, sense), nil
 }
 
 // leaving is k^r/E of light with impact parameter b as it leaves r.
-func (g *Geometry) leaving(p *pencil, order int, psi, s, r, b float64) (float64, error) {
+func leaving(g *rim.Geometry, p *rim.Pencil, order int, psi, s, r, b float64) (float64, error) {
 	lapse := 0.0
-	if r > g.object.Edge() {
-		lapse = g.object.Lapse(r)
+	if r > g.Object.Edge() {
+		lapse = g.Object.Lapse(r)
 	}
 	x := lapse * b / r
 	kr := math.Sqrt(max(0, 1-x*x))
 	switch {
-	case b <= g.object.CriticalImpact():
-	case g.closed:
+	case b <= g.Object.CriticalImpact():
+	case g.Closed:
 		orbit := geodesic.NewClosedOrbit(b)
-		if psi > orbit.Sweep(g.uObs, 1/orbit.Periapsis()) {
+		if psi > orbit.Sweep(g.UObs, 1/orbit.Periapsis()) {
 			kr = -kr
 		}
 	default:
-		if _, err := p.radius(b, s, order); err != nil {
+		if _, err := p.Radius(b, s, order); err != nil {
 			return 0, err
 		}
-		for j := range p.at.R {
-			if int(p.at.Order[j]) == order && p.at.KR[j] < 0 {
+		for j := range p.At.R {
+			if int(p.At.Order[j]) == order && p.At.KR[j] < 0 {
 				kr = -kr
 			}
 		}

@@ -44,7 +44,7 @@ func LightCurve(ctx context.Context, v *raytrace.View, times []float64, o Option
 	if len(times) == 0 {
 		return nil, cannot("there are no times")
 	}
-	if _, err := NewGeometry(v); flat && err == nil {
+	if _, err := newGeometry(v); flat && err == nil {
 		return spotCurve(ctx, v, times, size, o)
 	}
 	return pixelCurve(ctx, v, times, o)

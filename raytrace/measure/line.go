@@ -45,7 +45,7 @@ func NewLine(ctx context.Context, v *raytrace.View, bin float64, o Options) (*Li
 	v = bolometric(v)
 	o = o.filled()
 	l := &Line{Bin: bin}
-	g, err := NewGeometry(v)
+	g, err := newGeometry(v)
 	if err != nil {
 		return nil, err
 	}
@@ -57,7 +57,7 @@ func NewLine(ctx context.Context, v *raytrace.View, bin float64, o Options) (*Li
 	for n := range v.Plan.MaxOrder + 1 {
 		edge := Range{math.Inf(1), math.Inf(-1)}
 		for _, d := range found {
-			e, err := g.Extremes(ctx, d, n)
+			e, err := Extremes(ctx, g, d, n)
 			if err != nil {
 				return nil, err
 			}

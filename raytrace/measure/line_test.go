@@ -22,12 +22,12 @@ kind = "disk"
 inner = %g
 outer = %.15g
 `, i, r, r*(1+1e-12)))
-		g, err := NewGeometry(v)
+		g, err := newGeometry(v)
 		if err != nil {
 			t.Fatal(err)
 		}
 		d, _ := disks(v)
-		e, err := g.Extremes(context.Background(), d[0], 0)
+		e, err := Extremes(context.Background(), g, d[0], 0)
 		if err != nil {
 			t.Fatal(err)
 		}

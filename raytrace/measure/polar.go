@@ -12,6 +12,7 @@ import (
 	"annulet/geodesic"
 	"annulet/raytrace"
 	"annulet/raytrace/emit"
+	"annulet/raytrace/rim"
 )
 
 // Options is what the long measurements need.
@@ -61,21 +62,21 @@ type patch struct {
 // sampler cuts images of disks into patches along lines of constant screen
 // angle, so that every image order is resolved however thin it is.
 type sampler struct {
-	g        *Geometry
+	g        *rim.Geometry
 	view     *raytrace.View
 	parallel bool
 	table    *geodesic.OrbitTable
 	delay    bool
 	options  Options
-	angles   []float64  // edges between lines, radians
-	blockers []*circles // rims of disks that dim what lies behind, by order
+	angles   []float64     // edges between lines, radians
+	blockers []*rim.Curves // rims of disks that dim what lies behind, by order
 }
 
 // samplerTolerance is that of the paths through the patches.
 const samplerTolerance = 1e-9
 
 func newSampler(ctx context.Context, v *raytrace.View, delay bool, o Options) (*sampler, error) {
-	g, err := NewGeometry(v)
+	g, err := newGeometry(v)
 	if err != nil {
 		return nil, err
 	}
@@ -85,8 +86,8 @@ func newSampler(ctx context.Context, v *raytrace.View, delay bool, o Options) (*
 	}
 	o = o.filled()
 	s := &sampler{g: g, view: v, parallel: v.Field.IsParallel(), delay: delay, options: o}
-	s.table, err = g.object.SharedOrbits(ctx, geodesic.Share{
-		Observer: g.observer, Tolerance: samplerTolerance, MaxOrder: v.Plan.MaxOrder, Delay: delay, Workers: o.Workers,
+	s.table, err = g.Object.SharedOrbits(ctx, geodesic.Share{
+		Observer: g.Observer, Tolerance: samplerTolerance, MaxOrder: v.Plan.MaxOrder, Delay: delay, Workers: o.Workers,
 	})
 	if err != nil {
 		return nil, err
@@ -97,7 +98,7 @@ func newSampler(ctx context.Context, v *raytrace.View, delay bool, o Options) (*
 			continue
 		}
 		for n := range v.Plan.MaxOrder {
-			c, err := g.newCircles(ctx, n, []float64{d.Inner, d.Outer})
+			c, err := g.NewCurves(ctx, n, []float64{d.Inner, d.Outer})
 			if err != nil {
 				return nil, err
 			}
@@ -113,10 +114,10 @@ func dims(d *emit.Disk) bool { return d.Depth != 0 }
 // lineAngles are the screen angles between lines: half of them even around,
 // half even in the azimuth of a flat disk so tilted, where edge-on images
 // change fast.
-func lineAngles(g *Geometry, lines int) []float64 {
+func lineAngles(g *rim.Geometry, lines int) []float64 {
 	half := lines / 2
 	const most = 1e3 // ratio of the axes of the disk's ellipse that is followed
-	squeeze := max(math.Abs(g.cosI), 1/most)
+	squeeze := max(math.Abs(g.CosI), 1/most)
 	angles := make([]float64, 0, 2*half+1)
 	for k := range half {
 		turn := 2*math.Pi*(float64(k)+0.5)/float64(half) - math.Pi
@@ -134,9 +135,9 @@ func lineAngles(g *Geometry, lines int) []float64 {
 func (s *sampler) tracer() (geodesic.Tracer, error) {
 	plan := geodesic.Plan{Tolerance: samplerTolerance, MaxOrder: s.view.Plan.MaxOrder, Plane: true, Reach: s.view.Plan.Reach}
 	if s.table == nil {
-		return s.g.object.Tracer(s.g.observer, plan)
+		return s.g.Object.Tracer(s.g.Observer, plan)
 	}
-	return s.g.object.SharedTracer(s.g.observer, plan, s.table)
+	return s.g.Object.SharedTracer(s.g.Observer, plan, s.table)
 }
 
 // area of the screen between two impact parameters and two screen angles.
@@ -144,21 +145,21 @@ func (s *sampler) area(b1, b2, turn float64) float64 {
 	if s.parallel {
 		return turn * (b2 - b1) * (b2 + b1) / 2
 	}
-	x1, x2 := b1/s.g.widest, b2/s.g.widest
+	x1, x2 := b1/s.g.Widest, b2/s.g.Widest
 	c1, c2 := math.Sqrt(max(0, 1-x1*x1)), math.Sqrt(max(0, 1-x2*x2))
 	return turn * (x2 - x1) * (x2 + x1) / (c1 + c2)
 }
 
 // circles between which the patches of a disk lie.
-func (s *sampler) circles(ctx context.Context, disk, order int) (*circles, error) {
+func (s *sampler) circles(ctx context.Context, disk, order int) (*rim.Curves, error) {
 	inner, outer, _ := rims(s.view.Emitters[disk])
-	inner = max(inner, s.g.object.Edge())
+	inner = max(inner, s.g.Object.Edge())
 	r := make([]float64, s.options.Cells+1)
 	for k := range r {
 		r[k] = inner * math.Pow(outer/inner, float64(k)/float64(s.options.Cells))
 	}
 	r[len(r)-1] = outer
-	return s.g.newCircles(ctx, order, r)
+	return s.g.NewCurves(ctx, order, r)
 }
 
 // image returns the patches of one disk (a place among the view's emitters)
@@ -181,7 +182,7 @@ func (s *sampler) image(ctx context.Context, disk, order int) ([][]patch, error)
 }
 
 // around does work for every line, shared among goroutines.
-func (s *sampler) around(ctx context.Context, c *circles, work func(w *lineWorker, k int) error) error {
+func (s *sampler) around(ctx context.Context, c *rim.Curves, work func(w *lineWorker, k int) error) error {
 	var next atomic.Int64
 	group, ctx := errgroup.WithContext(ctx)
 	for range s.options.Workers {
@@ -210,7 +211,7 @@ func (s *sampler) around(ctx context.Context, c *circles, work func(w *lineWorke
 // lineWorker is the scratch of one goroutine.
 type lineWorker struct {
 	s      *sampler
-	c      *circles
+	c      *rim.Curves
 	tracer geodesic.Tracer
 	b      []float64
 	cuts   []float64
@@ -221,9 +222,9 @@ type lineWorker struct {
 	lights []emit.Light
 }
 
-func (s *sampler) worker(c *circles) (*lineWorker, error) {
+func (s *sampler) worker(c *rim.Curves) (*lineWorker, error) {
 	t, err := s.tracer()
-	return &lineWorker{s: s, c: c, tracer: t, b: make([]float64, len(c.r)), lights: make([]emit.Light, len(s.view.Emitters))}, err
+	return &lineWorker{s: s, c: c, tracer: t, b: make([]float64, len(c.R)), lights: make([]emit.Light, len(s.view.Emitters))}, err
 }
 
 // line returns the patches between two screen angles.
@@ -241,7 +242,7 @@ func (w *lineWorker) trace(from, to float64, order int) ([]patch, error) {
 	s := w.s
 	middle := (from + to) / 2
 	sin, cos := math.Sincos(middle)
-	w.c.at(s.g.Swept(middle, order), w.b)
+	w.c.At(s.g.Swept(middle, order), w.b)
 	w.cut(middle, order)
 	patches := make([]patch, 0, len(w.b)+len(w.cuts))
 	w.dirs = w.dirs[:0]
@@ -262,7 +263,7 @@ func (w *lineWorker) trace(from, to float64, order int) ([]patch, error) {
 			w.dirs = append(w.dirs, geodesic.Direction{Alpha: b * cos, Beta: b * sin})
 		}
 	}
-	if err := s.g.object.Aim(s.g.observer, true, w.dirs, &w.rays); err != nil {
+	if err := s.g.Object.Aim(s.g.Observer, true, w.dirs, &w.rays); err != nil {
 		return nil, err
 	}
 	w.tracer.Cross(&w.rays, geodesic.Want{Delay: s.delay}, &w.at)
@@ -286,13 +287,13 @@ func (w *lineWorker) shade(v *raytrace.View, patches []patch, disk, order int) {
 // cut gathers where light from behind is dimmed or stopped along a line.
 func (w *lineWorker) cut(angle float64, order int) {
 	w.cuts = w.cuts[:0]
-	if w.s.g.object.Edge() > w.s.g.object.PhotonSphere() {
-		w.cuts = append(w.cuts, w.s.g.barrier)
+	if w.s.g.Object.Edge() > w.s.g.Object.PhotonSphere() {
+		w.cuts = append(w.cuts, w.s.g.Barrier)
 	}
 	var rims [2]float64
 	for _, c := range w.s.blockers {
-		if c.order < order {
-			c.at(w.s.g.Swept(angle, c.order), rims[:])
+		if c.Order < order {
+			c.At(w.s.g.Swept(angle, c.Order), rims[:])
 			w.cuts = append(w.cuts, rims[0], rims[1])
 		}
 	}

@@ -7,6 +7,7 @@ import (
 	"annulet/geodesic"
 	"annulet/raytrace"
 	"annulet/raytrace/emit"
+	"annulet/raytrace/rim"
 )
 
 // Outline is the image of one rim as a closed curve around the centre; M.
@@ -58,7 +59,7 @@ type Rings struct {
 // the view's image with its Radius layers; nil leaves out what is read off
 // it. Only disks are counted.
 func NewRings(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, o Options) (*Rings, error) {
-	g, err := NewGeometry(v)
+	g, err := newGeometry(v)
 	if err != nil {
 		return nil, err
 	}
@@ -67,9 +68,9 @@ func NewRings(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, o Op
 		return nil, cannot("the scene has no disk")
 	}
 	t := &Rings{Critical: math.NaN(), CriticalClosed: math.NaN(), Lyapunov: math.NaN()}
-	if g.object.PhotonSphere() > g.object.Edge() {
-		t.CriticalClosed, t.Lyapunov = g.object.CriticalImpact(), g.object.Lyapunov()
-		if t.Critical, err = g.critical(); err != nil {
+	if g.Object.PhotonSphere() > g.Object.Edge() {
+		t.CriticalClosed, t.Lyapunov = g.Object.CriticalImpact(), g.Object.Lyapunov()
+		if t.Critical, err = critical(g); err != nil {
 			return nil, err
 		}
 	}
@@ -91,7 +92,7 @@ func NewRings(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, o Op
 	for k, d := range found {
 		for n := range v.Plan.MaxOrder + 1 {
 			ring := Ring{Emitter: at[k], Order: n}
-			if err := g.outlines(ctx, v, plate, d, &ring); err != nil {
+			if err := outlines(ctx, g, v, plate, d, &ring); err != nil {
 				return nil, err
 			}
 			step()
@@ -175,8 +176,8 @@ func onScreen(v *raytrace.View, alpha, beta float64) (x, y float64) {
 }
 
 // outlines fills in the curves of both rims.
-func (g *Geometry) outlines(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, d *emit.Disk, ring *Ring) error {
-	p, err := g.pencil(ring.Order)
+func outlines(ctx context.Context, g *rim.Geometry, v *raytrace.View, plate *raytrace.Plate, d *emit.Disk, ring *Ring) error {
+	p, err := g.NewPencil(ring.Order)
 	if err != nil {
 		return err
 	}
@@ -186,22 +187,22 @@ func (g *Geometry) outlines(ctx context.Context, v *raytrace.View, plate *raytra
 			return err
 		}
 	}
-	c, err := g.newCircles(ctx, ring.Order, []float64{d.Inner, d.Outer})
+	c, err := g.NewCurves(ctx, ring.Order, []float64{d.Inner, d.Outer})
 	if err != nil {
 		return err
 	}
 	var at0 [2]float64
 	for k, o := range []*Outline{&ring.Inner, &ring.Outer} {
-		r := c.r[k]
+		r := c.R[k]
 		b := func(s float64) (x float64) {
-			if x, err = g.rootAt(p, g.Swept(s, ring.Order), r, ring.Order); err != nil {
+			if x, err = g.RootAt(p, g.Swept(s, ring.Order), r, ring.Order); err != nil {
 				return math.NaN()
 			}
 			return x
 		}
 		o.outline(b, func(s float64) float64 {
 			var rims [2]float64
-			c.at(g.Swept(s, ring.Order), rims[:])
+			c.At(g.Swept(s, ring.Order), rims[:])
 			return rims[k]
 		})
 		widest := o.measure(rim, r, b)
@@ -257,9 +258,9 @@ func (o *Outline) measure(rim *imageRim, r float64, b func(float64) float64) (ha
 
 // critical roots the critical curve: the least impact parameter of traced
 // paths that escape within the orders that a tracer follows.
-func (g *Geometry) critical() (float64, error) {
+func critical(g *rim.Geometry) (float64, error) {
 	const orders = 9 // paths nearer than e^-9π to the curve are not told apart
-	t, err := g.object.Tracer(g.observer, geodesic.Plan{Tolerance: rootTolerance, MaxOrder: orders, Sky: true})
+	t, err := g.Object.Tracer(g.Observer, geodesic.Plan{Tolerance: rim.RootTolerance, MaxOrder: orders, Sky: true})
 	if err != nil {
 		return 0, err
 	}
@@ -267,7 +268,7 @@ func (g *Geometry) critical() (float64, error) {
 	var rays geodesic.Rays
 	var at geodesic.Crossings
 	captured := func(b float64) float64 {
-		if err := g.object.Aim(g.observer, true, []geodesic.Direction{{Alpha: b}}, &rays); err != nil {
+		if err := g.Object.Aim(g.Observer, true, []geodesic.Direction{{Alpha: b}}, &rays); err != nil {
 			failed = err
 		}
 		t.Cross(&rays, geodesic.Want{NoPlace: true, NoKR: true}, &at)
@@ -278,10 +279,10 @@ func (g *Geometry) critical() (float64, error) {
 		}
 		return 1
 	}
-	lo, hi := g.object.Edge(), 2*g.object.CriticalImpact()
-	if hi >= g.widest {
-		hi = g.widest * (1 - 1e-9)
+	lo, hi := g.Object.Edge(), 2*g.Object.CriticalImpact()
+	if hi >= g.Widest {
+		hi = g.Widest * (1 - 1e-9)
 	}
-	b := bisectToRoot(captured, lo, captured(lo), hi, captured(hi))
+	b := rim.BisectToRoot(captured, lo, captured(lo), hi, captured(hi))
 	return b, failed
 }

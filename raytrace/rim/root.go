@@ -1,12 +1,12 @@
-package measure
+package rim
 
 import "math"
 
-// bisectToRoot returns where f, which falls from positive to not positive
+// BisectToRoot returns where f, which falls from positive to not positive
 // between lo and hi, changes its sign, to rounding. It is Brent's method
 // (Algorithms for Minimization without Derivatives (1973), chapter 4, from
 // memory). Jumps of f only cost bisections.
-func bisectToRoot(f func(float64) float64, lo, fLo, hi, fHi float64) float64 {
+func BisectToRoot(f func(float64) float64, lo, fLo, hi, fHi float64) float64 {
 	a, b, c := lo, hi, lo
 	fa, fb, fc := fLo, fHi, fLo
 	d := b - a
