@@ -75,6 +75,9 @@ func (s *Round) StaticGas() Gas { return Gas{object: s, still: true} }
 // Plunges says whether the gas moves radially anywhere at or outside r, M.
 func (g Gas) Plunges(r float64) bool { return !g.still && r < g.isco }
 
+// ISCO returns the radius, M, within which gas plunges.
+func (g Gas) ISCO() float64 { return g.isco }
+
 // Velocity is a four-velocity in the disk plane.
 type Velocity struct {
 	UT, UR, UPhi float64 // dt/dτ, dr/dτ, dφ/dτ of counter-clockwise gas

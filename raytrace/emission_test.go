@@ -65,6 +65,7 @@ func TestBlackBodyDisk(t *testing.T) {
 	sigma := 5.670374419e-8
 	m := gm / (c * c)
 	s := hotDisk(400)
+	s.Trace.FluxTolerance = 1e-4
 	nu := s.Field.Frequency[0]
 	want := quadrature(60, 6, 60, 48, 24, func(r, g float64) float64 {
 		temperature := 1.7 * math.Pow(emit.NovikovThorne{}.Flux(r)*rate/(m*m*sigma), 0.25)
@@ -86,7 +87,12 @@ func TestBlackBodyDisk(t *testing.T) {
 		sum += jansky(float64(i))
 	}
 	d := 3000 * 648000 / math.Pi * 149597870700
-	near(t, "pixels", sum/(want*m*m/(d*d)*1e26), 1, 1e-3)
+	near(t, "pixels", sum/(want*m*m/(d*d)*1e26), 1, 2e-5)
+	total, ok := v.Jansky(plate.Flux[0])
+	bound, _ := v.Jansky(plate.FluxBound[0])
+	if want *= m * m / (d * d) * 1e26; !ok || math.Abs(total-want) > bound+1e-5*want {
+		t.Errorf("the image has %g ± %g Jy, want %g", total, bound, want)
+	}
 	near(t, "temperature", v.TemperatureAt(9.5509280779439), math.Pow(1.36781108198299e-5*rate/(m*m*sigma), 0.25), 1)
 	if !math.IsNaN(v.TemperatureAt(5)) {
 		t.Error("a temperature off the disk")

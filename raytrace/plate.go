@@ -26,6 +26,14 @@ type Plate struct {
 	Integrated            int         // of these, integrated one by one and not interpolated between shared orbits
 	WorstBound            float64     // largest relative bound on r of any crossing of the disk plane shown
 	WorstAngle            float64     // largest bound, radians, on the swept angle of any crossing of star or sky shown
+	// Flux is ∫ I by image order, over the field: in the unit of intensity
+	// times M² on a parallel field, sr on others; nil if pixels were not
+	// integrated over.
+	Flux []float64
+	// FluxBound bounds the error of Flux from pixels and paths; that of what
+	// skies send is not in it.
+	FluxBound []float64
+	rows      []row
 }
 
 // layerSet says which layers are kept.

@@ -35,7 +35,7 @@ func (v *View) Radii(ctx context.Context, o Options, r *Radii) error {
 		r.at = make([]geodesic.Crossings, len(r.tiles))
 	}
 	want := geodesic.Want{NoPlace: true, NoKR: true}
-	return v.onTiles(ctx, o, want, r.tiles, func(b *bench, k int) (tileReport, error) {
+	return v.onTiles(ctx, o, want, nil, r.tiles, func(b *bench, k int) (tileReport, error) {
 		b.at, r.at[k] = r.at[k], b.at
 		integrated, err := b.followTile(r.tiles[k], want)
 		b.at, r.at[k] = r.at[k], b.at
@@ -51,7 +51,7 @@ func (r *Radii) WorstError(ctx context.Context, v *View, reach float64, workers 
 	uObs := 1 / v.Observer.Radius
 	sinI, cosI := geodesic.SinCosDeg(v.Observer.InclinationDeg)
 	var mu sync.Mutex
-	err = v.onTiles(ctx, Options{Workers: workers, PathByPath: true}, geodesic.Want{}, r.tiles, func(b *bench, k int) (tileReport, error) {
+	err = v.onTiles(ctx, Options{Workers: workers, PathByPath: true}, geodesic.Want{}, nil, r.tiles, func(b *bench, k int) (tileReport, error) {
 		b.screen = v.Field.tileCenters(r.tiles[k], b.screen[:0])
 		b.dirs = v.Field.directions(b.screen, b.dirs[:0])
 		if err := b.aim(&b.rays); err != nil {

@@ -53,6 +53,23 @@ func (v *View) Radiometry() Radiometry {
 	return r
 }
 
+// Jansky returns a flux of the view's plates, an integral over its field, in
+// Jy; false where the scene does not say how bright it is at a frequency, or
+// how large.
+func (v *View) Jansky(flux float64) (jansky float64, ok bool) {
+	r := v.Radiometry()
+	convert, err := r.In(JyPerPixel)
+	if err != nil {
+		return 0, false
+	}
+	across, up := v.Field.Pitches()
+	area := across * up
+	if !v.Field.IsParallel() {
+		area = r.PixelSr
+	}
+	return convert(flux / area), true
+}
+
 // relativeUnit says in words what an emitter's intensities are relative to.
 func relativeUnit(e scenes.Emitter) string {
 	unit := "emitted at r = 1 M"

@@ -27,7 +27,7 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 	kept := keep(o.Layers)
 	want := v.want(kept)
 	whole := &Plate{Columns: v.Field.Columns, Rows: v.Field.Rows, Orders: v.Plan.MaxOrder + 1}
-	side := o.tileSide()
+	side := v.tileSide(o)
 	strips := (whole.Rows + side - 1) / side
 	tiles := strips * ((whole.Columns + side - 1) / side)
 	report := o.Report
@@ -38,6 +38,10 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 			p.TilesDone, p.Tiles, p.PathsDone = p.TilesDone+done, tiles, p.PathsDone+whole.Paths
 			report(p)
 		}
+	}
+	a, err := v.areas(ctx, o)
+	if err != nil {
+		return nil, err
 	}
 	group, ctx := errgroup.WithContext(ctx)
 	ready := make(chan Strip)
@@ -72,13 +76,14 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 			plate = plate.emptied(to - from)
 			plate.firstRow = from
 			rows := tileRow(whole.Columns, from, to, side)
-			if err := v.onTiles(ctx, o, want, rows, func(b *bench, k int) (tileReport, error) {
+			if err := v.onTiles(ctx, o, want, a, rows, func(b *bench, k int) (tileReport, error) {
 				return b.renderTile(rows[k], want, plate)
 			}, plate); err != nil {
 				return err
 			}
 			done += len(rows)
 			whole.Tally(plate)
+			whole.rows = append(whole.rows, plate.rows...)
 			select {
 			case ready <- Strip{Plate: plate, FirstRow: from}:
 			case <-ctx.Done():
@@ -90,12 +95,16 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 	if err := group.Wait(); err != nil {
 		return nil, err
 	}
+	if a != nil {
+		whole.Paths += a.pilot
+		whole.sum(whole.rows, v.Plan.Tolerance)
+	}
 	return whole, nil
 }
 
 // StripBytes is the memory of Strips' plates.
 func (v *View) StripBytes(o Options) int64 {
-	return stripPlates * plateBytes(v.Field.Columns, min(o.tileSide(), v.Field.Rows), v.Plan.MaxOrder+1, keep(o.Layers))
+	return stripPlates * plateBytes(v.Field.Columns, min(v.tileSide(o), v.Field.Rows), v.Plan.MaxOrder+1, keep(o.Layers))
 }
 
 // PlateBytes is the memory of the plate that Render makes.

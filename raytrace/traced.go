@@ -17,6 +17,7 @@ type Traced struct {
 	want   geodesic.Want
 	tiles  []image.Rectangle
 	blocks []block // one a tile
+	around int     // pixels around each tile that its block holds
 	direct int
 }
 
@@ -35,11 +36,14 @@ func (v *View) Trace(ctx context.Context, o Options) (*Traced, error) {
 	kept := keep(o.Layers)
 	t := &Traced{view: v, want: v.want(kept)}
 	t.want.NoKR = false // a rim may move within the ISCO
-	t.tiles = tilesOutward(v.Field.Columns, v.Field.Rows, o.tileSide())
+	t.tiles = tilesOutward(v.Field.Columns, v.Field.Rows, v.tileSide(o))
 	t.blocks = make([]block, len(t.tiles))
+	if v.integrates(o) {
+		t.around = halo
+	}
 	counts := &Plate{}
-	err := v.onTiles(ctx, o, t.want, t.tiles, func(b *bench, k int) (tileReport, error) {
-		integrated, err := b.followTile(t.tiles[k], t.want)
+	err := v.onTiles(ctx, o, t.want, nil, t.tiles, func(b *bench, k int) (tileReport, error) {
+		integrated, err := b.followTile(t.tiles[k].Inset(-t.around), t.want)
 		t.blocks[k] = block{b.rays, b.at, b.pixels}
 		b.rays, b.at, b.pixels = geodesic.Rays{}, geodesic.Crossings{}, emit.Pixels{}
 		return tileReport{integrated: integrated}, err
@@ -59,22 +63,34 @@ func (t *Traced) Shade(ctx context.Context, v *View, o Options) (*Plate, error) 
 		return nil, fmt.Errorf("raytrace: the traced field does not serve these emitters: trace it anew")
 	}
 	plate := newPlate(v.Field.Columns, v.Field.Rows, v.Plan.MaxOrder+1, kept)
-	o.PathByPath = true // nothing is traced: no orbits are needed
-	err := v.onTiles(ctx, o, t.want, t.tiles, func(b *bench, k int) (tileReport, error) {
+	a, err := v.areas(ctx, o)
+	if err != nil {
+		return nil, err
+	}
+	o.PathByPath = o.PathByPath || a == nil // nothing is traced: no orbits are needed
+	err = v.onTiles(ctx, o, t.want, a, t.tiles, func(b *bench, k int) (tileReport, error) {
+		b.screen = v.Field.tileCenters(t.tiles[k].Inset(-t.around), b.screen[:0])
 		b.rays, b.at, b.pixels = t.blocks[k].rays, t.blocks[k].at, t.blocks[k].pixels
 		b.shade()
-		return tileReport{worst: b.exposeTile(t.tiles[k], plate)}, nil
+		return b.exposeTile(t.tiles[k], t.around, plate)
 	}, plate)
 	if err != nil {
 		return nil, err
 	}
 	plate.Integrated = t.direct
+	if a != nil {
+		plate.Paths += a.pilot
+		plate.sum(plate.rows, v.Plan.Tolerance)
+	}
 	return plate, nil
 }
 
 // Serves says whether Shade can do v with these options.
 func (t *Traced) Serves(v *View, o Options) bool {
 	want := v.want(keep(o.Layers))
+	if v.integrates(o) && t.around == 0 {
+		return false
+	}
 	return t.covers(v) && (t.want.Delay || !want.Delay) && (!t.want.NoPlace || want.NoPlace)
 }
 

@@ -20,6 +20,7 @@ type bench struct {
 	beside        geodesic.Crossings
 	pixels        emit.Pixels
 	lights        []emit.Light // one an emitter
+	mosaic        *mosaic      // for pixels as areas; nil for their middles
 }
 
 // newBench returns scratch that follows paths by the table's orbits, or one

@@ -18,6 +18,9 @@ type View struct {
 	Field     Field
 	Emitters  []Emitter
 	Plan      geodesic.Plan
+	// FluxTolerance is the relative error of the flux of each image order up
+	// to which pixels are integrated over; 0 leaves their middles.
+	FluxTolerance float64
 	// Orbits are the shared orbits that Render keeps. Views that follow one
 	// another share them: see Follow.
 	Orbits *Orbits
@@ -46,8 +49,9 @@ func NewViewIn(s scenes.Scene, folder string) (*View, error) {
 	v := &View{
 		scene:     s,
 		Spacetime: object, Observer: observer, Field: field,
-		Plan:   geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
-		Orbits: new(Orbits),
+		Plan:          geodesic.Plan{Tolerance: s.Trace.Tolerance, MaxOrder: s.Trace.MaxOrder},
+		Orbits:        new(Orbits),
+		FluxTolerance: s.Trace.FluxTolerance,
 	}
 	if s.Trace.NoBending {
 		v.Spacetime = geodesic.NewStraight(object)

@@ -253,7 +253,7 @@ var timeKeys = []Key{
 var traceKeys = []Key{
 	{Section: "trace", Name: "tolerance", Type: Number, Range: between(1e-13, 1e-3), Default: `1e-9`, Text: "relative tolerance of each path"},
 	{Section: "trace", Name: "max_order", Type: Integer, Range: between(0, 9), Default: `2`, Text: "highest image order"},
-	{Section: "trace", Name: "flux_tolerance", Type: Number, Range: between(1e-9, 0.1), Default: `1e-4`, Text: "relative tolerance of fluxes; not used yet, a pixel is sampled at its centre"},
+	{Section: "trace", Name: "flux_tolerance", Type: Number, Range: between(1e-9, 0.1), Default: `1e-4`, Text: "relative tolerance of the flux of an image; ten times more for each further order"},
 	{Section: "trace", Name: "effects", Type: ChoiceList, Choices: allEffects,
 		Default: `["bending", "gravity", "motion"]`, Text: "what light and gas are subject to; without bending: straight paths; gravity: no gravitational shift; motion: gas at rest"},
 }

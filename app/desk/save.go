@@ -78,7 +78,9 @@ func (c *commands) saveImageTo(path string) {
 		var plate *raytrace.Plate
 		view, err := prepare(o)
 		if err == nil {
-			plate, err = view.Render(ctx, view.options(nil))
+			o := view.options(nil)
+			o.Centres = false // what is kept has areas as pixels
+			plate, err = view.Render(ctx, o)
 		}
 		if err == nil {
 			err = files.Write(ctx, path, newFileMode, func(w io.Writer) error {

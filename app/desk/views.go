@@ -22,7 +22,7 @@ type sight struct {
 }
 
 func (s sight) options(report func(raytrace.Progress)) raytrace.Options {
-	return raytrace.Options{Workers: workers(), Report: report, Layers: s.layers}
+	return raytrace.Options{Workers: workers(), Report: report, Layers: s.layers, Centres: true}
 }
 
 func (s sight) Trace(ctx context.Context, coarsening int, report func(raytrace.Progress)) (*raytrace.Plate, error) {

@@ -193,11 +193,20 @@ func numericsCards(p Provenance) []files.Card {
 	return append(cards, files.Card{Key: "HISTORY", Comment: "The scene that made this file is in the extension " + sceneUnit + "."})
 }
 
+// notIntegrated stands for a flux where pixels are sampled at their middles.
+const notIntegrated = "not integrated"
+
 // boundCards are known when all is rendered.
 func boundCards(p Provenance) []files.Card {
+	var flux, bound any = notIntegrated, notIntegrated
+	if p.Flux != nil {
+		flux, bound = p.WholeFlux()
+	}
 	return []files.Card{
 		{Key: "RBOUND", Value: p.WorstBound, Comment: "worst bound on r, relative"},
 		{Key: "PSIBOUND", Value: p.WorstAngle, Comment: "[rad] worst bound on a swept angle"},
 		{Key: "PATHS", Value: p.Paths, Comment: "light paths"},
+		{Key: "FLUX", Value: flux, Comment: "over the field, BUNIT times M2 or sr"},
+		{Key: "FLUXBND", Value: bound, Comment: "bound on FLUX"},
 	}
 }

@@ -13,18 +13,22 @@ import (
 
 // Provenance is what every file says about where it comes from.
 type Provenance struct {
-	Title       string   `json:"title,omitempty"`
-	Version     string   `json:"version"`     // of the program
-	Tolerance   float64  `json:"tolerance"`   // of paths, relative
-	MaxOrder    int      `json:"max_order"`   // image orders are 0 to this
-	WorstBound  float64  `json:"worst_bound"` // on r of any crossing shown, relative
-	WorstAngle  float64  `json:"worst_angle"` // on the swept angle of any path shown that ends on star or sky, rad
-	Paths       int      `json:"paths"`
-	Integrated  int      `json:"integrated"` // of these, integrated one by one
-	NotIncluded []string `json:"not_included"`
-	Assumed     []string `json:"assumed,omitempty"`
-	Audit       string   `json:"audit,omitempty"` // its summary, if one was run
-	Scene       string   `json:"-"`               // the text of the file
+	Title      string  `json:"title,omitempty"`
+	Version    string  `json:"version"`     // of the program
+	Tolerance  float64 `json:"tolerance"`   // of paths, relative
+	MaxOrder   int     `json:"max_order"`   // image orders are 0 to this
+	WorstBound float64 `json:"worst_bound"` // on r of any crossing shown, relative
+	WorstAngle float64 `json:"worst_angle"` // on the swept angle of any path shown that ends on star or sky, rad
+	Paths      int     `json:"paths"`
+	Integrated int     `json:"integrated"` // of these, integrated one by one
+	// Flux is that of the field by image order, in units of intensity times
+	// M² or sr, and FluxBound its bound; nil where pixels are their middles.
+	Flux        []float64 `json:"flux,omitempty"`
+	FluxBound   []float64 `json:"flux_bound,omitempty"`
+	NotIncluded []string  `json:"not_included"`
+	Assumed     []string  `json:"assumed,omitempty"`
+	Audit       string    `json:"audit,omitempty"` // its summary, if one was run
+	Scene       string    `json:"-"`               // the text of the file
 }
 
 // NotIncluded is what the model leaves out.
@@ -48,6 +52,7 @@ func NewProvenance(d *scenes.Document, version string, plate *raytrace.Plate) Pr
 	}
 	if plate != nil {
 		p.WorstBound, p.WorstAngle, p.Paths, p.Integrated = plate.WorstBound, plate.WorstAngle, plate.Paths, plate.Integrated
+		p.Flux, p.FluxBound = plate.Flux, plate.FluxBound
 	}
 	return p
 }
@@ -57,6 +62,14 @@ const (
 	sceneKeyword    = "Annulet scene"
 	numericsKeyword = "Annulet numerics"
 )
+
+// WholeFlux is the sum over orders, and its bound.
+func (p Provenance) WholeFlux() (flux, bound float64) {
+	for n := range p.Flux {
+		flux, bound = flux+p.Flux[n], bound+p.FluxBound[n]
+	}
+	return flux, bound
+}
 
 // JSON is all of it but the scene, on one line.
 func (p Provenance) JSON() string {
@@ -75,6 +88,10 @@ func (p Provenance) Lines() []string {
 	}
 	if p.Paths > 0 {
 		lines = append(lines, fmt.Sprintf("%d paths; worst bound on r %.1e relative, on swept angles %.1e rad", p.Paths, p.WorstBound, p.WorstAngle))
+	}
+	if p.Flux != nil {
+		flux, bound := p.WholeFlux()
+		lines = append(lines, fmt.Sprintf("flux of the field %.7g, bound %.1e, in units of intensity times M2 or sr", flux, bound))
 	}
 	for _, text := range p.Assumed {
 		lines = append(lines, "Assumed: "+text+".")

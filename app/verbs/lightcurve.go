@@ -20,7 +20,7 @@ func newLightcurve(s streams) *cobra.Command {
 		Long: "Prints t, flux, the flux of each image order and the centroid, at the times of the\n" +
 			"scene's [time]; without any, over one period of the first spot or of the star. t is\n" +
 			"t_obs - r*(r_obs) in M. Spots and disks are integrated over their whole images; a\n" +
-			"star's fluxes are sums over the field's pixels, without a bound. JSON tells the\n" +
+			"star's fluxes are those in the field. JSON tells the\n" +
 			"period, each order's amplitude (max - min)/(max + min) and its delay behind the\n" +
 			"direct image, by cross-correlation over whole periods.",
 		Example: "  " + programName() + " lightcurve @late-twin --set time.end=\"1 orbit\" -o curve.ecsv",

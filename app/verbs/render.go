@@ -279,17 +279,23 @@ func checkOutputs(paths []string, scenePath string) error {
 
 // renderReport is the JSON of a render.
 type renderReport struct {
-	Units       map[string]string `json:"units"`
-	Files       []string          `json:"files"`
-	Pixels      [2]int            `json:"pixels"` // columns, rows
-	Paths       int               `json:"paths"`
-	WorstBound  number            `json:"worst_bound"`
-	Layer       string            `json:"layer"`
-	Order       *int              `json:"order"` // null for the total
-	Curve       string            `json:"curve"`
-	Map         string            `json:"map"`
-	Limits      [2]number         `json:"limits"`
-	NotIncluded []string          `json:"not_included"`
+	Units      map[string]string `json:"units"`
+	Files      []string          `json:"files"`
+	Pixels     [2]int            `json:"pixels"` // columns, rows
+	Paths      int               `json:"paths"`
+	WorstBound number            `json:"worst_bound"`
+	Layer      string            `json:"layer"`
+	Order      *int              `json:"order"` // null for the total
+	Curve      string            `json:"curve"`
+	Map        string            `json:"map"`
+	Limits     [2]number         `json:"limits"`
+	// of the field, by image order; absent where the image has no areas
+	Flux           []number `json:"flux"`
+	FluxBound      []number `json:"flux_bound"`
+	TotalFlux      number   `json:"total_flux"`
+	TotalFluxBound number   `json:"total_flux_bound"`
+	Jansky         *number  `json:"total_flux_Jy"` // null without a scale
+	NotIncluded    []string `json:"not_included"`
 }
 
 func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error {
@@ -358,6 +364,9 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 
 	s.note("%d x %d pixels, %d paths, worst bound on r %.1e relative, %.2f s",
 		plate.Columns, plate.Rows, plate.Paths, plate.WorstBound, time.Since(begun).Seconds())
+	if flux, bound := plate.WholeFlux(); flux > 0 {
+		s.note("flux of the field %.7g, bound %.1e, in %s", flux, bound, fluxUnit(view))
+	}
 	s.note("%s", output.NotIncludedLine(output.NotIncludedIn(scene)))
 	if !o.json {
 		_, err := fmt.Fprintln(s.out, strings.Join(written, "\n"))
@@ -370,6 +379,21 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 		Layer: p.kind.word, Curve: p.tone.Curve.String(), Map: p.colours.Name(),
 		Limits:      [2]number{number(low), number(high)},
 		NotIncluded: output.NotIncludedIn(scene),
+	}
+	flux, bound := plate.WholeFlux()
+	report.TotalFlux, report.TotalFluxBound = number(flux), number(bound)
+	for n := range plate.Flux {
+		report.Flux = append(report.Flux, number(plate.Flux[n]))
+		report.FluxBound = append(report.FluxBound, number(plate.FluxBound[n]))
+	}
+	if jansky, ok := view.Jansky(flux); ok {
+		x := number(jansky)
+		report.Jansky = &x
+		report.Units["total_flux_Jy"] = "Jy"
+	}
+	unit := fluxUnit(view)
+	for _, key := range []string{"flux", "flux_bound", "total_flux", "total_flux_bound"} {
+		report.Units[key] = unit
 	}
 	if p.order != total {
 		report.Order = &p.order

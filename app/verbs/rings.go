@@ -3,6 +3,7 @@ package verbs
 import (
 	"context"
 	"errors"
+	"fmt"
 	"math"
 
 	"github.com/spf13/cobra"
@@ -103,7 +104,7 @@ func rings(cmd *cobra.Command, s streams, m measuring, texts []string, which str
 	if err != nil {
 		return err
 	}
-	plate, err := of.view.Render(cmd.Context(), raytrace.Options{Workers: m.workers, Layers: []raytrace.Layer{raytrace.Radius}})
+	plate, err := of.view.Render(cmd.Context(), raytrace.Options{Workers: m.workers, Layers: []raytrace.Layer{raytrace.Radius}, Centres: true})
 	if err != nil {
 		return err
 	}
@@ -163,6 +164,11 @@ func areaUnit(v *raytrace.View) string {
 		return "M2"
 	}
 	return "sr"
+}
+
+// fluxUnit is that of integrals of the intensity over the screen.
+func fluxUnit(v *raytrace.View) string {
+	return fmt.Sprintf("%s x (%s)", areaUnit(v), v.Radiometry().Plate())
 }
 
 // ringTable has one row an order, the rims' outlines in columns.

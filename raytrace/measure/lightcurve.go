@@ -13,7 +13,7 @@ type Instant struct {
 	T      float64 // t_obs - r*(r_obs), M
 	Flux   float64 // ∫ I over the image, M² of the intensity's unit (sr on an angular field)
 	Orders []float64
-	Bound  float64 // on Flux; NaN for sums over pixels
+	Bound  float64 // on Flux
 	// Centroid is the flux-weighted mean place on the screen, in the
 	// field's coordinates, of a parallel field in M; NaN if dark.
 	Centroid [2]float64
@@ -96,7 +96,7 @@ func spotCurve(ctx context.Context, v *raytrace.View, times []float64, size floa
 }
 
 func pixelCurve(ctx context.Context, v *raytrace.View, times []float64, o Options) ([]Instant, error) {
-	options := raytrace.Options{Workers: o.Workers, Layers: []raytrace.Layer{raytrace.Intensity}}
+	options := raytrace.Options{Workers: o.Workers, Layers: []raytrace.Layer{}}
 	traced, err := v.Trace(ctx, options)
 	if err != nil {
 		return nil, err
@@ -118,19 +118,16 @@ func pixelCurve(ctx context.Context, v *raytrace.View, times []float64, o Option
 // instant sums a plate.
 func instant(v *raytrace.View, plate *raytrace.Plate, t float64) Instant {
 	f := v.Field
-	i := Instant{T: t, Orders: make([]float64, plate.Orders), Bound: math.NaN(), Centroid: [2]float64{math.NaN(), math.NaN()}}
+	i := Instant{T: t, Orders: plate.Flux, Centroid: [2]float64{math.NaN(), math.NaN()}}
+	i.Flux, i.Bound = plate.WholeFlux()
 	var x, y float64
 	for k := range plate.Total {
 		column, row := k%plate.Columns, k/plate.Columns
 		area := f.SolidAngle(column, row)
 		light := float64(plate.Total[k]) * area
 		alpha, beta := f.PixelCenter(column, row)
-		i.Flux += light
 		x += light * alpha
 		y += light * beta
-		for n := range i.Orders {
-			i.Orders[n] += float64(plate.Layer(raytrace.Intensity, n)[k]) * area
-		}
 	}
 	if i.Flux > 0 {
 		i.Centroid = [2]float64{x / i.Flux, y / i.Flux}

@@ -55,8 +55,11 @@ func NewGeometry(spacetime geodesic.Spacetime, o geodesic.Observer) (*Geometry, 
 
 // Swept returns the angle after which the path with screen angle s, radians
 // counter-clockwise from +α, meets the disk plane in image order n.
-func (g *Geometry) Swept(s float64, n int) float64 {
-	return geodesic.FirstPlaneAngle(g.SinI, g.CosI, math.Sin(s)) + float64(n)*math.Pi
+func (g *Geometry) Swept(s float64, n int) float64 { return g.SweptTo(math.Sin(s), n) }
+
+// SweptTo is Swept for a screen angle given by its sine.
+func (g *Geometry) SweptTo(sinS float64, n int) float64 {
+	return geodesic.FirstPlaneAngle(g.SinI, g.CosI, sinS) + float64(n)*math.Pi
 }
 
 // ClosedImpact returns by closed form the impact parameter, M, at which the
