@@ -62,8 +62,8 @@ type areas struct {
 	pilot     int           // light paths that the pilot followed
 }
 
-// cells returns whether pixels are integrated over.
-func (v *View) integrates(o Options) bool {
+// Integrates says whether pixels are integrated over.
+func (v *View) Integrates(o Options) bool {
 	return !o.Centres && v.FluxTolerance > 0 && slices.ContainsFunc(v.Emitters, func(e Emitter) bool { return !isSky(e) })
 }
 

@@ -76,7 +76,7 @@ func (v *View) Render(ctx context.Context, o Options) (*Plate, error) {
 // areas returns what the integration over pixels needs, nil for their
 // middles.
 func (v *View) areas(ctx context.Context, o Options) (*areas, error) {
-	if !v.integrates(o) {
+	if !v.Integrates(o) {
 		return nil, nil
 	}
 	return v.newAreas(ctx, o)
@@ -104,7 +104,7 @@ func (o Options) tileSide() int {
 }
 
 func (v *View) tileSide(o Options) int {
-	if o.TileSide == 0 && v.integrates(o) {
+	if o.TileSide == 0 && v.Integrates(o) {
 		return areaTileSide
 	}
 	return o.tileSide()

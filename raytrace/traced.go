@@ -38,7 +38,7 @@ func (v *View) Trace(ctx context.Context, o Options) (*Traced, error) {
 	t.want.NoKR = false // a rim may move within the ISCO
 	t.tiles = tilesOutward(v.Field.Columns, v.Field.Rows, v.tileSide(o))
 	t.blocks = make([]block, len(t.tiles))
-	if v.integrates(o) {
+	if v.Integrates(o) {
 		t.around = halo
 	}
 	counts := &Plate{}
@@ -88,7 +88,7 @@ func (t *Traced) Shade(ctx context.Context, v *View, o Options) (*Plate, error) 
 // Serves says whether Shade can do v with these options.
 func (t *Traced) Serves(v *View, o Options) bool {
 	want := v.want(keep(o.Layers))
-	if v.integrates(o) && t.around == 0 {
+	if v.Integrates(o) && t.around == 0 {
 		return false
 	}
 	return t.covers(v) && (t.want.Delay || !want.Delay) && (!t.want.NoPlace || want.NoPlace)

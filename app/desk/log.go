@@ -41,6 +41,8 @@ func (l *log) frame(f imaging.Frame, scene string, latest bool) {
 	switch {
 	case f.Retoned:
 		word = "toned"
+	case f.Areas:
+		word = "integrated"
 	case f.Coarsening == 1 && latest:
 		word = "settled"
 	}

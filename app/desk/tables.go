@@ -30,7 +30,9 @@ func (c *commands) table() state.Table {
 		return state.StationsTable(s, c.state.Look.Stations)
 	case state.TabNumerics:
 		if f := c.frame; f != nil {
+			flux, bound := f.Plate.WholeFlux()
 			return state.NumericsTable(state.Numerics{
+				Flux: flux, Bound: bound, FluxUnit: fluxUnit(f.Of),
 				Scene: f.Order.Scene, Columns: f.Plate.Columns, Rows: f.Plate.Rows,
 				Paths: f.Plate.Paths, Integrated: f.Plate.Integrated,
 				WorstBound: f.Plate.WorstBound, WorstAngle: f.Plate.WorstAngle,
@@ -160,13 +162,20 @@ func (c *commands) showGraph(g state.Graph) {
 	c.log.line("graph %d", int(g))
 }
 
+// fluxUnit is that of the plate's fluxes.
+func fluxUnit(f raytrace.Field) string {
+	if f.IsParallel() {
+		return "intensity × M²"
+	}
+	return "intensity × sr"
+}
+
 // ordersGraph shows how the field's flux is shared among the orders; nil if
 // the plate does not hold the orders.
 func ordersGraph(f imaging.Frame) *graph.Graph {
 	g := &graph.Graph{Title: "share of the flux in the picture, by order", XName: "order", YName: "share", LogY: true}
-	var shares []float64
-	sum := 0.
-	for n := range f.Plate.Orders {
+	shares := f.Plate.Flux // none where pixels are their middles
+	for n := len(shares); n < f.Plate.Orders; n++ {
 		values := f.Plate.Layer(raytrace.Intensity, n)
 		if values == nil {
 			return nil
@@ -176,6 +185,9 @@ func ordersGraph(f imaging.Frame) *graph.Graph {
 			flux += float64(v) * f.Of.SolidAngle(k%f.Plate.Columns, k/f.Plate.Columns)
 		}
 		shares = append(shares, flux)
+	}
+	sum := 0.
+	for _, flux := range shares {
 		sum += flux
 	}
 	if !(sum > 0) {

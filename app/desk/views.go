@@ -37,6 +37,16 @@ func (s sight) Trace(ctx context.Context, coarsening int, report func(raytrace.P
 	return s.Coarsened(coarsening).Render(ctx, o)
 }
 
+// Integrate implements imaging.View.
+func (s sight) Integrate(ctx context.Context, report func(raytrace.Progress)) (*raytrace.Plate, error) {
+	o := s.options(report)
+	o.Centres = false
+	if !s.Integrates(o) {
+		return nil, nil
+	}
+	return s.Render(ctx, o)
+}
+
 func (s sight) Of() raytrace.Field    { return s.Field }
 func (s sight) Shown() raytrace.Field { return s.shown }
 
@@ -86,9 +96,6 @@ func workers() int {
 	return runtime.NumCPU()
 }
 
-// handRests is how long after a change the hand is taken to rest. Taste.
-const handRests = 300 * time.Millisecond
-
 // views makes each scene ready once, for the picture and the readings alike:
 // finding the width of an automatic field takes longer than a preview may.
 // Its methods run off the window's thread, on any goroutine.
@@ -108,7 +115,7 @@ func (v *views) of(o imaging.Order) (sight, error) {
 		if err == nil {
 			latest.kept = new(keptPaths)
 			latest.moving = new(atomic.Bool)
-			latest.moving.Store(o.Asked.Sub(v.asked) < handRests)
+			latest.moving.Store(o.Asked.Sub(v.asked) < imaging.Rest)
 			if v.latest.View != nil {
 				latest.Follow(v.latest.View)
 				latest.kept = v.latest.kept

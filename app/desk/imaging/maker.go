@@ -64,6 +64,7 @@ type Frame struct {
 	Developed                 // with Image of Order.Columns × Order.Rows, top row first
 	Ink        *image.RGBA    // over it, of the same size; nil for nothing
 	Coarsening int            // 1 when every pixel was traced
+	Areas      bool           // pixels are areas and not their middles
 	Traced     time.Duration  // how long this plate took
 	Retoned    bool           // the plate had been shown before with another tone
 	Err        error          // the scene cannot be traced; then Plate and Image are nil
@@ -77,6 +78,9 @@ type View interface {
 	// Trace makes a plate with the picture's pixels divided by the
 	// coarsening, rounded up.
 	Trace(ctx context.Context, coarsening int, report func(raytrace.Progress)) (*raytrace.Plate, error)
+	// Integrate makes the plate of coarsening 1 with pixels as areas; nil if
+	// nothing there is integrated.
+	Integrate(ctx context.Context, report func(raytrace.Progress)) (*raytrace.Plate, error)
 	// Of is the field that a plate holds, and Shown the one that the
 	// picture shows.
 	Of() raytrace.Field
@@ -93,7 +97,7 @@ type Maker struct {
 	show    func(Frame)           // called from one goroutine, in order
 	report  func(done, tiles int) // called from several; never more than ten times a second
 
-	patience time.Duration
+	patience, rest time.Duration
 
 	mu     sync.Mutex
 	order  Order     // the latest
@@ -101,6 +105,7 @@ type Maker struct {
 	first  time.Time // when the first picture of an order, being traced, was begun; zero for none
 	cancel context.CancelFunc
 	plate  *Frame // the latest traced, without Image; nil before the first
+	view   View   // of the order begun
 
 	traceWake, toneWake chan struct{} // capacity 1
 }
@@ -108,7 +113,7 @@ type Maker struct {
 // NewMaker returns a maker; Run starts it.
 func NewMaker(prepare Prepare, show func(Frame), report func(done, tiles int)) *Maker {
 	return &Maker{
-		prepare: prepare, show: show, report: report, patience: patience,
+		prepare: prepare, show: show, report: report, patience: patience, rest: Rest,
 		begun:     -1,
 		traceWake: make(chan struct{}, 1),
 		toneWake:  make(chan struct{}, 1),
@@ -144,15 +149,43 @@ func (m *Maker) Run(ctx context.Context) {
 
 func (m *Maker) traceLoop(ctx context.Context) {
 	var speed pace
+	var rested <-chan time.Time
 	for {
 		select {
 		case <-ctx.Done():
 			return
+		case <-rested:
+			m.integrate(ctx)
+			rested = nil
+			continue
 		case <-m.traceWake:
 		}
 		for m.traceLatest(ctx, &speed) {
 		}
+		rested = time.After(m.rest)
 	}
+}
+
+// Rest is how long after a change the hand is taken to rest. Taste.
+const Rest = 300 * time.Millisecond
+
+// integrate makes the pixels of the picture areas, unless a newer order
+// arrives.
+func (m *Maker) integrate(ctx context.Context) {
+	m.mu.Lock()
+	o, view, last := m.order, m.view, m.plate
+	m.mu.Unlock()
+	if view == nil || last == nil || last.Err != nil || last.Areas || last.Order.Serial != o.Serial {
+		return
+	}
+	frame, err := m.traceWith(ctx, view, o, false, func(ctx context.Context, report func(raytrace.Progress)) (*raytrace.Plate, error) {
+		return view.Integrate(ctx, report)
+	})
+	if err != nil || frame.Plate == nil || m.stale(o) {
+		return // the picture with pixel middles stays
+	}
+	frame.Coarsening, frame.Areas = 1, true
+	m.keep(frame)
 }
 
 // traceLatest traces the latest order, coarse to fine, until it is done or a
@@ -172,6 +205,9 @@ func (m *Maker) traceLatest(ctx context.Context, speed *pace) bool {
 		m.keep(Frame{Order: o, Err: err})
 		return m.stale(o)
 	}
+	m.mu.Lock()
+	m.view = view
+	m.mu.Unlock()
 	rungs := speed.rungs(view.Of().Columns, view.Of().Rows, time.Since(begun))
 	for k, coarsening := range rungs {
 		frame, err := m.traceRung(ctx, view, o, coarsening, k == 0)
@@ -195,6 +231,14 @@ func (m *Maker) traceLatest(ctx context.Context, speed *pace) bool {
 // traceRung traces one picture; first says that newer orders must let it
 // finish.
 func (m *Maker) traceRung(ctx context.Context, view View, o Order, coarsening int, first bool) (Frame, error) {
+	frame, err := m.traceWith(ctx, view, o, first, func(ctx context.Context, report func(raytrace.Progress)) (*raytrace.Plate, error) {
+		return view.Trace(ctx, coarsening, report)
+	})
+	frame.Coarsening = coarsening
+	return frame, err
+}
+
+func (m *Maker) traceWith(ctx context.Context, view View, o Order, first bool, trace func(context.Context, func(raytrace.Progress)) (*raytrace.Plate, error)) (Frame, error) {
 	ctx, cancel := context.WithCancel(ctx)
 	defer cancel()
 	begun := time.Now()
@@ -211,8 +255,8 @@ func (m *Maker) traceRung(ctx context.Context, view View, o Order, coarsening in
 		m.cancel = nil
 		m.mu.Unlock()
 	}()
-	plate, err := view.Trace(ctx, coarsening, m.throttled(begun))
-	return Frame{Order: o, Plate: plate, Of: view.Of(), Shown: view.Shown(), Coarsening: coarsening, Traced: time.Since(begun)}, err
+	plate, err := trace(ctx, m.throttled(begun))
+	return Frame{Order: o, Plate: plate, Of: view.Of(), Shown: view.Shown(), Traced: time.Since(begun)}, err
 }
 
 // throttled returns a progress callback that passes on at most ten reports a

@@ -32,6 +32,23 @@ func (v benchView) Of() raytrace.Field {
 
 func (v benchView) Shown() raytrace.Field { return v.Of() }
 
+// integrating is what a bench begins where a coarsening does not apply.
+const integrating = 0
+
+func (v benchView) Integrate(ctx context.Context, _ func(raytrace.Progress)) (*raytrace.Plate, error) {
+	select {
+	case v.begun <- integrating:
+	case <-ctx.Done():
+		return nil, ctx.Err()
+	}
+	select {
+	case <-v.release:
+	case <-ctx.Done():
+		return nil, ctx.Err()
+	}
+	return &raytrace.Plate{Columns: 1, Rows: 1, Total: make([]float32, 1)}, nil
+}
+
 func (v benchView) Trace(ctx context.Context, coarsening int, _ func(raytrace.Progress)) (*raytrace.Plate, error) {
 	select { // nobody takes it once the test is over
 	case v.begun <- coarsening:
@@ -63,12 +80,16 @@ func order(serial int) Order {
 }
 
 // start returns a running maker and the frames it shows.
-func start(t *testing.T) (*Maker, *bench, <-chan Frame) {
+func start(t *testing.T) (*Maker, *bench, <-chan Frame) { return resting(t, time.Hour) }
+
+// resting is start with a hand that rests after so long.
+func resting(t *testing.T, rest time.Duration) (*Maker, *bench, <-chan Frame) {
 	t.Helper()
 	ctx, cancel := context.WithCancel(context.Background())
 	b := &bench{begun: make(chan int), release: make(chan struct{})}
 	frames := make(chan Frame, 16)
 	m := NewMaker(func(o Order) (View, error) { return benchView{b, o}, nil }, func(f Frame) { frames <- f }, nil)
+	m.rest = rest
 	m.patience = time.Hour // tests hold plates as long as they like
 	var running sync.WaitGroup
 	running.Go(func() { m.Run(ctx) })
@@ -139,6 +160,42 @@ func firstPlateOutlivesNewOrders(t *testing.T, order func(serial int) Order) {
 	defer b.mu.Unlock()
 	if !slices.Equal(b.finished, []int{1, 9}) {
 		t.Errorf("finished %v, want 1 and 9", b.finished)
+	}
+}
+
+// A hand that rests sees pixels that are areas, once; a hand that moves on
+// does not wait for them.
+func TestRestIntegrates(t *testing.T) {
+	m, b, frames := resting(t, 50*time.Millisecond)
+	full := func(serial int) {
+		t.Helper()
+		m.Ask(order(serial))
+		for k := 0; k != 1; { // the coarse ones first, if any
+			k = <-b.begun
+			b.release <- struct{}{}
+			<-frames
+		}
+	}
+	full(1)
+	if got := <-b.begun; got != integrating {
+		t.Fatalf("a rested hand has a plate of coarsening %d", got)
+	}
+	full(2) // the plate of areas is never released
+	if got := <-b.begun; got != integrating {
+		t.Fatalf("a rested hand has a plate of coarsening %d", got)
+	}
+	b.release <- struct{}{}
+	if f := <-frames; !f.Areas || !f.Settled() || f.Order.Serial != 2 {
+		t.Errorf("frame of scene %d, areas %v, coarsening %d", f.Order.Serial, f.Areas, f.Coarsening)
+	}
+	m.Ask(order(2)) // another tone
+	if f := <-frames; !f.Areas || !f.Retoned {
+		t.Errorf("areas %v, retoned %v", f.Areas, f.Retoned)
+	}
+	select {
+	case k := <-b.begun:
+		t.Errorf("a change of tone began a plate of coarsening %d", k)
+	case <-time.After(3 * m.rest):
 	}
 }
 

@@ -19,6 +19,8 @@ type Numerics struct {
 	Traced, Shown time.Duration
 	Workers       int
 	Coarsening    int
+	Flux, Bound   float64 // of the field; NaN while pixels are their middles
+	FluxUnit      string
 }
 
 // NumericsTable lists how the picture was made and what its numbers assume.
@@ -42,6 +44,10 @@ func NumericsTable(n Numerics) Table {
 		default:
 			t.say(name, "exact")
 		}
+	}
+	if n.Flux > 0 {
+		t.add("flux of the field", fmt.Sprintf("%.6g", n.Flux), n.FluxUnit, n.Flux)
+		bound("on the flux", n.Bound/n.Flux, "relative")
 	}
 	bound("worst on r", n.WorstBound, "relative")
 	bound("worst on angle", n.WorstAngle, "rad")

@@ -39,6 +39,7 @@ func followsTheHand(t *testing.T, program string) {
 		t.Errorf("opened on %q", settled.text)
 	}
 	t.Logf("first settled: %s", settled.text)
+	t.Logf("at rest: %s", log.wait(t, "pixels as areas", word("integrated")).text)
 
 	w := window{s, s.do("search", "--onlyvisible", "--name", "Annulet")}
 	at := w.place()
