@@ -169,8 +169,8 @@ func (s *Round) checkPath(p Path) error {
 	if err := s.Check(Observer{Radius: p.ObserverRadius}); err != nil {
 		return err
 	}
-	reach := p.ObserverRadius / s.Lapse(p.ObserverRadius)
-	if !(p.Impact >= 0 && p.Impact <= reach) || math.IsInf(p.Impact, 1) {
+	reach := min(p.ObserverRadius/s.Lapse(p.ObserverRadius), MaxRadius) // beyond it nothing bends
+	if !(p.Impact >= 0 && p.Impact <= reach) {
 		return fmt.Errorf("geodesic: impact parameter %v M: %w: at r = %v M it must lie in [0, %.6g] M",
 			p.Impact, ErrImpact, p.ObserverRadius, reach)
 	}

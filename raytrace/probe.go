@@ -69,7 +69,8 @@ func (b *bench) read(k int, p [2]float64, readings []Reading) []Reading {
 			Order:   int(b.at.Order[j]),
 			Surface: b.at.Surface[j],
 			R:       b.at.R[j], CosTheta: b.at.CosTheta[j], Phi: b.at.Phi[j],
-			Ell: b.rays.Lambda[k], G: s.g, Mu: s.mu,
+			Ell: b.rays.Lambda[k] + 0, // not -0
+			G:   s.g, Mu: s.mu,
 			Delay: b.at.Delay[j], Intensity: s.intensity,
 		}
 		if reading.Surface == geodesic.Plane {

@@ -49,7 +49,7 @@ func newCut(s streams) *cobra.Command {
 				ends = [2][2]float64{{f.Center[0] - half*cos, f.Center[1] - half*sin}, {f.Center[0] + half*cos, f.Center[1] + half*sin}}
 			} else {
 				for k, text := range []string{from, to} {
-					if ends[k], err = parseAt(text); err != nil {
+					if ends[k], err = parsePair([...]string{"--from", "--to"}[k], text); err != nil {
 						return err
 					}
 					ends[k][0] *= perUnit

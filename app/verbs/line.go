@@ -77,7 +77,7 @@ func line(cmd *cobra.Command, s streams, m measuring, o lineOptions, scenePath s
 	width := math.NaN()
 	var level, index float64
 	if o.continuum != "" {
-		at, err := parseAt(o.continuum)
+		at, err := parsePair("--continuum", o.continuum)
 		if err != nil || !(at[0] > 0) {
 			return refuse("--continuum %q: allowed: a level above 0 and a photon index, as in 2.5,1.9", o.continuum)
 		}

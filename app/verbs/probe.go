@@ -49,15 +49,15 @@ func newProbe(s streams) *cobra.Command {
 	return cmd
 }
 
-// parseAt reads ALPHA,BETA.
-func parseAt(text string) (at [2]float64, err error) {
+// parsePair reads two numbers, such as ALPHA,BETA, of a flag.
+func parsePair(flag, text string) (at [2]float64, err error) {
 	alpha, beta, ok := strings.Cut(text, ",")
 	if !ok {
-		return at, refuse("--at %q: allowed: two numbers with a comma, as in -8,0.5", text)
+		return at, refuse("%s %q: allowed: two numbers with a comma, as in -8,0.5", flag, text)
 	}
 	for k, part := range []string{alpha, beta} {
 		if at[k], err = parseFinite(part); err != nil {
-			return at, refuse("--at %q: %w", text, err)
+			return at, refuse("%s %q: %w", flag, text, err)
 		}
 	}
 	return at, nil
@@ -125,7 +125,7 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	}
 	for _, text := range o.at {
 		var at [2]float64
-		if at, err = parseAt(text); err != nil {
+		if at, err = parsePair("--at", text); err != nil {
 			break
 		}
 		points = append(points, at)

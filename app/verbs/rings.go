@@ -133,6 +133,7 @@ func rings(cmd *cobra.Command, s streams, m measuring, texts []string, which str
 		{"rings", ringObjects(ringTable)},
 		{"inner_shadow", innerShadow(table, of.scene)},
 		{"flux", number(table.Flux)}, {"flux_bound", number(table.Bound)}, {"flux_outside_field", number(table.Outside)},
+		{"flux_outside_field_bound", number(table.OutsideBound)},
 	}
 	if estimate {
 		found, err := estimates(cmd.Context(), of, plate)
@@ -176,8 +177,8 @@ func ringTable(t *measure.Rings, of *measured) output.Table {
 	area := areaUnit(of.view)
 	columns := []output.Column{
 		{Name: "emitter", Kind: output.Int, Text: "number in the scene, from 1"}, {Name: "order", Kind: output.Int},
-		{Name: "flux", Unit: area, Text: "integral of the intensity"}, {Name: "flux_bound", Unit: area}, {Name: "flux_fraction"}, {Name: "flux_outside_field", Unit: area},
-		{Name: "area", Unit: area}, {Name: "int_g3", Unit: area}, {Name: "int_g4", Unit: area},
+		{Name: "flux", Unit: area, Text: "integral of the intensity"}, {Name: "flux_bound", Unit: area}, {Name: "flux_fraction"}, {Name: "flux_outside_field", Unit: area}, {Name: "flux_outside_field_bound", Unit: area},
+		{Name: "area", Unit: area}, {Name: "area_bound", Unit: area}, {Name: "int_g3", Unit: area}, {Name: "int_g3_bound", Unit: area}, {Name: "int_g4", Unit: area}, {Name: "int_g4_bound", Unit: area},
 		{Name: "mean_delay", Unit: "M", Text: "flux-weighted"}, {Name: "width", Unit: "M", Text: "at screen angle 0"}, {Name: "width_ratio"}, {Name: "flux_ratio"},
 	}
 	theta, angular := of.scene.ThetaG()
@@ -193,7 +194,7 @@ func ringTable(t *measure.Rings, of *measured) output.Table {
 	table := output.Table{Columns: columns}
 	for _, r := range t.Rings {
 		row := []any{
-			r.Emitter + 1, r.Order, r.Flux, r.FluxBound, r.Fraction, r.Outside, r.Area, r.IntG3, r.IntG4,
+			r.Emitter + 1, r.Order, r.Flux, r.FluxBound, r.Fraction, r.Outside, r.OutsideBound, r.Area, r.AreaBound, r.IntG3, r.IntG3Bound, r.IntG4, r.IntG4Bound,
 			r.MeanDelay, r.Width, r.WidthRatio, r.FluxRatio,
 		}
 		for _, o := range []measure.Outline{r.Inner, r.Outer} {

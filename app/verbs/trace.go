@@ -164,6 +164,9 @@ func (b *body) check(p geodesic.Path) error {
 		}
 		return refuse("%s", plain(err))
 	}
+	if p.Impact > geodesic.MaxRadius {
+		return refuse("impact %s M: nothing bends so far out; allowed: 0 to %g M", number(p.Impact).csv(), geodesic.MaxRadius)
+	}
 	if most := r / b.spacetime.Lapse(r); p.Impact > most {
 		return refuse("impact %s M: no light reaches an observer at %s M with it; allowed: 0 to %s M",
 			number(p.Impact).csv(), number(r).csv(), number(most).csv())
