@@ -6,6 +6,8 @@ import (
 	"math"
 	"runtime"
 
+	"annulet/geodesic/guard"
+
 	"golang.org/x/sync/errgroup"
 )
 
@@ -177,7 +179,7 @@ func (tb *OrbitTable) onRows(ctx context.Context, share Share, tolerance float64
 	}
 	group, ctx := errgroup.WithContext(ctx)
 	for worker := range workers {
-		group.Go(func() error {
+		group.Go(guard.Work(func() error {
 			t, err := tb.object.newTracer(share.Observer, Plan{Tolerance: max(tolerance, MinTolerance), MaxOrder: share.MaxOrder})
 			if err != nil {
 				return err
@@ -189,7 +191,7 @@ func (tb *OrbitTable) onRows(ctx context.Context, share Share, tolerance float64
 				work(t, k)
 			}
 			return nil
-		})
+		}))
 	}
 	return group.Wait()
 }

@@ -4,7 +4,6 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"path/filepath"
 
 	"annulet/geodesic"
 	"annulet/raytrace/emit"
@@ -182,7 +181,7 @@ func (l *lighting) disk(e scenes.Emitter) (*emit.Disk, error) {
 			d.Scale *= flux / math.Pi
 		}
 	case "table":
-		table, err := emit.LoadTable(l.path(e.Table))
+		table, err := emit.LoadTable(scenes.FilePath(l.folder, e.Table))
 		if err == nil {
 			err = table.Covers(d.Inner, d.Outer)
 		}
@@ -202,14 +201,6 @@ func (l *lighting) disk(e scenes.Emitter) (*emit.Disk, error) {
 		}
 	}
 	return d, nil
-}
-
-// path takes the path of a file from the scene's folder.
-func (l *lighting) path(file string) string {
-	if filepath.IsAbs(file) {
-		return file
-	}
-	return filepath.Join(l.folder, file)
 }
 
 func (l *lighting) spot(e scenes.Emitter) (*emit.Spot, error) {
@@ -283,7 +274,7 @@ func (l *lighting) sky(e scenes.Emitter) (*emit.Sky, error) {
 	var pattern emit.Pattern
 	switch {
 	case e.Image != "":
-		image, err := emit.LoadImage(l.path(e.Image))
+		image, err := emit.LoadImage(scenes.FilePath(l.folder, e.Image))
 		if err != nil {
 			return nil, err
 		}

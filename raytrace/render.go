@@ -10,6 +10,7 @@ import (
 	"sync/atomic"
 
 	"annulet/geodesic"
+	"annulet/geodesic/guard"
 
 	"golang.org/x/sync/errgroup"
 )
@@ -143,7 +144,7 @@ func (v *View) onTiles(ctx context.Context, o Options, want geodesic.Want, a *ar
 	tally := tally{plate: plate, tiles: len(tiles), report: o.Report}
 	group, ctx := errgroup.WithContext(ctx)
 	for range min(o.workers(), len(tiles)) {
-		group.Go(func() error {
+		group.Go(guard.Work(func() error {
 			b, err := v.newBench(table)
 			if err == nil && a != nil {
 				b.mosaic, err = a.newMosaic(table)
@@ -168,7 +169,7 @@ func (v *View) onTiles(ctx context.Context, o Options, want geodesic.Want, a *ar
 				}
 				tally.add(tiles[k], report)
 			}
-		})
+		}))
 	}
 	err := group.Wait()
 	plate.rows = inRows(tiles[:len(light)], light)

@@ -5,6 +5,8 @@ import (
 	"image"
 
 	"golang.org/x/sync/errgroup"
+
+	"annulet/geodesic/guard"
 )
 
 // Strip is one row of tiles of an image too large to be held whole.
@@ -46,7 +48,7 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 	group, ctx := errgroup.WithContext(ctx)
 	ready := make(chan Strip)
 	free := make(chan *Plate, stripPlates)
-	group.Go(func() error {
+	group.Go(guard.Work(func() error {
 		for s := range ready {
 			if err := take(s); err != nil {
 				return err
@@ -54,8 +56,8 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 			free <- s.Plate
 		}
 		return nil
-	})
-	group.Go(func() error {
+	}))
+	group.Go(guard.Work(func() error {
 		defer close(ready)
 		for k := range strips {
 			row := k
@@ -91,7 +93,7 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 			}
 		}
 		return nil
-	})
+	}))
 	if err := group.Wait(); err != nil {
 		return nil, err
 	}

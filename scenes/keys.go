@@ -40,6 +40,7 @@ type Key struct {
 	Profiles []string // profiles of a disk that have the key; empty: all
 	Lights   []string // lights of an emitter that have the key; empty: all
 	Required bool     // a file, or an inline table, without it is refused
+	File     bool     // Text: the path of a file, from the scene file's folder
 	Default  string   // as written in a file; "" when the key may stay away without one
 	Text     string   // what it is, one line
 	Why      string   // said when the value is out of Range; may be ""
@@ -167,7 +168,7 @@ var emitterKeys = []Key{
 		Default: `3`, Text: "index of a power profile, or a list of them with breaks between"},
 	{Section: "emitter", Name: "breaks", Type: QuantityList, Unit: "M", Units: lengthUnits, Range: above(0), Profiles: []string{powerLaw}, Kinds: onlyDisk,
 		Text: "radii between the indices of a broken power profile"},
-	{Section: "emitter", Name: "table", Type: Text, Profiles: []string{tabulated}, Kinds: onlyDisk, Text: "CSV file of a table profile, from the scene file's folder: r [M] growing, value; of a blackbody the effective temperature, K"},
+	{Section: "emitter", Name: "table", Type: Text, File: true, Profiles: []string{tabulated}, Kinds: onlyDisk, Text: "CSV file of a table profile, from the scene file's folder: r [M] growing, value; of a blackbody the effective temperature, K"},
 	{Section: "emitter", Name: "total_flux", Type: Quantity, Unit: "Jy", Units: fluxUnits, Range: above(0), Profiles: []string{powerLaw, tabulated}, Lights: []string{monochromatic}, Kinds: onlyDisk,
 		Text: "flux at the first frequency to which a monochromatic power or table disk is scaled, that of its whole image"},
 	{Section: "emitter", Name: "luminosity", Type: Quantity, Unit: "Edd", Units: luminosityUnits, Range: above(0), Profiles: []string{novikovThorne}, Lights: []string{bolometric, blackbody}, Kinds: onlyDisk,
@@ -199,7 +200,7 @@ var emitterKeys = []Key{
 		Text: "period of rotation seen from infinity; slow rotation only; left out: the star does not turn"},
 	{Section: "emitter", Name: "caps", Type: TableList, Fields: capKeys, Kinds: onlySurface,
 		Text: "hot caps fixed to the surface"},
-	{Section: "emitter", Name: "image", Type: Text, Kinds: onlySky,
+	{Section: "emitter", Name: "image", Type: Text, File: true, Kinds: onlySky,
 		Text: "path of an equirectangular image, from the scene file's folder"},
 	{Section: "emitter", Name: "pattern", Type: Choice, Choices: []string{"stars", "grid"}, Kinds: onlySky,
 		Default: `"grid"`, Text: "drawn sky, instead of an image"},
@@ -230,7 +231,7 @@ var capKeys = []Key{
 var telescopeKeys = []Key{
 	{Section: "telescope", Name: "beam", Type: QuantityList, Count: 3, Unit: "uas", Units: beamUnits, Range: anyNumber,
 		Text: "beam: FWHM major and minor in uas, position angle in deg"},
-	{Section: "telescope", Name: "uv", Type: Text, Text: "CSV file of baselines: u, v [Glambda], from the scene file's folder"},
+	{Section: "telescope", Name: "uv", Type: Text, File: true, Text: "CSV file of baselines: u, v [Glambda], from the scene file's folder"},
 	{Section: "telescope", Name: "resolution", Type: Quantity, Unit: "eV", Units: frequencyUnits, Range: above(0), Text: "spectral FWHM; with it a line profile needs emitter.rest"},
 }
 

@@ -7,12 +7,7 @@ import "fmt"
 // for those to say who keep them.
 const memoryLimit = 4 << 30
 
-// Layers of a plate: the total, and intensity g r phi delay mu of each order.
-const (
-	layersOnce     = 1
-	layersPerOrder = 6
-	bytesPerValue  = 4 // float32
-)
+const bytesPerValue = 4 // float32
 
 // memory refuses an image too large, and says how large.
 func (b *builder) memory() {
@@ -35,13 +30,4 @@ func gibibytes(n float64) string {
 		return fmt.Sprintf("%.4g TiB", n/(1<<40))
 	}
 	return fmt.Sprintf("%.4g GiB", n/(1<<30))
-}
-
-// PlateBytes is the memory of the scene's image with all layers, in bytes.
-func (s Scene) PlateBytes() float64 {
-	return float64(s.Field.Pixels[0]) * float64(s.Field.Pixels[1]) * float64(s.bytesPerPixel())
-}
-
-func (s Scene) bytesPerPixel() int {
-	return (layersOnce + layersPerOrder*(s.Trace.MaxOrder+1)) * bytesPerValue
 }

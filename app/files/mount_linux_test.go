@@ -5,30 +5,13 @@ import (
 	"io"
 	"os"
 	"path/filepath"
-	"syscall"
 	"testing"
+
+	"annulet/app/files/disk"
 )
 
-// smallDisk mounts a file system of 256 KiB in memory, or skips the test.
-func smallDisk(t *testing.T) string {
-	t.Helper()
-	if os.Geteuid() != 0 {
-		t.Skip("NOT RUN: only root can mount a small disk")
-	}
-	folder := t.TempDir()
-	if err := syscall.Mount("tmpfs", folder, "tmpfs", 0, "size=256k"); err != nil {
-		t.Skip("NOT RUN: this machine lets root mount nothing: ", err)
-	}
-	t.Cleanup(func() {
-		if err := syscall.Unmount(folder, 0); err != nil {
-			t.Error(err)
-		}
-	})
-	return folder
-}
-
 func TestFullDisk(t *testing.T) {
-	folder := smallDisk(t)
+	folder := disk.Small(t, "256k")
 	path := filepath.Join(folder, "image.png")
 	if err := os.WriteFile(path, []byte(oldText), mode); err != nil {
 		t.Fatal(err)
@@ -49,14 +32,12 @@ func TestFullDisk(t *testing.T) {
 }
 
 func TestReadOnlyDisk(t *testing.T) {
-	folder := smallDisk(t)
+	folder := disk.Small(t, "256k")
 	path := filepath.Join(folder, "image.png")
 	if err := os.WriteFile(path, []byte(oldText), mode); err != nil {
 		t.Fatal(err)
 	}
-	if err := syscall.Mount("", folder, "", syscall.MS_REMOUNT|syscall.MS_RDONLY, ""); err != nil {
-		t.Skip("NOT RUN: no read-only mount here: ", err)
-	}
+	disk.ReadOnly(t, folder)
 	for _, p := range []string{path, filepath.Join(folder, "new.png")} {
 		if err := CheckWritable(p); !errors.Is(err, ErrReadOnly) {
 			t.Errorf("CheckWritable(%s): %v, want ErrReadOnly", p, err)

@@ -60,11 +60,19 @@ func Load(dir string) (*Manifest, error) {
 	if err != nil {
 		return nil, err
 	}
+	return decode(path, text)
+}
+
+// decode reads a manifest's text; path is for errors.
+func decode(path string, text []byte) (*Manifest, error) {
 	m := new(Manifest)
 	if err := json.Unmarshal(text, m); err != nil {
 		return nil, fmt.Errorf("%s: %w (%v)", path, ErrDamaged, err)
 	}
-	return m, m.check(path)
+	if err := m.check(path); err != nil {
+		return nil, err
+	}
+	return m, nil
 }
 
 func (m *Manifest) check(path string) error {
@@ -74,9 +82,13 @@ func (m *Manifest) check(path string) error {
 	case m.Format != manifestFormat || len(m.Cases) == 0 || len(m.Cases) > maxValues || len(m.Products) == 0:
 		return fmt.Errorf("%s: %w", path, ErrDamaged)
 	}
-	for _, c := range m.Cases {
-		if c.Name == "" || len(c.Name) > maxName || c.Name != filepath.Base(c.Name) || c.Name[0] == '.' {
-			return fmt.Errorf("%s: a case named %q: %w", path, c.Name, ErrDamaged)
+	sets := make([][]Setting, len(m.Cases))
+	for k, c := range m.Cases {
+		sets[k] = c.Set
+	}
+	for k, c := range Named(sets) {
+		if c.Name != m.Cases[k].Name { // which would be the name of a file
+			return fmt.Errorf("%s: case %d is named %q, want %q: %w", path, k, m.Cases[k].Name, c.Name, ErrDamaged)
 		}
 	}
 	return nil

@@ -14,6 +14,7 @@ import (
 	"time"
 
 	"annulet/app/files"
+	"annulet/geodesic/guard"
 	"annulet/scenes"
 
 	"golang.org/x/sync/errgroup"
@@ -216,7 +217,7 @@ func (r *runner) one(ctx context.Context, k int) (finished bool, err error) {
 	job := &Job{Case: r.m.Cases[k].Case, Document: document, Dir: r.dir}
 	err = documentErr
 	if err == nil {
-		err = guarded(ctx, job, r.produce)
+		err = guard.Work(func() error { return r.produce(ctx, job) })()
 	}
 	if err := endsSweep(ctx, err); err != nil {
 		return false, fmt.Errorf("case %s: %w", name, err)
@@ -254,16 +255,6 @@ func endsSweep(ctx context.Context, err error) error {
 		return err
 	}
 	return nil
-}
-
-// guarded turns a panic into the case's failure.
-func guarded(ctx context.Context, job *Job, produce Produce) (err error) {
-	defer func() {
-		if p := recover(); p != nil {
-			err = fmt.Errorf("the program failed on it: %v", p)
-		}
-	}()
-	return produce(ctx, job)
 }
 
 func (r *runner) count(s State, made bool) {

@@ -10,9 +10,11 @@ import (
 	"math/rand/v2"
 	"os"
 	"os/exec"
+	"os/signal"
 	"path/filepath"
 	"strconv"
 	"strings"
+	"syscall"
 	"testing"
 	"time"
 
@@ -27,7 +29,9 @@ func TestMain(m *testing.M) {
 		if err != nil {
 			panic(err)
 		}
-		if err := work(context.Background(), dir, pause); err != nil {
+		ctx, stop := signal.NotifyContext(context.Background(), syscall.SIGTERM)
+		defer stop()
+		if err := work(ctx, dir, pause); err != nil {
 			fmt.Fprintln(os.Stderr, err)
 			os.Exit(1)
 		}
@@ -74,26 +78,50 @@ func must(a Axis, err error) Axis {
 // in a log beside the sweep for every case it begins.
 func produce(dir string, pause time.Duration) Produce {
 	return func(ctx context.Context, job *Job) error {
-		log, err := os.OpenFile(dir+".log", os.O_APPEND|os.O_CREATE|os.O_WRONLY, 0o666)
-		if err != nil {
-			return err
-		}
-		_, err = log.WriteString(job.Name + "\n")
-		if err := errors.Join(err, log.Close()); err != nil {
+		if err := note(dir, beginsLog, job.Name); err != nil {
 			return err
 		}
 		value := job.Document.Scene().Observer.Inclination
 		job.Column("inclination", "deg", &value)
-		return job.Write(ctx, "image", ".bin", func(w io.Writer) error {
+		err := job.Write(ctx, "image", ".bin", func(w io.Writer) error {
 			half := bytes.Repeat(job.Document.Text(), 1000)
 			if _, err := w.Write(half); err != nil {
+				return err
+			}
+			if err := note(dir, writesLog, "half "+job.Name); err != nil {
 				return err
 			}
 			time.Sleep(pause)
 			_, err := w.Write(half)
 			return err
 		})
+		return errors.Join(err, note(dir, writesLog, "whole "+job.Name))
 	}
+}
+
+// Logs beside a sweep: cases begun, and files half and wholly written.
+const beginsLog, writesLog = ".log", ".writes"
+
+// note adds a line to a log, as one operation.
+func note(dir, log, line string) error {
+	f, err := os.OpenFile(dir+log, os.O_APPEND|os.O_CREATE|os.O_WRONLY, 0o666)
+	if err != nil {
+		return err
+	}
+	_, err = f.WriteString(line + "\n")
+	return errors.Join(err, f.Close())
+}
+
+// halfWritten says whether the last line tells of a file begun and not
+// finished.
+func halfWritten(t *testing.T, dir string) bool {
+	t.Helper()
+	text, err := os.ReadFile(dir + writesLog)
+	if err != nil && !errors.Is(err, fs.ErrNotExist) {
+		t.Fatal(err)
+	}
+	lines := strings.Split(strings.TrimSpace(string(text)), "\n")
+	return strings.HasPrefix(lines[len(lines)-1], "half ")
 }
 
 // contents reads a whole folder.
@@ -166,7 +194,8 @@ func TestKilledSweepGoesOn(t *testing.T) {
 	want := undisturbed(t)
 	random := rand.New(rand.NewPCG(1, 2))
 	left, midWrite := kills(t), 0
-	for round := 0; left > 0; round++ {
+	wantMidWrite := left * 2 / 5 // of all kills, at least, in the middle of a file
+	for left > 0 || midWrite < wantMidWrite {
 		dir := filepath.Join(t.TempDir(), "sweep")
 		for range 20 {
 			cmd := worker(dir, 10*time.Millisecond)
@@ -181,7 +210,7 @@ func TestKilledSweepGoesOn(t *testing.T) {
 					t.Fatal(err)
 				}
 			case <-time.After(time.Duration(20+random.IntN(150)) * time.Millisecond):
-				if left == 0 {
+				if left == 0 && midWrite >= wantMidWrite {
 					if err := <-ended; err != nil {
 						t.Fatal(err)
 					}
@@ -189,12 +218,9 @@ func TestKilledSweepGoesOn(t *testing.T) {
 				}
 				_ = cmd.Process.Kill() // it may have ended just now
 				if <-ended != nil {
-					left--
-				}
-				for name := range contents(t, dir) {
-					if files.IsTemporary(filepath.Base(name)) {
+					left = max(0, left-1)
+					if halfWritten(t, dir) {
 						midWrite++
-						break
 					}
 				}
 				continue

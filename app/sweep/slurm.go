@@ -29,6 +29,7 @@ type Slurm struct {
 	Cores     int    // of a task
 	AtOnce    int    // tasks that may run at a time; 0 for no limit
 	Chunks    int    // parts that the cases are cut into, one a task
+	OnlyBelow string // absolute path that the files of scenes must lie below; "" for anywhere
 }
 
 // slurmFolder holds scripts, logs of the tasks, and which jobs were
@@ -53,8 +54,12 @@ func (s Slurm) ArrayScript(dir string, chunks []int) string {
 	fmt.Fprintf(&b, "\n#SBATCH --ntasks=1\n#SBATCH --cpus-per-task=%d\n", max(1, s.Cores))
 	s.common(&b, dir, "%A_%a")
 	// The step's limits are the task's; nproc would show the whole node.
-	fmt.Fprintf(&b, "exec %s sweep resume %s --chunk \"$SLURM_ARRAY_TASK_ID/%d\" --workers \"${SLURM_CPUS_PER_TASK:-1}\"\n",
+	fmt.Fprintf(&b, "exec %s sweep resume %s --chunk \"$SLURM_ARRAY_TASK_ID/%d\" --workers \"${SLURM_CPUS_PER_TASK:-1}\"",
 		quoted(s.Program), quoted(dir), s.Chunks)
+	if s.OnlyBelow != "" {
+		b.WriteString(" --only-below " + quoted(s.OnlyBelow))
+	}
+	b.WriteString("\n")
 	return b.String()
 }
 

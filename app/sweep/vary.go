@@ -3,6 +3,7 @@ package sweep
 import (
 	"errors"
 	"fmt"
+	"math"
 	"math/big"
 	"strings"
 )
@@ -102,6 +103,9 @@ func steps(parts []string) ([]string, error) {
 		r, ok := new(big.Rat).SetString(number)
 		if !ok {
 			return nil, fmt.Errorf("%q is no number: %w", part, ErrVary)
+		}
+		if x, _ := r.Float64(); math.IsInf(x, 0) {
+			return nil, fmt.Errorf("%q is too large: %w", part, ErrVary)
 		}
 		numbers[k] = r
 	}

@@ -39,7 +39,7 @@ func newAudit(s streams) *cobra.Command {
 			if samples < 1 || samples > maxSamples {
 				return refuse("--samples %d: allowed: 1 to %d", samples, maxSamples)
 			}
-			d, err := loadScene(args[0], set)
+			d, err := s.loadScene(args[0], set)
 			if err != nil {
 				return err
 			}

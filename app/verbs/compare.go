@@ -174,7 +174,7 @@ func (c comparing) overModels(ctx context.Context, s streams, of *measured, scen
 	for _, inner := range []string{"isco", "horizon"} {
 		for index := 1; index <= most; index++ {
 			set := append(append([]string{}, c.set...), "emitter.inner="+inner, fmt.Sprintf("emitter.index=%d", index))
-			d, err := loadScene(scenePath, set)
+			d, err := s.loadScene(scenePath, set)
 			if err != nil {
 				s.note("spread: without inner = %s and index %d: %v", inner, index, err)
 				continue

@@ -71,7 +71,7 @@ func (m measuring) open(s streams, scenePath string) (*measured, error) {
 	if err != nil {
 		return nil, err
 	}
-	d, err := loadScene(scenePath, m.set)
+	d, err := s.loadScene(scenePath, m.set)
 	if err != nil {
 		return nil, err
 	}

@@ -24,7 +24,7 @@ func addSet(f *pflag.FlagSet, set *[]string) {
 
 // loadScene reads a scene file or a built-in scene, and overrides keys of it.
 // Whatever is wrong is the request's fault.
-func loadScene(path string, set []string) (*scenes.Document, error) {
+func (s streams) loadScene(path string, set []string) (*scenes.Document, error) {
 	d, err := scenes.Load(path)
 	if err != nil {
 		return nil, usage{err}
@@ -42,7 +42,18 @@ func loadScene(path string, set []string) (*scenes.Document, error) {
 	if err := d.SetAll(assignments...); err != nil {
 		return nil, usage{err}
 	}
+	if err := s.confine(d, assignments...); err != nil {
+		return nil, usage{err}
+	}
 	return d, nil
+}
+
+// confine refuses a scene that names a file where --only-below allows none.
+func (s streams) confine(d *scenes.Document, set ...scenes.Assignment) error {
+	if s.onlyBelow == nil || *s.onlyBelow == "" {
+		return nil
+	}
+	return d.OnlyBelow(*s.onlyBelow, set...)
 }
 
 // checkWritable refuses a path at which no file can be made.

@@ -133,7 +133,7 @@ func probe(cmd *cobra.Command, s streams, o probing, scenePath string) error {
 	if err != nil {
 		return err
 	}
-	document, err := loadScene(scenePath, o.set)
+	document, err := s.loadScene(scenePath, o.set)
 	if err != nil {
 		return err
 	}

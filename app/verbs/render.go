@@ -303,7 +303,7 @@ func render(cmd *cobra.Command, s streams, o rendering, scenePath string) error 
 	if err != nil {
 		return err
 	}
-	document, err := loadScene(scenePath, o.set)
+	document, err := s.loadScene(scenePath, o.set)
 	if err != nil {
 		return err
 	}

@@ -14,6 +14,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"annulet/app/files"
+	"annulet/geodesic/guard"
 )
 
 // Version is that of the programs.
@@ -39,8 +40,9 @@ func refuse(format string, args ...any) error {
 
 // streams is where a run reads and writes.
 type streams struct {
-	in       io.Reader
-	out, err io.Writer
+	in        io.Reader
+	out, err  io.Writer
+	onlyBelow *string // the folder that a scene's files must lie in; nil or "" for anywhere
 }
 
 // note prints a line beside the result.
@@ -53,7 +55,7 @@ func (s streams) note(format string, args ...any) {
 func Run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 	ctx, stop := interruptible()
 	defer stop()
-	return run(ctx, args, streams{stdin, stdout, stderr})
+	return run(ctx, args, streams{in: stdin, out: stdout, err: stderr})
 }
 
 // interruptible returns a context that the first interrupt or termination
@@ -89,7 +91,7 @@ func run(ctx context.Context, args []string, s streams) int {
 	begun := false // everything cobra finds wrong before that is usage
 	root.PersistentPreRun = func(*cobra.Command, []string) { begun = true }
 
-	err := root.ExecuteContext(ctx)
+	err := guard.Work(func() error { return root.ExecuteContext(ctx) })()
 	if err == nil {
 		return exitDone
 	}
@@ -129,6 +131,7 @@ func programName() string {
 
 // newRoot returns the whole tree of commands, fresh: flags hold state.
 func newRoot(s streams) *cobra.Command {
+	s.onlyBelow = new(string)
 	root := &cobra.Command{
 		Use:   programName(),
 		Short: "lensed images of gas around a compact object",
@@ -147,6 +150,7 @@ func newRoot(s streams) *cobra.Command {
 	root.SetErr(s.err)
 	root.SetVersionTemplate("annulet {{.Version}}\n")
 	root.CompletionOptions.DisableDefaultCmd = true
+	root.PersistentFlags().StringVar(s.onlyBelow, "only-below", "", "refuse scenes that name files (sky, table, uv) outside the folder `DIR`, links followed")
 	root.AddCommand(
 		newTrace(s), newProbe(s), newRender(s), newScene(s),
 		newStations(s), newSweep(s), newBench(s), newAudit(s),

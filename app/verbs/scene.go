@@ -29,7 +29,7 @@ func newSceneCheck(s streams) *cobra.Command {
 		Short: "check a scene file without tracing it",
 		Args:  takes(1, "one FILE"),
 		RunE: func(_ *cobra.Command, args []string) error {
-			d, err := loadScene(args[0], set)
+			d, err := s.loadScene(args[0], set)
 			if err != nil {
 				return err
 			}

@@ -265,7 +265,7 @@ func stations(cmd *cobra.Command, s streams, o placing, args []string) error {
 				return refuse("--%s and a SCENE exclude each other: the scene says it (--set overrides its keys)", flag)
 			}
 		}
-		document, err := loadScene(args[0], o.set)
+		document, err := s.loadScene(args[0], o.set)
 		if err != nil {
 			return err
 		}

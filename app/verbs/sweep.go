@@ -166,7 +166,7 @@ func loadSweep(dir string) (*sweep.Manifest, error) {
 
 // begin starts a sweep or goes on with it.
 func (o *sweepOptions) begin(ctx context.Context, s streams, scene string) error {
-	m, err := o.manifest(scene)
+	m, err := o.manifest(s, scene)
 	if err != nil {
 		return err
 	}
@@ -204,8 +204,8 @@ func (o *sweepOptions) begin(ctx context.Context, s streams, scene string) error
 
 // manifest works out the cases. The scene and the first case must be right;
 // a later case that is not fails when its turn comes.
-func (o *sweepOptions) manifest(scene string) (*sweep.Manifest, error) {
-	d, err := loadScene(scene, o.set)
+func (o *sweepOptions) manifest(s streams, scene string) (*sweep.Manifest, error) {
+	d, err := s.loadScene(scene, o.set)
 	if err != nil {
 		return nil, err
 	}
@@ -229,7 +229,11 @@ func (o *sweepOptions) manifest(scene string) (*sweep.Manifest, error) {
 	for _, c := range cases {
 		m.Cases = append(m.Cases, sweep.Listing{Case: c})
 	}
-	if _, err := m.Document(0); err != nil {
+	first, err := m.Document(0)
+	if err == nil {
+		err = s.confine(first)
+	}
+	if err != nil {
 		return nil, refuse("case %s: %w", m.Cases[0].Name, err)
 	}
 	return m, nil
@@ -268,7 +272,7 @@ func (o *sweepOptions) listCases() (cases []sweep.Case, axes []sweep.Axis, err e
 // work makes the cases here and, unless it is only a part, merges.
 func (o *sweepOptions) work(ctx context.Context, s streams, m *sweep.Manifest, r running) error {
 	r.Report = newSweepProgress(s.err).report
-	kitchen := newKitchen(m.Products, max(1, r.cores/r.Workers))
+	kitchen := newKitchen(m.Products, max(1, r.cores/r.Workers), s)
 	tally, err := sweep.Run(ctx, o.dir, m, r.Options, kitchen.make)
 	if err != nil {
 		return err
@@ -336,7 +340,7 @@ func (o *sweepOptions) fitMemory(m *sweep.Manifest, options *sweep.Options) erro
 		return refuse("--memory %s: one case needs %s, and the program itself %s", o.memory, showBytes(need), showBytes(programBytes))
 	}
 	options.Workers = int(min(int64(options.Workers), room))
-	debug.SetMemoryLimit(limit)
+	debug.SetMemoryLimit(limit - programBytes/4) // code and stacks of threads are not counted there
 	return nil
 }
 
@@ -345,12 +349,15 @@ func (o *sweepOptions) fitMemory(m *sweep.Manifest, options *sweep.Options) erro
 const programBytes = 128 << 20
 
 // largestCase is the memory of the case with the most pixels, in bytes: the
-// plate, and as much again while files are written.
+// layers that its products read, and as much again while files are written.
 func largestCase(m *sweep.Manifest) int64 {
+	const copies, bytesPerValue = 2, 4
 	var most int64
 	for k := range m.Cases {
 		if d, err := m.Document(k); err == nil {
-			most = max(most, 2*int64(d.Scene().PlateBytes()))
+			s := d.Scene()
+			values := int64(s.Field.Pixels[0]) * int64(s.Field.Pixels[1]) * int64(1+len(layersOf(m.Products))*(s.Trace.MaxOrder+1))
+			most = max(most, copies*bytesPerValue*values)
 		}
 	}
 	return max(most, 1<<20)
@@ -466,6 +473,11 @@ func (o *sweepOptions) completeSlurm(ctx context.Context, s streams, m *sweep.Ma
 		return err
 	}
 	o.slurm.Program = program
+	if *s.onlyBelow != "" {
+		if o.slurm.OnlyBelow, err = filepath.Abs(*s.onlyBelow); err != nil {
+			return err
+		}
+	}
 	if o.dir, err = filepath.Abs(o.dir); err != nil {
 		return err
 	}
@@ -486,9 +498,9 @@ func (o *sweepOptions) completeSlurm(ctx context.Context, s streams, m *sweep.Ma
 	}
 	began := time.Now()
 	if o.dryRun {
-		err = timeCase(ctx, m, o.slurm.Cores)
+		err = timeCase(ctx, m, o.slurm.Cores, s)
 	} else {
-		_, err = sweep.Run(ctx, o.dir, m, sweep.Options{Workers: 1, Chunks: len(m.Cases)}, newKitchen(m.Products, o.slurm.Cores).make)
+		_, err = sweep.Run(ctx, o.dir, m, sweep.Options{Workers: 1, Chunks: len(m.Cases)}, newKitchen(m.Products, o.slurm.Cores, s).make)
 	}
 	if err != nil {
 		return err
@@ -501,12 +513,12 @@ func (o *sweepOptions) completeSlurm(ctx context.Context, s streams, m *sweep.Ma
 }
 
 // timeCase makes the first case and throws it away.
-func timeCase(ctx context.Context, m *sweep.Manifest, cores int) error {
+func timeCase(ctx context.Context, m *sweep.Manifest, cores int, s streams) error {
 	dir, err := os.MkdirTemp("", "annulet-sweep-")
 	if err != nil {
 		return err
 	}
-	_, err = sweep.Run(ctx, dir, m, sweep.Options{Workers: 1, Chunks: len(m.Cases)}, newKitchen(m.Products, cores).make)
+	_, err = sweep.Run(ctx, dir, m, sweep.Options{Workers: 1, Chunks: len(m.Cases)}, newKitchen(m.Products, cores, s).make)
 	return errors.Join(err, os.RemoveAll(dir))
 }
 

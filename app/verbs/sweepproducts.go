@@ -61,6 +61,7 @@ type kitchen struct {
 	products []sweepProduct
 	layers   []raytrace.Layer
 	workers  int // of one case
+	s        streams
 
 	mu     sync.Mutex
 	orbits map[string]*raytrace.Orbits
@@ -70,19 +71,32 @@ type kitchen struct {
 // keptOrbits is for how many observers orbits are kept, some MiB each. Taste.
 const keptOrbits = 8
 
-func newKitchen(products []string, workers int) *kitchen {
-	k := &kitchen{workers: workers, orbits: map[string]*raytrace.Orbits{}, layers: []raytrace.Layer{}}
+func newKitchen(products []string, workers int, s streams) *kitchen {
+	k := &kitchen{workers: workers, s: s, orbits: map[string]*raytrace.Orbits{}, layers: layersOf(products)}
 	for _, p := range sweepProducts {
 		if slices.Contains(products, p.name) {
 			k.products = append(k.products, p)
-			k.layers = append(k.layers, p.layers...)
 		}
 	}
 	return k
 }
 
+// layersOf lists the layers that products read; not nil, which would be all.
+func layersOf(products []string) []raytrace.Layer {
+	layers := []raytrace.Layer{}
+	for _, p := range sweepProducts {
+		if slices.Contains(products, p.name) {
+			layers = append(layers, p.layers...)
+		}
+	}
+	return layers
+}
+
 // make is a sweep.Produce.
 func (k *kitchen) make(ctx context.Context, job *sweep.Job) error {
+	if err := k.s.confine(job.Document); err != nil {
+		return err
+	}
 	scene := job.Document.Scene()
 	view, err := raytrace.NewViewIn(scene, job.Document.Dir())
 	if err != nil {

@@ -16,6 +16,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"annulet/geodesic"
+	"annulet/geodesic/guard"
 	"annulet/scenes"
 )
 
@@ -602,8 +603,12 @@ func inOrder[In, Out any](ctx context.Context, in []In, workers int, work func([
 	for range workers {
 		wg.Go(func() {
 			for j := range jobs {
-				out, err := work(j.in)
-				j.result <- result{out, err}
+				var r result
+				r.err = guard.Work(func() (err error) {
+					r.out, err = work(j.in)
+					return err
+				})()
+				j.result <- r
 			}
 		})
 	}

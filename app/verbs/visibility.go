@@ -6,7 +6,6 @@ import (
 	"io"
 	"math"
 	"math/cmplx"
-	"path/filepath"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -112,9 +111,7 @@ func visibility(cmd *cobra.Command, s streams, o looking, scenePath string) erro
 		return refuse("visibility needs the angular scale: object.mass and object.distance, or object.theta_g")
 	}
 	if uv := of.scene.Telescope.UV; uv != "" && ways == 0 && !o.to.given {
-		if o.uv = uv; !filepath.IsAbs(uv) {
-			o.uv = filepath.Join(of.document.Dir(), uv)
-		}
+		o.uv = scenes.FilePath(of.document.Dir(), uv)
 	}
 	var places [][2]float64 // Glambda
 	if o.uv != "" {

@@ -10,6 +10,7 @@ import (
 	"golang.org/x/sync/errgroup"
 
 	"annulet/geodesic"
+	"annulet/geodesic/guard"
 	"annulet/raytrace"
 	"annulet/raytrace/emit"
 	"annulet/raytrace/rim"
@@ -186,7 +187,7 @@ func (s *sampler) around(ctx context.Context, c *rim.Curves, work func(w *lineWo
 	var next atomic.Int64
 	group, ctx := errgroup.WithContext(ctx)
 	for range s.options.Workers {
-		group.Go(func() error {
+		group.Go(guard.Work(func() error {
 			w, err := s.worker(c)
 			if err != nil {
 				return err
@@ -203,7 +204,7 @@ func (s *sampler) around(ctx context.Context, c *rim.Curves, work func(w *lineWo
 					return err
 				}
 			}
-		})
+		}))
 	}
 	return group.Wait()
 }

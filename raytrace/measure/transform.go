@@ -2,9 +2,11 @@ package measure
 
 import (
 	"runtime"
-	"sync"
 
+	"golang.org/x/sync/errgroup"
 	"gonum.org/v1/gonum/dsp/fourier"
+
+	"annulet/geodesic/guard"
 )
 
 // transform is the discrete Fourier transform of a real image on a grid of
@@ -31,19 +33,22 @@ func fastSize(n int) int {
 }
 
 // shared runs work for 0 … n-1 in as many goroutines as there are processors,
-// each with a state of its own.
+// each with a state of its own. A panic of theirs becomes one of the caller.
 func shared[S any](n int, state func() S, work func(s S, k int)) {
-	var wg sync.WaitGroup
+	var group errgroup.Group
 	workers := min(n, runtime.GOMAXPROCS(0))
 	for w := range workers {
-		wg.Go(func() {
+		group.Go(guard.Work(func() error {
 			s := state()
 			for k := n * w / workers; k < n*(w+1)/workers; k++ {
 				work(s, k)
 			}
-		})
+			return nil
+		}))
 	}
-	wg.Wait()
+	if err := group.Wait(); err != nil {
+		panic(err)
+	}
 }
 
 // newTransform transforms an image in the corner of a grid that is dark
