@@ -40,6 +40,9 @@ type commands struct {
 	appearance state.Appearance // of it
 	frame      *imaging.Frame
 	found      *finding
+	measures   *imaging.Latest[measuring, measured]
+	wanted     measuring // the latest of measures
+	measured   *measured
 
 	frameShown time.Duration  // from the order to the picture
 	keeping    bool           // unsaved work will soon be kept
@@ -65,6 +68,7 @@ func newCommands(a fyne.App, w fyne.Window, s *state.State, h *home, l *log) *co
 		func(f imaging.Frame) { inbox.put(func(n *news) { n.frame = &f }) },
 		func(done, tiles int) { inbox.put(func(n *news) { n.done, n.tiles = done, tiles }) })
 	c.asker = imaging.NewLatest(ready.inquire, func(f finding) { inbox.put(func(n *news) { n.found = &f }) })
+	c.measures = imaging.NewLatest(ready.measure, func(m measured) { inbox.put(func(n *news) { n.measured = &m }) })
 	c.view = newView(c.window, c.state, c)
 	c.sync()
 	return c
@@ -74,6 +78,7 @@ func newCommands(a fyne.App, w fyne.Window, s *state.State, h *home, l *log) *co
 func (c *commands) start(ctx context.Context) {
 	go c.maker.Run(ctx)
 	go c.asker.Run(ctx)
+	go c.measures.Run(ctx)
 }
 
 // sync shows the state, and orders what is not yet shown.
@@ -191,6 +196,9 @@ func (c *commands) receive(n news) {
 	if n.found != nil {
 		c.receiveFound(*n.found)
 	}
+	if n.measured != nil {
+		c.receiveMeasured(*n.measured)
+	}
 	if n.keep {
 		c.keepNow()
 	}
@@ -230,8 +238,40 @@ func (c *commands) receiveFrame(f imaging.Frame) {
 	if c.state.Look.Graph == state.GraphOrders && f.Settled() {
 		c.showGraphNow()
 	}
+	if f.Areas && latest { // the hand rests
+		c.measure()
+	}
 	if c.log.on() {
 		afterPaint(func() { c.log.frame(f, name, latest) })
+	}
+}
+
+// measure asks for the graph shown, if it takes a while and is not known.
+func (c *commands) measure() {
+	q := measuring{order: c.order(), graph: c.state.Look.Graph}
+	if !q.graph.Measured() || c.wanted.of(q) {
+		return
+	}
+	c.wanted = q
+	c.view.side.tell("measuring …")
+	c.measures.Ask(q)
+}
+
+func (c *commands) receiveMeasured(m measured) {
+	if !m.asked.of(c.wanted) {
+		return
+	}
+	c.measured = &m
+	words := ""
+	if m.err != nil {
+		words = m.err.Error()
+	}
+	c.showGraphNow()
+	if words != "" {
+		c.view.side.tell(words)
+	}
+	if c.log.on() {
+		afterPaint(func() { c.log.line("measured graph=%d error=%q", int(m.asked.graph), words) })
 	}
 }
 

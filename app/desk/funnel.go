@@ -12,6 +12,7 @@ import (
 type news struct {
 	frame       *imaging.Frame
 	found       *finding
+	measured    *measured
 	done, tiles int  // of a long trace; tiles is 0 for no news
 	keep        bool // it is time to keep unsaved work
 }

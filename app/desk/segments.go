@@ -26,6 +26,16 @@ func newSegments(labels []string, onChosen func(k int)) *segments {
 	return s
 }
 
+// split puts the words from the kth on into a row of their own.
+func (s *segments) split(k int) *fyne.Container {
+	rest := hbox(1)
+	for _, w := range s.words[k:] {
+		s.row.Remove(w)
+		rest.Add(w)
+	}
+	return rest
+}
+
 // set shows which word is chosen.
 func (s *segments) set(chosen int) {
 	for k, w := range s.words {

@@ -25,6 +25,7 @@ type sidebar struct {
 	remark   *widget.Label
 	graphs   *segments
 	graph    *graphView
+	why      *widget.Label // where there is no graph
 	reading  *canvas.Text
 	tables   fyne.CanvasObject // all that is shown of a table
 	file     *widget.Entry     // the scene's text
@@ -70,13 +71,19 @@ func newSidebar(h hands) *sidebar {
 	for _, w := range b.graphs.words {
 		w.inset = 5
 	}
+	b.why = widget.NewLabel("")
+	b.why.Wrapping = fyne.TextWrapWord
+	b.why.SizeName = theme.SizeNameCaptionText
+	b.why.Selectable = true
+	b.why.Hide()
+	measured := b.graphs.split(int(state.GraphLine))
 	b.graph = newGraphView(func(text string) { setText(b.reading, text) })
 	b.reading.TextSize = choiceTextSize
 	saved := hbox(2, newAction("save CSV…", h.saveGraphCSV), newAction("save PNG…", h.saveGraphPNG))
 	lower := container.NewBorder(
-		container.NewVBox(widget.NewSeparator(), row(b.graphs.row)),
+		container.NewVBox(widget.NewSeparator(), row(container.NewVBox(b.graphs.row, measured))),
 		container.NewVBox(container.New(layout.NewCustomPaddedLayout(0, 0, 10, 6), container.NewStack(spacer(16), b.reading)), row(saved)),
-		nil, nil, room(graphHeight, b.graph))
+		nil, nil, room(graphHeight, container.NewStack(b.graph, container.NewVBox(b.why))))
 	b.tables = container.NewBorder(nil, row(copied), nil, nil, container.NewVScroll(container.NewVBox(
 		container.New(layout.NewCustomPaddedLayout(0, 0, 10, 8), b.radiiRow),
 		container.New(layout.NewCustomPaddedLayout(0, 0, 8, 4), b.text),
@@ -99,6 +106,19 @@ func newSidebar(h hands) *sidebar {
 	b.lower = lower
 	b.content = container.NewBorder(nil, lower, nil, nil, upper)
 	return b
+}
+
+// tell says what a graph waits for, or why there is none.
+func (b *sidebar) tell(words string) {
+	if g := b.graph.graph; g != nil { // the last one stays meanwhile
+		if words == "" {
+			words = g.Note
+		}
+		setText(b.reading, words)
+		words = ""
+	}
+	b.why.SetText(words)
+	setVisible(b.why, words != "")
 }
 
 // compact leaves the graph out.

@@ -141,6 +141,12 @@ func (c *commands) graph() *graph.Graph {
 			return ordersGraph(*c.frame)
 		}
 		return nil
+	case state.GraphLine, state.GraphSpectrum, state.GraphVisibility, state.GraphLightCurve:
+		// the last one stays until the next is measured
+		if m := c.measured; m != nil && m.asked.graph == c.state.Look.Graph {
+			return m.graph
+		}
+		return nil
 	}
 	if c.found == nil {
 		return nil
@@ -148,7 +154,10 @@ func (c *commands) graph() *graph.Graph {
 	return c.found.graph
 }
 
-func (c *commands) showGraphNow() { c.view.side.graph.show(c.graph()) }
+func (c *commands) showGraphNow() {
+	c.view.side.graph.show(c.graph())
+	c.view.side.tell("")
+}
 
 func (c *commands) showGraph(g state.Graph) {
 	if c.state.Look.Graph == g {
@@ -159,6 +168,7 @@ func (c *commands) showGraph(g state.Graph) {
 	c.sync()
 	c.inquire(c.order())
 	c.showGraphNow()
+	c.measure()
 	c.log.line("graph %d", int(g))
 }
 

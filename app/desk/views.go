@@ -127,6 +127,13 @@ func (v *views) of(o imaging.Order) (sight, error) {
 	return v.latest, v.err
 }
 
+// last returns the last view made ready, nil for none.
+func (v *views) last() *raytrace.View {
+	v.mu.Lock()
+	defer v.mu.Unlock()
+	return v.latest.View
+}
+
 // prepare makes the scene of an order ready to trace.
 func prepare(o imaging.Order) (sight, error) {
 	s := o.Scene

@@ -9,7 +9,6 @@ import (
 
 	"annulet/app/output"
 	"annulet/raytrace/measure"
-	"annulet/scenes"
 )
 
 func newLightcurve(s streams) *cobra.Command {
@@ -31,27 +30,12 @@ func newLightcurve(s streams) *cobra.Command {
 	return cmd
 }
 
-// periodOf is that of the first spot or of the star, M; 0 if nothing moves.
-func periodOf(scene scenes.Scene) float64 {
-	for _, e := range scene.Emitters {
-		switch e.Kind {
-		case "spot":
-			return scene.Object.OrbitalPeriod(e.Radius)
-		case "surface":
-			if e.Period > 0 {
-				return e.Period
-			}
-		}
-	}
-	return 0
-}
-
 func lightcurve(cmd *cobra.Command, s streams, m measuring, scenePath string) error {
 	of, err := m.open(s, scenePath)
 	if err != nil {
 		return err
 	}
-	period := periodOf(of.scene)
+	period := of.scene.Period()
 	times := of.scene.Time.Frames()
 	if len(times) == 1 && period > 0 {
 		const samples = 100

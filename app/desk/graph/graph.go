@@ -100,7 +100,7 @@ func Draw(g Graph, columns, rows int, p Paint) (*Plot, error) {
 	yTicks, yDecimals := g.ticks(plot.y, g.LogY, int((bottom-top)/(2.2*line)))
 	widest := 0.
 	for _, v := range yTicks {
-		widest = max(widest, face.Width(ink.Decimal(v, yDecimals)))
+		widest = max(widest, face.Width(g.label(v, yDecimals, g.LogY)))
 	}
 	left, right := margin*px+line+widest+6*px, float64(columns)-margin*px
 	if g.SameScale { // make the frame as wide as the axes ask for
@@ -146,6 +146,7 @@ func (plot *Plot) curves(p Paint, face ink.Face) {
 	inner := image.Rect(int(plot.frame[0]+1), int(plot.frame[2]+1), int(plot.frame[1]), int(plot.frame[3]))
 	layer := image.NewRGBA(plot.Image.Rect)
 	named := 0
+	corner := plot.legendAt(face, px)
 	for k, c := range plot.Graph.Curves {
 		pen := pen(c.Style, p.Lines[k%len(p.Lines)], px)
 		if c.Style == Faint {
@@ -155,10 +156,9 @@ func (plot *Plot) curves(p Paint, face ink.Face) {
 		if c.Name == "" {
 			continue
 		}
-		y := plot.frame[2] + (float64(named)+1)*face.Height()
+		y := corner.Y + (float64(named)+1)*face.Height()
 		named++
-		right := plot.frame[1] - 8*px
-		width := face.Width(c.Name)
+		right, width := corner.X, face.Width(c.Name)
 		ink.Stroke(layer, pen, []ink.Point{{X: right - width - 28*px, Y: y - face.Ascent()*0.35}, {X: right - width - 5*px, Y: y - face.Ascent()*0.35}})
 		face.Write(layer, ink.Point{X: right, Y: y}, c.Name, p.Words, p.Ground, ink.Right)
 	}
@@ -168,6 +168,40 @@ func (plot *Plot) curves(p Paint, face ink.Face) {
 		face.Write(layer, ink.Point{X: at.X + 6*px, Y: at.Y - 3*px}, d.Name, p.Words, p.Ground, ink.Left)
 	}
 	ink.Lay(plot.Image, layer, inner)
+}
+
+// legendAt returns the top right corner of the legend, in that corner of the
+// frame where it hides least of the curves.
+func (plot *Plot) legendAt(face ink.Face, px float64) ink.Point {
+	wide, lines := 0., 0.
+	for _, c := range plot.Graph.Curves {
+		if c.Name != "" {
+			wide, lines = max(wide, face.Width(c.Name)+28*px), lines+1
+		}
+	}
+	high := (lines + 0.5) * face.Height()
+	left, right, top, bottom := plot.frame[0], plot.frame[1], plot.frame[2], plot.frame[3]
+	corners := [...]ink.Point{
+		{X: right - 8*px, Y: top}, {X: left + wide + 8*px, Y: top},
+		{X: right - 8*px, Y: bottom - high}, {X: left + wide + 8*px, Y: bottom - high},
+	}
+	var hidden [len(corners)]int
+	for _, c := range plot.Graph.Curves {
+		for _, at := range plot.points(c) {
+			for k, corner := range corners {
+				if at.X > corner.X-wide && at.X < corner.X && at.Y > corner.Y && at.Y < corner.Y+high {
+					hidden[k]++
+				}
+			}
+		}
+	}
+	best := 0
+	for k := range corners {
+		if hidden[k] < hidden[best] {
+			best = k
+		}
+	}
+	return corners[best]
 }
 
 func pen(s Style, colour color.NRGBA, px float64) ink.Pen {
@@ -280,14 +314,17 @@ func (g Graph) ticks(axis [2]float64, log bool, n int) ([]float64, int) {
 }
 
 func (g Graph) label(v float64, decimals int, log bool) string {
-	if log && (v >= 1e4 || v < 1e-2) {
-		return strings.Replace(strconv.FormatFloat(v, 'e', 0, 64), "-", "−", 1)
+	if power := math.Log10(v); log && (v >= 1e4 || v < 1e-2) && power == math.Round(power) {
+		return "10" + raised.Replace(strconv.Itoa(int(power)))
 	}
 	if log {
 		return strconv.FormatFloat(v, 'g', 4, 64)
 	}
 	return ink.Decimal(v, decimals)
 }
+
+// raised turns a whole number into an exponent.
+var raised = strings.NewReplacer("-", "⁻", "0", "⁰", "1", "¹", "2", "²", "3", "³", "4", "⁴", "5", "⁵", "6", "⁶", "7", "⁷", "8", "⁸", "9", "⁹")
 
 func named(name, unit string) string {
 	if unit == "" {

@@ -26,11 +26,20 @@ const (
 	GraphPath Graph = iota
 	GraphCut
 	GraphOrders
+	// These take a while, and are of the whole scene.
+	GraphLine
+	GraphSpectrum
+	GraphVisibility
+	GraphLightCurve
 )
+
+// Measured says whether the graph takes a while.
+func (g Graph) Measured() bool { return g >= GraphLine }
 
 // GraphNames returns the names of the graphs, in the order of Graph.
 func GraphNames() []string {
-	return []string{GraphPath: "Path", GraphCut: "Cut", GraphOrders: "Orders"}
+	return []string{GraphPath: "Path", GraphCut: "Cut", GraphOrders: "Orders",
+		GraphLine: "Line", GraphSpectrum: "Spectrum", GraphVisibility: "Visibility", GraphLightCurve: "Light curve"}
 }
 
 // OverlayNames returns what can be drawn over the image, in the order of

@@ -328,6 +328,18 @@ func isAnInstrument(t *testing.T, program string) {
 		s.shot("18-" + strings.ToLower(tab))
 	}
 
+	// Graphs that take a while are measured, or say why they cannot be.
+	for _, graph := range []string{"Line", "Visibility", "Light curve", "Spectrum"} {
+		log.now()
+		press(graph)
+		measured := log.wait(t, "the graph "+graph, word("measured"))
+		if wrong := measured.fields["error"]; (wrong != "") != (graph == "Light curve") {
+			t.Errorf("%s: %q", graph, wrong)
+		}
+		s.shot("18-graph-" + strings.ToLower(strings.ReplaceAll(graph, " ", "-")))
+	}
+	press("Path")
+
 	// Everything is undone, one change after another, and done again.
 	for range 4 {
 		log.now()
