@@ -5,11 +5,14 @@ TAGS = migrated_fynedo
 
 PEERS = ../shared/peers
 
-.PHONY: build fast run test bench peers large fuzz shots clean
+.PHONY: build deb fast run test bench peers large fuzz shots clean
 
 build: ## bin/annulet (desk and verbs) and bin/annulet-batch (verbs, static)
 	CGO_ENABLED=0 $(GO) build -trimpath -buildvcs=false -o bin/annulet-batch ./app/annulet-batch
 	$(GO) build -trimpath -buildvcs=false -tags $(TAGS) -o bin/annulet ./app/annulet
+
+deb: build ## bin/annulet_VERSION_ARCH.deb: programs, icon, menu entry, scene files' type
+	sh assets/linux/deb.sh bin
 
 run: ## install what is missing, build, open the desk
 	sh .ci/setup run
