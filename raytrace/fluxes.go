@@ -2,6 +2,7 @@ package raytrace
 
 import (
 	"cmp"
+	"fmt"
 	"image"
 	"math"
 	"slices"
@@ -58,7 +59,8 @@ const (
 )
 
 // sum sets the fluxes and their bounds from rows of tiles, from the bottom up.
-func (p *Plate) sum(rows []row, tolerance float64) {
+// Its error wraps ErrBrightness.
+func (p *Plate) sum(rows []row, tolerance float64) error {
 	slices.SortFunc(rows, func(a, b row) int { return cmp.Compare(a.bottom, b.bottom) })
 	var all fluxes
 	for k := range rows {
@@ -68,7 +70,11 @@ func (p *Plate) sum(rows []row, tolerance float64) {
 	for n := range p.Flux {
 		p.Flux[n] = all.flux[n]
 		p.FluxBound[n] = offRoom*all.off[n] + pathShare*tolerance*all.flux[n]
+		if !(math.Abs(p.Flux[n])+p.FluxBound[n] <= math.MaxFloat64) {
+			return fmt.Errorf("raytrace: %w: the flux of order %d would be %g, its bound %g", ErrBrightness, n, p.Flux[n], p.FluxBound[n])
+		}
 	}
+	return nil
 }
 
 // WholeFlux returns the flux of the plate and a bound on its error; NaN if

@@ -1,6 +1,11 @@
 package raytrace
 
-import "math"
+import (
+	"errors"
+	"fmt"
+	"image"
+	"math"
+)
 
 // Layer names one quantity of a plate.
 type Layer int
@@ -78,6 +83,24 @@ func newPlate(columns, rows, orders int, kept layerSet) *Plate {
 // not asked for are nil.
 func (p *Plate) Layer(l Layer, order int) []float32 {
 	return p.layers[order*int(layerCount)+int(l)]
+}
+
+// ErrBrightness: an image would hold numbers that are none, or too large for
+// float32.
+var ErrBrightness = errors.New("the brightness is out of the range of numbers; a profile, a contrast, a temperature or the field is extreme")
+
+// finite returns an error that wraps ErrBrightness if a total of the tile is
+// not a finite number, which the intensity of every order then is.
+func (p *Plate) finite(tile image.Rectangle) error {
+	for row := tile.Min.Y; row < tile.Max.Y; row++ {
+		at := (row - p.firstRow) * p.Columns
+		for column := tile.Min.X; column < tile.Max.X; column++ {
+			if x := p.Total[at+column]; !(math.Abs(float64(x)) <= math.MaxFloat32) {
+				return fmt.Errorf("raytrace: %w: pixel %d,%d would be %g", ErrBrightness, column, row, x)
+			}
+		}
+	}
+	return nil
 }
 
 // Tally adds the counts of another plate, and takes over the worse bounds.

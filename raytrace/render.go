@@ -92,7 +92,7 @@ func (v *View) render(ctx context.Context, o Options, a *areas, plate *Plate) er
 	}, plate)
 	if err == nil && a != nil {
 		plate.Paths += a.pilot
-		plate.sum(plate.rows, v.Plan.Tolerance)
+		err = plate.sum(plate.rows, v.Plan.Tolerance)
 	}
 	return err
 }
@@ -244,6 +244,9 @@ func (b *bench) exposeTile(tile image.Rectangle, around int, plate *Plate) (repo
 	if b.mosaic != nil {
 		report.light, err = b.mosaic.integrate(b, tile, plate)
 		report.paths = len(b.screen) - tile.Dx()*tile.Dy() + b.mosaic.paths
+	}
+	if err == nil {
+		err = plate.finite(tile)
 	}
 	return report, err
 }

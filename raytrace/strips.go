@@ -99,7 +99,9 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 	}
 	if a != nil {
 		whole.Paths += a.pilot
-		whole.sum(whole.rows, v.Plan.Tolerance)
+		if err := whole.sum(whole.rows, v.Plan.Tolerance); err != nil {
+			return nil, err
+		}
 	}
 	return whole, nil
 }

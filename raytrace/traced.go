@@ -80,7 +80,9 @@ func (t *Traced) Shade(ctx context.Context, v *View, o Options) (*Plate, error) 
 	plate.Integrated = t.direct
 	if a != nil {
 		plate.Paths += a.pilot
-		plate.sum(plate.rows, v.Plan.Tolerance)
+		if err := plate.sum(plate.rows, v.Plan.Tolerance); err != nil {
+			return nil, err
+		}
 	}
 	return plate, nil
 }

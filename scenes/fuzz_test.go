@@ -3,6 +3,8 @@ package scenes
 import (
 	"bytes"
 	"errors"
+	"math"
+	"strconv"
 	"testing"
 )
 
@@ -80,6 +82,30 @@ func FuzzSet(f *testing.F) {
 		again, err := Parse("again.toml", d.Text())
 		if err != nil || !again.Scene().Equal(d.Scene()) {
 			t.Errorf("after the change: %v\n%s", err, d.Text())
+		}
+	})
+}
+
+// FuzzQuantity: a quantity is refused with a problem, or finite, with a unit
+// and, printed with all its digits, the same again.
+func FuzzQuantity(f *testing.F) {
+	for _, text := range []string{"1 M", "1e6 +- 2e5 Msun", "1eV", "-3.5deg", "1e999 M", "nan M", "2 ± 1 uas", "1 µas", "1 μas", "+.5 rg", "1", "1 furlong", "1 +- -1 M", "1e M"} {
+		f.Add(text)
+	}
+	f.Fuzz(func(t *testing.T, text string) {
+		q, problem := scanQuantity(text)
+		if problem != "" {
+			return
+		}
+		if !(math.Abs(q.value) <= math.MaxFloat64 && q.sigma >= 0 && q.sigma <= math.MaxFloat64) || q.unit.name == "" {
+			t.Fatalf("%q: %+v", text, q)
+		}
+		again := strconv.FormatFloat(q.value, 'g', -1, 64) + " " + q.unit.name
+		if q.hasSigma {
+			again = strconv.FormatFloat(q.value, 'g', -1, 64) + " +- " + strconv.FormatFloat(q.sigma, 'g', -1, 64) + q.unit.name
+		}
+		if p, problem := scanQuantity(again); problem != "" || p.value != q.value || p.sigma != q.sigma || p.unit.name != q.unit.name {
+			t.Errorf("%q: %q gives %+v, %s", text, again, p, problem)
 		}
 	})
 }

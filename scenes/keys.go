@@ -141,7 +141,7 @@ var observerKeys = []Key{
 var fieldKeys = []Key{
 	{Section: "field", Name: "projection", Type: Choice, Choices: []string{parallel, perspective, allSky},
 		Default: `"parallel"`, Text: "parallel: impact parameters alpha, beta; perspective: angles at the observer; all-sky: every direction, equirectangular"},
-	{Section: "field", Name: "width", Type: Quantity, Unit: "M", Units: fieldUnits, Words: []string{"auto"}, Range: above(0),
+	{Section: "field", Name: "width", Type: Quantity, Unit: "M", Units: fieldUnits, Words: []string{"auto"}, Range: atLeast(smallestWidth),
 		Default: `"auto"`, Text: "width of the field; auto: everything that shines plus 5 %; perspective: an angle, bare numbers in deg, below 180 deg; all-sky: 360 deg"},
 	{Section: "field", Name: "pixels", Type: IntegerList, Count: 2, Range: atLeast(1),
 		Default: `[800, 800]`, Text: "columns and rows"},
@@ -150,6 +150,10 @@ var fieldKeys = []Key{
 	{Section: "field", Name: "frequency", Type: QuantityList, Unit: "GHz", Units: frequencyUnits, Range: above(0),
 		Text: "observed frequency or photon energy, one or a list"},
 }
+
+// smallestWidth of a field, in M or degrees: below it pixels fall together, as
+// their places have sixteen digits. Method.
+const smallestWidth = 1e-12
 
 var emitterKeys = []Key{
 	{Section: "emitter", Name: "kind", Type: Choice, Choices: []string{disk, spot, surface, sky},

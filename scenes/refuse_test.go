@@ -104,7 +104,7 @@ var refusals = []struct {
 	{"no pixels", "[field]\npixels = [10, 0]", 4, 15, "field.pixels", []string{"1 or more"}},
 	{"memory", "[field]\npixels = [1000000, 1000000]", 4, 10, "field.pixels", []string{"3.638 TiB", "4 bytes", "4 GiB"}},
 	{"much memory", "[field]\npixels = [9223372036854775807, 9223372036854775807]", 4, 10, "field.pixels", []string{"TiB"}},
-	{"width", "[field]\nwidth = 0", 4, 9, "field.width", []string{"more than 0 M"}},
+	{"width", "[field]\nwidth = 0", 4, 9, "field.width", []string{"1e-12 M"}},
 	{"perspective width", "[observer]\nradius = 10\n[field]\nprojection = \"perspective\"\nwidth = 180", 7, 9, "field.width", []string{"between 0 and 180 deg"}},
 	{"frequency", "[field]\nfrequency = [230, 0]", 4, 19, "field.frequency", []string{"more than 0"}},
 	{"order of rims", "[[emitter]]\ninner = 20\nouter = 20", 4, 9, "emitter.inner", []string{"less than the outer radius of 20 M"}},

@@ -7,6 +7,7 @@ import (
 	"io"
 	"math"
 	"os"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -74,8 +75,17 @@ func (p *BrokenPower) Fill(r []float64, lit []bool, values []float64) {
 // memory, which never overshoots.
 type Table struct {
 	curve        interp.FritschButland
+	exponent     int     // the curve is that of value / 2^exponent, so that no step of it overflows
 	Inner, Outer float64 // where it begins and ends, M
 }
+
+// Bounds of what a table may hold. Method: far beyond any disk, and where the
+// coefficients of cubics stay numbers.
+const (
+	minTableRadius, maxTableRadius = 1e-6, 1e12 // M
+	minTableStep                   = 1e-12      // relative, from radius to radius
+	maxTableValue                  = 1e300
+)
 
 // maxTableRows bounds a table. Taste: far more than a profile needs.
 const maxTableRows = 1_000_000
@@ -115,6 +125,8 @@ func readTable(from io.Reader) (*Table, error) {
 			return nil, fmt.Errorf("%d: %w", line, err)
 		case len(radii) > 0 && r <= radii[len(radii)-1]:
 			return nil, fmt.Errorf("%d: radii must grow, and %g M does not come after %g M", line, r, radii[len(radii)-1])
+		case len(radii) > 0 && r < radii[len(radii)-1]*(1+minTableStep):
+			return nil, fmt.Errorf("%d: radii must grow by one part in 1e12 or more, and %.17g M comes after %.17g M", line, r, radii[len(radii)-1])
 		case len(radii) == maxTableRows:
 			return nil, fmt.Errorf("%d: more than %d rows", line, maxTableRows)
 		default:
@@ -128,6 +140,10 @@ func readTable(from io.Reader) (*Table, error) {
 		return nil, fmt.Errorf("%d: a table of %d rows; allowed: two or more of r [M],value", line, len(radii))
 	}
 	t := &Table{Inner: radii[0], Outer: radii[len(radii)-1]}
+	_, t.exponent = math.Frexp(slices.Max(values))
+	for k := range values {
+		values[k] = math.Ldexp(values[k], -t.exponent)
+	}
 	if err := t.curve.Fit(radii, values); err != nil {
 		return nil, fmt.Errorf("%d: %w", line, err)
 	}
@@ -147,10 +163,10 @@ func tableRow(text string) (r, value float64, err error) {
 		return 0, 0, fmt.Errorf("value %q is not a number", right)
 	}
 	switch {
-	case !(r > 0) || math.IsInf(r, 0):
-		return 0, 0, fmt.Errorf("radius %g: allowed: more than 0 M", r)
-	case !(value >= 0) || math.IsInf(value, 0):
-		return 0, 0, fmt.Errorf("value %g: allowed: 0 or more", value)
+	case !(r >= minTableRadius && r <= maxTableRadius):
+		return 0, 0, fmt.Errorf("radius %g: allowed: %g to %g M", r, minTableRadius, maxTableRadius)
+	case !(value >= 0 && value <= maxTableValue):
+		return 0, 0, fmt.Errorf("value %g: allowed: 0 or more, up to %g", value, maxTableValue)
 	}
 	return r, value, nil
 }
@@ -171,7 +187,7 @@ func (t *Table) Covers(inner, outer float64) error {
 func (t *Table) Fill(r []float64, lit []bool, values []float64) {
 	for j, is := range lit {
 		if is {
-			values[j] = max(0, t.curve.Predict(r[j]))
+			values[j] = math.Ldexp(max(0, t.curve.Predict(r[j])), t.exponent)
 		}
 	}
 }

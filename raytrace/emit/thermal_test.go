@@ -139,7 +139,7 @@ func TestTable(t *testing.T) {
 		"r,f\n6,1\n5,2\n":      "3: radii must grow",
 		"6,1\n7;2\n":           `2: "7;2"`,
 		"6,1\n7,x\n":           `2: value "x"`,
-		"6,1\n7,-1\n":          "2: value -1: allowed: 0 or more",
+		"6,1\n7,-1\n":          "2: value -1: allowed: 0 or more, up to 1e+300",
 		"0,1\n7,1\n":           "1: radius 0",
 		"6,1\n":                "a table of 1 rows",
 		"":                     "a table of 0 rows",
