@@ -31,6 +31,14 @@ var maps = []*Map{
 	// shift, diverging, for the redshift factor g with 1 at x = 0.5: dark red
 	// and orange below, light neutral at the centre, blue above.
 	{name: "shift", table: &shiftTable},
+	// tarn, sequential, for radii and delays: deep blue through teal to pale
+	// green.
+	{name: "tarn", table: &tarnTable},
+	// wheel, cyclic, for azimuths: lightness rises once and falls once, and
+	// the ends meet.
+	{name: "wheel", table: &wheelTable},
+	// orders, ten flat colours of rising lightness, for image orders 0 to 9.
+	{name: "orders", table: &ordersTable},
 }
 
 // Lookup returns the map of that name.

@@ -75,6 +75,7 @@ func runs() map[string][][3]uint16 {
 	slices.Reverse(high)
 	return map[string][][3]uint16{
 		"ember":           emberTable[:],
+		"tarn":            tarnTable[:],
 		"shift, low arm":  shiftTable[:entries/2],
 		"shift, high arm": high,
 	}
@@ -105,7 +106,7 @@ func TestLightnessRises(t *testing.T) {
 			t.Logf("%s, %s: lightness %.3f to %.3f, least step %.2f of the mean", name, d.name, light[0], light[len(run)-1], least)
 		}
 	}
-	if want := len(deficiencies) * (2*entries - 3); checked != want {
+	if want := len(deficiencies) * (3*entries - 4); checked != want {
 		t.Fatalf("checked %d steps, want %d", checked, want)
 	}
 }
@@ -157,6 +158,50 @@ func TestShiftIsBalanced(t *testing.T) {
 	const greyTol = 0x0300 // a little over 1 % of full scale
 	if spread := max(centre.R, centre.G, centre.B) - min(centre.R, centre.G, centre.B); spread > greyTol {
 		t.Errorf("centre %v is not neutral", centre)
+	}
+}
+
+func TestWheelTurns(t *testing.T) {
+	if wheelTable[0] != wheelTable[entries-1] {
+		t.Errorf("the ends of wheel are %v and %v", wheelTable[0], wheelTable[entries-1])
+	}
+	var sum, worst float64
+	steps := make([]float64, entries-1)
+	for k := range steps {
+		steps[k] = linear(wheelTable[k]).Lab().Distance(linear(wheelTable[k+1]).Lab())
+		sum += steps[k]
+	}
+	for _, s := range steps {
+		worst = max(worst, math.Abs(s*float64(len(steps))/sum-1))
+	}
+	if !(worst <= 0.02) { // its hue turns faster than that of the other maps
+		t.Errorf("steps of wheel depart from their mean by %.2g", worst)
+	}
+	for _, d := range deficiencies {
+		turns, rising := 0, true
+		for k := 1; k < entries; k++ {
+			up := d.see(linear(wheelTable[k])).Lab().L > d.see(linear(wheelTable[k-1])).Lab().L
+			if up != rising {
+				turns, rising = turns+1, up
+			}
+		}
+		if turns != 1 {
+			t.Errorf("%s: lightness of wheel turns %d times, want 1", d.name, turns)
+		}
+	}
+}
+
+func TestOrdersRise(t *testing.T) {
+	const orders, least = 10, 0.02 // of lightness, taste
+	for _, d := range deficiencies {
+		last := 0.
+		for n := range orders {
+			l := d.see(linear(ordersTable[(2*n+1)*entries/(2*orders)])).Lab().L
+			if !(l-last >= least) {
+				t.Errorf("%s: order %d has lightness %.3f after %.3f", d.name, n, l, last)
+			}
+			last = l
+		}
 	}
 }
 
@@ -243,5 +288,5 @@ func ExampleLookup() {
 	m, _ := Lookup("ember")
 	r, g, b := m.At8(1)
 	fmt.Printf("%v, brightest #%02x%02x%02x\n", Names(), r, g, b)
-	// Output: [ember shift], brightest #faf6df
+	// Output: [ember orders shift tarn wheel], brightest #faf6df
 }

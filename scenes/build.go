@@ -32,6 +32,9 @@ func build(src *source, readings map[address]reading) (Scene, *Error) {
 	b.telescope()
 	b.measured()
 	b.trace()
+	for i := range src.count(figureSection) {
+		b.figure(i)
+	}
 	b.memory()
 	if b.err != nil {
 		return Scene{}, b.err

@@ -115,7 +115,7 @@ func checkTable(t table) *Error {
 	case !s.many && t.many:
 		return &Error{Key: t.section, Problem: "this table may come only once", Allowed: "[" + s.name + "] with single brackets"}
 	case t.index >= maxEmitters:
-		return &Error{Key: path, Problem: "too many emitters", Allowed: s.text}
+		return &Error{Key: path, Problem: "too many " + s.name + "s", Allowed: s.text}
 	}
 	return nil
 }

@@ -20,6 +20,7 @@ func (s Scene) Equal(other Scene) bool {
 		slices.EqualFunc(s.Emitters, other.Emitters, func(a, b Emitter) bool { return reflect.DeepEqual(a, b) }) &&
 		s.Telescope == other.Telescope &&
 		s.Measured == other.Measured &&
+		slices.EqualFunc(s.Figures, other.Figures, func(a, b Figure) bool { return reflect.DeepEqual(a, b) }) &&
 		s.Time == other.Time &&
 		s.Trace == other.Trace
 }
@@ -32,6 +33,7 @@ func (s Scene) clone() Scene {
 		e.Caps, e.Index, e.Breaks = slices.Clone(e.Caps), slices.Clone(e.Index), slices.Clone(e.Breaks)
 	}
 	s.Field.Frequency = slices.Clone(s.Field.Frequency)
+	s.Figures = slices.Clone(s.Figures)
 	s.Idle = slices.Clone(s.Idle)
 	return s
 }

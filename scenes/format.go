@@ -105,6 +105,9 @@ func Format(s Scene) []byte {
 	w.key("max_order", strconv.Itoa(s.Trace.MaxOrder))
 	w.key("flux_tolerance", tomlNumber(s.Trace.FluxTolerance))
 	w.list("effects", s.Trace.effects())
+	for _, f := range s.Figures {
+		w.figure(f)
+	}
 	w.Flush()
 	return b.Bytes()
 }

@@ -89,7 +89,7 @@ var sections = []section{
 	{name: "measured", text: "what was observed"},
 	{name: "time", text: "times of a light curve or a movie"},
 	{name: "trace", text: "the numerics"},
-	{name: "figure", text: "figures for a paper", many: true, later: true},
+	{name: "figure", text: "figures for a paper", many: true},
 }
 
 // allEffects are the effects of trace.effects.
@@ -99,7 +99,7 @@ var allEffects = []string{bending, gravity, motion}
 const bending, gravity, motion = "bending", "gravity", "motion"
 
 // keyTable is the one table of keys, by section.
-var keyTable = slices.Concat(topKeys, objectKeys, observerKeys, fieldKeys, emitterKeys, telescopeKeys, measuredKeys, timeKeys, traceKeys)
+var keyTable = slices.Concat(topKeys, objectKeys, observerKeys, fieldKeys, emitterKeys, telescopeKeys, measuredKeys, timeKeys, traceKeys, figureKeys)
 
 var topKeys = []Key{
 	{Name: "schema", Type: Integer, Range: between(1, 1), Required: true, Text: "version of the scene file"},

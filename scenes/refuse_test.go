@@ -159,7 +159,8 @@ var refusals = []struct {
 	{"orbit without spot", "[time]\nend = \"1 orbit\"\nstep = 1", 4, 7, "time.end", []string{"orbit needs a spot"}},
 	{"uv without scale", "[telescope]\nuv = \"uv.csv\"", 4, 6, "telescope.uv", []string{"needs object.mass"}},
 	{"resolution", "[telescope]\nresolution = \"-5 eV\"", 4, 14, "telescope.resolution", []string{"out of range"}},
-	{"figure", "[[figure]]", 3, 3, "figure", []string{"not in this version"}},
+	{"figure", "[[figure]]\nlayer = [\"heat\"]", 4, 10, "figure.layer", []string{"unknown choice", "intensity"}},
+	{"figure limits", "[[figure]]\nlimits = [2, 1]", 4, 10, "figure.limits", []string{"low below high"}},
 }
 
 func TestRefusals(t *testing.T) {

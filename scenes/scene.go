@@ -11,6 +11,7 @@ type Scene struct {
 	Measured  Measured
 	Time      Time
 	Trace     Trace
+	Figures   []Figure
 	// Idle says, a sentence each, which keys of the text mean nothing with
 	// the others. Equal does not look at it.
 	Idle []string

@@ -124,7 +124,7 @@ func TestSetRefusalsChangeNothing(t *testing.T) {
 		{"emitter.optical_depth", "-0.5", "more than 0"},
 		{"emitter.kind", "spot", "does not apply to a spot"},
 		{"time.end", "-9", "before the start"},
-		{"figure.kind", "x", "not in this version"},
+		{"figure.kind", "x", "unknown key"},
 		{"schema", "2", "--set schema: not a version"},
 		{"title", "\xff", "not UTF-8"},
 		{"title", strings.Repeat("x", maxBytes), "too large"},

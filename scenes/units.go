@@ -58,6 +58,7 @@ var unitTable = []unit{
 	{"rad", "deg", 180 / math.Pi},
 	{"uas", "uas", 1},
 	{"mas", "uas", 1000},
+	{"mm", "mm", 1},
 	{"Msun", "Msun", 1},
 	{"pc", "pc", 1},
 	{"kpc", "pc", 1e3},

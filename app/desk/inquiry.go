@@ -1,6 +1,7 @@
 package desk
 
 import (
+	"annulet/app/curves"
 	"context"
 	"math"
 
@@ -25,7 +26,7 @@ type finding struct {
 	inquiry inquiry
 	pointer *state.Sight
 	marker  *state.Sight
-	rims    []state.Rim // for the table Rings
+	rims    []curves.Rim // for the table Rings
 	graph   *graph.Graph
 	whole   raytrace.Field
 	err     error
@@ -61,7 +62,7 @@ func (v *views) inquire(ctx context.Context, q inquiry) finding {
 		f.marker = probe(q.look.Marker.At)
 	}
 	if q.look.Tab == state.TabRings {
-		f.rims = state.Rims(q.order.Scene)
+		f.rims = curves.Rims(q.order.Scene)
 	}
 	switch q.look.Graph {
 	case state.GraphPath:

@@ -13,8 +13,8 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"annulet/app/desk/imaging"
-	"annulet/app/desk/ink"
 	"annulet/app/desk/state"
+	"annulet/app/ink"
 	"annulet/app/tone"
 	"annulet/assets"
 )

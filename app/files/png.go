@@ -2,12 +2,14 @@ package files
 
 import (
 	"bytes"
+	"encoding/binary"
 	"errors"
 	"fmt"
 	"hash/crc32"
 	"image"
 	"image/png"
 	"io"
+	"math"
 	"strings"
 	"unicode/utf8"
 )
@@ -43,7 +45,19 @@ const (
 // nothing but the arguments. The error wraps ErrText if a text does not fit,
 // and then nothing was written.
 func EncodePNG(w io.Writer, img image.Image, texts []Text) error {
+	return EncodePNGAt(w, img, texts, 0)
+}
+
+// EncodePNGAt is EncodePNG with a resolution, pixels an inch; 0 for none.
+func EncodePNGAt(w io.Writer, img image.Image, texts []Text, dpi float64) error {
 	var chunks bytes.Buffer
+	if dpi > 0 { // section 11.3.4.3: pixels a metre along both axes
+		const inch, metre = 0.0254, 1
+		perMetre := binary.BigEndian.AppendUint32(nil, uint32(math.Round(dpi/inch)))
+		if err := putChunk(&chunks, "pHYs", append(append(perMetre, perMetre...), metre)); err != nil {
+			return err
+		}
+	}
 	for _, t := range texts {
 		if err := t.check(); err != nil {
 			return err

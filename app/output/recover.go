@@ -23,7 +23,7 @@ var (
 	// ErrNoScene: a sound file, but no scene in it.
 	ErrNoScene = errors.New("there is no scene in this file")
 	// ErrKind: a file of a kind that Annulet does not write.
-	ErrKind = errors.New("this is no file that Annulet writes: FITS, NPZ, PNG, TIFF, CSV, ECSV, JSON")
+	ErrKind = errors.New("this is no file that Annulet writes: FITS, NPZ, PNG, TIFF, PDF, SVG, CSV, ECSV, JSON")
 	// ErrDamaged: a file that ends early or contradicts itself.
 	ErrDamaged = errors.New("the file is damaged")
 )
@@ -82,6 +82,10 @@ func recoverFrom(f source, size int64) ([]byte, error) {
 		return recoverTIFF(f, size)
 	case strings.HasPrefix(head, "# "):
 		return recoverCSV(f)
+	case strings.HasPrefix(head, "%PDF-"):
+		return recoverPDF(f, size)
+	case strings.HasPrefix(head, "<?xml"):
+		return recoverSVG(f, size)
 	case strings.HasPrefix(head, "{"):
 		return recoverJSON(f)
 	}
@@ -315,4 +319,4 @@ func Recoverable(name string) bool {
 }
 
 // Extensions are those of the files that Recover knows.
-var Extensions = []string{".fits", ".npz", ".png", ".tif", ".tiff", ".csv", ".ecsv", ".json"}
+var Extensions = []string{".fits", ".npz", ".png", ".tif", ".tiff", ".pdf", ".svg", ".csv", ".ecsv", ".json"}

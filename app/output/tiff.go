@@ -14,7 +14,11 @@ import (
 // description holds the scene. The library's encoder writes no texts: its
 // directory of tags is copied to the end of the file with two more. Source:
 // TIFF 6.0 (Adobe, 1992).
-func WriteTIFF(w io.Writer, img image.Image, p Provenance) error {
+func WriteTIFF(w io.Writer, img image.Image, p Provenance) error { return WriteTIFFAt(w, img, p, 0) }
+
+// WriteTIFFAt is WriteTIFF with a resolution, pixels an inch; 0 leaves the
+// library's 72.
+func WriteTIFFAt(w io.Writer, img image.Image, p Provenance, dpi float64) error {
 	var file bytes.Buffer
 	if err := tiff.Encode(&file, img, &tiff.Options{Compression: tiff.Deflate, Predictor: true}); err != nil {
 		return err
@@ -23,12 +27,36 @@ func WriteTIFF(w io.Writer, img image.Image, p Provenance) error {
 		{tiffDescription, p.Scene},
 		{tiffSoftware, "Annulet " + p.Version + " " + p.JSON()},
 	}
+	if dpi > 0 {
+		if err := setResolution(file.Bytes(), dpi); err != nil {
+			return err
+		}
+	}
 	whole, err := withTexts(file.Bytes(), texts)
 	if err != nil {
 		return err
 	}
 	_, err = w.Write(whole)
 	return err
+}
+
+// setResolution overwrites the resolution along both axes.
+func setResolution(file []byte, dpi float64) error {
+	const xResolution, yResolution, rational, parts = 282, 283, 5, 1000
+	order := binary.LittleEndian
+	at := int(order.Uint32(file[4:])) + 2
+	set := 0
+	for ; at+tiffEntry <= len(file); at += tiffEntry {
+		tag, kind, value := order.Uint16(file[at:]), order.Uint16(file[at+2:]), int(order.Uint32(file[at+8:]))
+		if (tag == xResolution || tag == yResolution) && kind == rational && value+8 <= len(file) {
+			order.PutUint32(file[value:], uint32(dpi*parts+0.5))
+			order.PutUint32(file[value+4:], parts)
+			if set++; set == 2 {
+				return nil
+			}
+		}
+	}
+	return fmt.Errorf("the TIFF encoder wrote no resolution")
 }
 
 type tiffText struct {

@@ -152,7 +152,7 @@ func newRoot(s streams) *cobra.Command {
 	root.CompletionOptions.DisableDefaultCmd = true
 	root.PersistentFlags().StringVar(s.onlyBelow, "only-below", "", "refuse scenes that name files (sky, table, uv) outside the folder `DIR`, links followed")
 	root.AddCommand(
-		newTrace(s), newProbe(s), newRender(s), newScene(s),
+		newTrace(s), newProbe(s), newRender(s), newFigure(s), newScene(s),
 		newStations(s), newSweep(s), newBench(s), newAudit(s),
 		newRings(s), newLine(s), newCut(s), newVisibility(s), newCompare(s), newSpectrum(s), newLightcurve(s),
 		newVersion(s), newCompletion(s), newMan(s),

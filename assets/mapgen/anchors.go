@@ -17,6 +17,47 @@ var emberAnchors = []anchor{
 	{0.97, 0.030, 98},
 }
 
+// tarnAnchors lead from a deep blue through teal to a pale green. Taste;
+// lightness must rise.
+var tarnAnchors = []anchor{
+	{0.15, 0.030, 285},
+	{0.30, 0.105, 266},
+	{0.44, 0.100, 240},
+	{0.58, 0.085, 205},
+	{0.72, 0.095, 175},
+	{0.86, 0.100, 145},
+	{0.96, 0.050, 120},
+}
+
+// wheelAnchors go round: a dark blue through violet and rose to cream, and
+// through green and teal back: lightness rises once and falls once. Taste.
+var wheelAnchors = []anchor{
+	{0.30, 0.110, 280},
+	{0.46, 0.130, 320},
+	{0.64, 0.110, 10},
+	{0.80, 0.090, 60},
+	{0.90, 0.050, 100},
+	{0.80, 0.090, 140},
+	{0.64, 0.080, 185},
+	{0.46, 0.105, 245},
+	{0.30, 0.110, 280},
+}
+
+// orderAnchors are the colours of orders 0 to 9: lightness rises by equal
+// steps, blues and ambers alternate. Taste.
+var orderAnchors = []anchor{
+	{0.30, 0.110, 265},
+	{0.40, 0.085, 50},
+	{0.47, 0.080, 240},
+	{0.54, 0.080, 70},
+	{0.60, 0.050, 270},
+	{0.67, 0.070, 80},
+	{0.72, 0.050, 240},
+	{0.79, 0.060, 85},
+	{0.83, 0.030, 270},
+	{0.90, 0.050, 95},
+}
+
 // armAnchor is a colour at the same place of both arms of a diverging map:
 // lightness, chroma, and how far, in degrees, the hue has turned from where
 // the arm starts. Equal arms have equal lengths in OKLab, so one step means

@@ -105,6 +105,19 @@ func sequential(anchors []anchor) (table, error) {
 	return t, nil
 }
 
+// discrete gives every anchor an equal share of the entries.
+func discrete(anchors []anchor) (table, error) {
+	var t table
+	var err error
+	for k := range t {
+		a := anchors[k*len(anchors)/entries]
+		if t[k], err = encode(oklab.FromHue(a.lightness, a.chroma, radians(a.hueDeg))); err != nil {
+			return table{}, fmt.Errorf("entry %d: %w", k, err)
+		}
+	}
+	return t, nil
+}
+
 // diverging cuts both arms into equal steps. The centre itself falls between
 // the two middle entries, half a step from each.
 func diverging(d arms) (table, error) {

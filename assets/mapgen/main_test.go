@@ -10,15 +10,20 @@ import (
 // TestTablesAreCurrent compares the committed tables with fresh ones.
 // Floating point may differ by architecture, hence a code of tolerance.
 func TestTablesAreCurrent(t *testing.T) {
-	ember, err := sequential(emberAnchors)
-	if err != nil {
-		t.Fatal(err)
+	fresh := map[string]table{}
+	for name, cut := range map[string]func() (table, error){
+		"ember":  func() (table, error) { return sequential(emberAnchors) },
+		"shift":  func() (table, error) { return diverging(shiftAnchors) },
+		"tarn":   func() (table, error) { return sequential(tarnAnchors) },
+		"wheel":  func() (table, error) { return sequential(wheelAnchors) },
+		"orders": func() (table, error) { return discrete(orderAnchors) },
+	} {
+		made, err := cut()
+		if err != nil {
+			t.Fatalf("%s: %v", name, err)
+		}
+		fresh[name] = made
 	}
-	shift, err := diverging(shiftAnchors)
-	if err != nil {
-		t.Fatal(err)
-	}
-	fresh := map[string]table{"ember": ember, "shift": shift}
 	if len(fresh) != len(assets.Names()) {
 		t.Fatalf("%d tables for %d maps", len(fresh), len(assets.Names()))
 	}

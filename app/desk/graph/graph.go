@@ -11,7 +11,7 @@ import (
 	"strconv"
 	"strings"
 
-	"annulet/app/desk/ink"
+	"annulet/app/ink"
 )
 
 // Graph is curves over one pair of axes.

@@ -4,8 +4,9 @@ import (
 	"fmt"
 	"math"
 
-	"annulet/app/desk/ink"
+	"annulet/app/curves"
 	"annulet/app/desk/state"
+	"annulet/app/ink"
 	"annulet/raytrace"
 )
 
@@ -39,7 +40,14 @@ func (d *drawing) contours() {
 	var all, unity [][]ink.Point
 	var labels []func()
 	for _, level := range levels {
-		pieces := isolines(values, columns, rows, level, place)
+		var pieces [][]ink.Point
+		for _, line := range curves.Isolines(values, columns, rows, level) {
+			var piece []ink.Point
+			for _, p := range line {
+				piece = append(piece, place(p[0], p[1]))
+			}
+			pieces = append(pieces, piece)
+		}
 		if len(pieces) == 0 {
 			continue
 		}
@@ -70,38 +78,4 @@ func (d *drawing) contours() {
 		write()
 	}
 	d.say(fmt.Sprintf("contours of %s, order %d", name, max(0, d.Look.Order)))
-}
-
-// isolines returns the pieces of a level's line by marching squares: within
-// each cell of four pixel centres the line is straight. Cells with a value
-// that is missing have none.
-func isolines(values []float32, columns, rows int, level float64, place func(column, row float64) ink.Point) [][]ink.Point {
-	var all [][]ink.Point
-	v := func(c, r int) float64 { return float64(values[r*columns+c]) - level }
-	for r := range rows - 1 {
-		for c := range columns - 1 {
-			a, b, e, f := v(c, r), v(c+1, r), v(c+1, r+1), v(c, r+1)
-			if math.IsNaN(a + b + e + f) {
-				continue
-			}
-			if a > 0 && b > 0 && e > 0 && f > 0 || a <= 0 && b <= 0 && e <= 0 && f <= 0 {
-				continue
-			}
-			var ends []ink.Point
-			edge := func(p, q float64, x0, y0, dx, dy float64) {
-				if (p > 0) != (q > 0) {
-					t := p / (p - q)
-					ends = append(ends, place(float64(c)+x0+t*dx, float64(r)+y0+t*dy))
-				}
-			}
-			edge(a, b, 0, 0, 1, 0)
-			edge(b, e, 1, 0, 0, 1)
-			edge(e, f, 1, 1, -1, 0)
-			edge(f, a, 0, 1, 0, -1)
-			for k := 0; k+1 < len(ends); k += 2 {
-				all = append(all, []ink.Point{ends[k], ends[k+1]})
-			}
-		}
-	}
-	return all
 }

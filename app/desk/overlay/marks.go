@@ -4,7 +4,8 @@ import (
 	"fmt"
 	"math"
 
-	"annulet/app/desk/ink"
+	"annulet/app/curves"
+	"annulet/app/ink"
 	"annulet/raytrace"
 )
 
@@ -84,15 +85,11 @@ func (d *drawing) beam() {
 		return
 	}
 	b := d.Scene.Telescope.Beam
-	major, minor := b[0]/theta/2/d.Shown.Pitch(), b[1]/theta/2/d.Shown.Pitch()
-	// From up, counter-clockwise: north lies clockwise of the axis.
-	sin, cos := math.Sincos((b[2] - d.Scene.Observer.PositionAngle) * math.Pi / 180)
+	major := b[0] / theta / 2 / d.Shown.Pitch()
 	centre := ink.Point{X: major + inset*d.px, Y: float64(d.Shown.Rows) - major - inset*d.px}
 	var points []ink.Point
-	for k := range curvePoints + 1 {
-		s, c := math.Sincos(2 * math.Pi * float64(k) / curvePoints)
-		along, across := major*c, minor*s
-		points = append(points, ink.Point{X: centre.X - along*sin + across*cos, Y: centre.Y - along*cos - across*sin})
+	for _, p := range curves.Beam(d.Scene, theta) {
+		points = append(points, ink.Point{X: centre.X + p[0]/d.Shown.Pitch(), Y: centre.Y - p[1]/d.Shown.Pitch()})
 	}
 	ink.Stroke(d.dst, d.pen(), points)
 	d.face.Write(d.dst, ink.Point{X: centre.X, Y: centre.Y - major - 5*d.px}, "beam FWHM", line, halo, ink.Centre)

@@ -6,8 +6,9 @@ import (
 	"image/color"
 	"math"
 
-	"annulet/app/desk/ink"
+	"annulet/app/curves"
 	"annulet/app/desk/state"
+	"annulet/app/ink"
 	"annulet/raytrace"
 	"annulet/scenes"
 )
@@ -126,24 +127,6 @@ func (d *drawing) say(words string) {
 	d.face.Write(d.dst, ink.Point{X: inset * d.px, Y: y + d.face.Ascent()*0.35}, words, line, halo, ink.Left)
 }
 
-// direction returns the screen coordinates of a direction at an angle from
-// the one ahead, in radians, and at a screen angle; NaN where the field has
-// none.
-func (d *drawing) direction(angle, cos, sin float64) (alpha, beta float64) {
-	return project(d.Shown, math.Sin(angle)*cos, math.Sin(angle)*sin, math.Cos(angle))
-}
-
-// project returns the screen coordinates of a unit vector: right, up, ahead.
-func project(f raytrace.Field, right, up, ahead float64) (alpha, beta float64) {
-	switch {
-	case f.Projection == raytrace.AllSky:
-		return math.Atan2(right, ahead), math.Asin(max(-1, min(1, up)))
-	case ahead <= 0:
-		return math.NaN(), math.NaN()
-	}
-	return right / ahead, up / ahead
-}
-
 // curve draws a closed line of screen coordinates.
 func (d *drawing) curve(points [][2]float64, pen ink.Pen) {
 	var all []ink.Point
@@ -161,75 +144,26 @@ func (d *drawing) curve(points [][2]float64, pen ink.Pen) {
 	ink.Stroke(d.dst, pen, all)
 }
 
-// curvePoints is how many points make a smooth curve. Taste.
-const curvePoints = 360
-
 // critical draws the critical curve, or the limb of an opaque star that is
 // larger than its photon sphere.
 func (d *drawing) critical() {
-	pen := d.pen(9, 3, 2, 3)
-	object, err := raytrace.NewObject(d.Scene.Object)
+	points, name, err := curves.Critical(d.Scene, d.Shown)
 	if err != nil {
+		d.say(err.Error())
 		return
 	}
-	name := "critical curve"
-	opaque := d.Scene.Object.Kind == "star" && d.Scene.Object.Interior == "opaque"
-	larger := object.Edge() >= object.PhotonSphere()
-	if larger {
-		name = "limb"
-	}
-	if larger && !opaque {
-		d.say("no critical curve: the object is larger than its photon sphere")
-		return
-	}
-	var points [][2]float64
-	if d.Shown.IsParallel() {
-		b := object.CriticalImpact()
-		if larger {
-			b = object.Edge() / object.Lapse(object.Edge())
-		}
-		for k := range curvePoints {
-			sin, cos := math.Sincos(2 * math.Pi * float64(k) / curvePoints)
-			points = append(points, [2]float64{b * cos, b * sin})
-		}
-		d.legend(name, pen)
-		d.curve(points, pen)
-		return
-	}
-	at := object.Station(d.Scene.Observer.Radius)
-	angle, centre := at.ShadowStatic, 0.
-	switch d.Scene.Observer.Motion {
-	case "orbit":
-		angle, centre = at.ShadowOrbit, at.ShadowCentre
-	case "infall":
-		angle = at.ShadowInfall
-	}
-	if math.IsNaN(angle) {
-		d.say("no critical curve here")
-		return
-	}
-	sinC, cosC := math.Sincos(centre)
-	for k := range curvePoints {
-		sin, cos := math.Sincos(2 * math.Pi * float64(k) / curvePoints)
-		x, y, z := math.Sin(angle)*cos, math.Sin(angle)*sin, math.Cos(angle)
-		alpha, beta := project(d.Shown, x*cosC+z*sinC, y, z*cosC-x*sinC)
-		points = append(points, [2]float64{alpha, beta})
-	}
+	pen := d.pen(9, 3, 2, 3)
 	d.legend(name, pen)
 	d.curve(points, pen)
 }
 
 // rims draws the images of the disks' rims.
 func (d *drawing) rims() {
-	if !state.HasRims(d.Scene) {
+	if !curves.HasRims(d.Scene) {
 		d.say("rims: no closed form for this object or observer")
 		return
 	}
-	rims := state.Rims(d.Scene)
-	object, err := raytrace.NewObject(d.Scene.Object)
-	if err != nil {
-		return
-	}
+	rims := curves.Rims(d.Scene)
 	pens := []ink.Pen{d.pen(), d.pen(6, 4), d.pen(1.5, 3)}
 	named := -1
 	for _, r := range rims {
@@ -245,15 +179,9 @@ func (d *drawing) rims() {
 			}
 			d.legend(words, pen)
 		}
-		var points [][2]float64
-		for _, p := range r.Curve {
-			if d.Shown.IsParallel() {
-				points = append(points, [2]float64{p.Impact * p.Cos, p.Impact * p.Sin})
-				continue
-			}
-			o := d.Scene.Observer.Radius
-			alpha, beta := d.direction(math.Asin(min(1, p.Impact*object.Lapse(o)/o)), p.Cos, p.Sin)
-			points = append(points, [2]float64{alpha, beta})
+		points, err := r.On(d.Shown, d.Scene)
+		if err != nil {
+			return
 		}
 		d.curve(points, pen)
 	}

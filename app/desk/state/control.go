@@ -86,7 +86,7 @@ const emitterSection = "emitter"
 func sections() []string {
 	var all []string
 	for _, k := range scenes.Keys() {
-		if !slices.Contains(all, k.Section) {
+		if k.Section != "figure" && !slices.Contains(all, k.Section) { // figures are written in the text
 			all = append(all, k.Section)
 		}
 	}

@@ -1,11 +1,15 @@
 package state
 
-import "testing"
+import (
+	"testing"
+
+	"annulet/app/curves"
+)
 
 // Edge-on the image of a rim is a circle: every path sweeps half a turn more.
 func TestRimsEdgeOn(t *testing.T) {
 	s := open(t, "schema = 1\n[observer]\ninclination = 90\n[[emitter]]\n")
-	rims := Rims(s.Scene())
+	rims := curves.Rims(s.Scene())
 	if len(rims) != 6 {
 		t.Fatalf("%d rims", len(rims))
 	}

@@ -1,0 +1,508 @@
+package figure
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+
+	"annulet/app/curves"
+	"annulet/app/output"
+	"annulet/app/tone"
+	"annulet/assets"
+	"annulet/raytrace"
+	"annulet/raytrace/measure"
+	"annulet/scenes"
+)
+
+// Request asks for a figure.
+type Request struct {
+	Scene   scenes.Scene
+	Folder  string // from which paths in the scene are taken
+	Figure  scenes.Figure
+	Workers int
+	Report  func(raytrace.Progress)
+}
+
+// Made is a figure.
+type Made struct {
+	*Sheet
+	Caption string          // a draft
+	Plate   *raytrace.Plate // of the first image: counts and bounds; nil without one
+	Dpi     float64         // of PNG and TIFF
+}
+
+// maker is a figure in the making.
+type maker struct {
+	Request
+	ctx    context.Context
+	view   *raytrace.View
+	plates map[int]*raytrace.Plate // by frequency
+	notes  []string                // of the caption, a panel each
+	over   []string                // of the caption: what lies over images
+}
+
+// Make traces what a figure needs and draws it. It stops within a tile when
+// ctx ends.
+func Make(ctx context.Context, r Request) (*Made, error) {
+	view, err := raytrace.NewViewIn(r.Scene, r.Folder)
+	if err != nil {
+		return nil, err
+	}
+	m := &maker{Request: r, ctx: ctx, view: view, plates: map[int]*raytrace.Plate{}}
+	var panels []panel
+	for _, word := range r.Figure.Panels {
+		made, err := m.panels(word)
+		if err != nil {
+			return nil, fmt.Errorf("figure: panel %s: %w", word, err)
+		}
+		panels = append(panels, made...)
+	}
+	m.share(panels)
+	across := r.Figure.Across
+	if across == 0 {
+		across = 1
+		if wide := width(r.Figure) > 120; len(panels) > 1 && (wide || len(panels) > 3) {
+			across = 2
+			if wide && len(panels)%3 == 0 {
+				across = 3
+			}
+		}
+	}
+	across = min(across, len(panels))
+	for _, p := range panels {
+		if image, ok := p.(*imagePanel); ok {
+			image.second = across == 1
+		}
+	}
+	st := newStyle(r.Figure.Dark, r.Figure.FontSize)
+	sheet, err := arrange(panels, across, width(r.Figure), st)
+	if err != nil {
+		return nil, err
+	}
+	made := &Made{Sheet: sheet, Dpi: r.Figure.Resolution}
+	for _, p := range m.plates {
+		made.Plate = p
+	}
+	if p := m.plates[m.frequencies()[0]]; p != nil {
+		made.Plate = p
+	}
+	made.Caption = m.caption(len(panels) > 1)
+	return made, nil
+}
+
+// frequencies are the scene's that images show, counted from 0.
+func (m *maker) frequencies() []int {
+	all := []int{}
+	for _, n := range m.Figure.Frequencies {
+		all = append(all, n-1)
+	}
+	if len(all) == 0 {
+		all = []int{0}
+	}
+	return all
+}
+
+func (m *maker) panels(word string) ([]panel, error) {
+	one := func(p panel, err error) ([]panel, error) { return []panel{p}, err }
+	switch word {
+	case "image", "blurred":
+		return m.images(word == "blurred")
+	case "line":
+		return one(m.line())
+	case "spectrum":
+		return one(m.spectrum())
+	case "visibility":
+		return one(m.visibility())
+	case "light-curve":
+		return one(m.lightCurve())
+	case "path":
+		return one(m.paths())
+	case "cut":
+		return one(m.cut())
+	}
+	return nil, fmt.Errorf("unknown panel %q", word)
+}
+
+// shown is how a layer is drawn.
+type shown struct {
+	word, title string
+	layer       raytrace.Layer
+	perUnit     float64
+	colours     string
+	curve       tone.Curve
+	centre      float64
+}
+
+var layers = []shown{
+	{"intensity", "intensity", raytrace.Intensity, 1, "ember", tone.SquareRoot, 0},
+	{"g", "redshift factor g", raytrace.Redshift, 1, "shift", tone.Linear, 1},
+	{"r", "radius r (M)", raytrace.Radius, 1, "tarn", tone.Linear, 0},
+	{"phi", "azimuth φ (deg)", raytrace.Azimuth, math.Pi / 180, "wheel", tone.Linear, 0},
+	{"delay", "delay (M)", raytrace.Delay, 1, "tarn", tone.Linear, 0},
+	{"mu", "µ = cos of the emission angle", raytrace.Mu, 1, "tarn", tone.Linear, 0},
+	{"temperature", "effective temperature (K)", raytrace.Radius, 1, "ember", tone.Linear, 0},
+}
+
+func layerOf(word string) shown {
+	return layers[slices.IndexFunc(layers, func(l shown) bool { return l.word == word })]
+}
+
+// plate renders the scene at one of its frequencies, with every layer that
+// the figure needs.
+func (m *maker) plate(frequency int) (*raytrace.Plate, *raytrace.View, error) {
+	view := m.view
+	if frequency > 0 {
+		var err error
+		if view, err = m.view.WithFrequency(frequency); err != nil {
+			return nil, nil, err
+		}
+	}
+	if p := m.plates[frequency]; p != nil {
+		return p, view, nil
+	}
+	need := []raytrace.Layer{}
+	add := func(l raytrace.Layer) {
+		if !slices.Contains(need, l) {
+			need = append(need, l)
+		}
+	}
+	for _, word := range m.Figure.Layers {
+		if l := layerOf(word); l.layer != raytrace.Intensity {
+			add(l.layer)
+		}
+	}
+	if slices.ContainsFunc(m.Figure.Orders, func(o string) bool { return o != "total" }) {
+		add(raytrace.Intensity)
+	}
+	if m.Figure.Contours != "" {
+		add(layerOf(m.Figure.Contours).layer)
+	}
+	p, err := view.Render(m.ctx, raytrace.Options{Workers: m.Workers, Report: m.Report, Layers: need})
+	if err != nil {
+		return nil, nil, err
+	}
+	m.plates[frequency] = p
+	return p, view, nil
+}
+
+// unit returns the conversion of intensities and how they are called.
+func (m *maker) unit(view *raytrace.View) (func(float64) float64, string, error) {
+	r := view.Radiometry()
+	u := raytrace.Unit(m.Figure.Unit)
+	convert, err := r.In(u)
+	if err != nil {
+		return nil, "", err
+	}
+	pretty := strings.NewReplacer("m-2", "m⁻²", "Hz-1", "Hz⁻¹", "sr-1", "sr⁻¹", "uas2", "µas²", "/m2", " m⁻²")
+	switch u {
+	case raytrace.PlateUnit:
+		if r.Radiance == scenes.PerHertz || r.Radiance == scenes.Bolometric {
+			return convert, "intensity (" + pretty.Replace(r.Plate()) + ")", nil
+		}
+		return convert, "relative intensity", nil
+	case raytrace.PlanckKelvin:
+		return convert, "Planck temperature (K)", nil
+	case raytrace.RayleighJeansKelvin:
+		return convert, "R–J temperature (K)", nil
+	case raytrace.RadianceUnit:
+		return convert, "intensity (W m⁻² Hz⁻¹ sr⁻¹)", nil
+	case raytrace.BolometricUnit:
+		return convert, "intensity (W m⁻² sr⁻¹)", nil
+	}
+	return convert, "intensity (" + pretty.Replace(string(u)) + ")", nil
+}
+
+// images makes a panel for each frequency, layer and order.
+func (m *maker) images(blurred bool) ([]panel, error) {
+	var all []panel
+	for _, frequency := range m.frequencies() {
+		plate, view, err := m.plate(frequency)
+		if err != nil {
+			return nil, err
+		}
+		for _, word := range m.Figure.Layers {
+			for _, order := range m.Figure.Orders {
+				l := layerOf(word)
+				if blurred && l.layer != raytrace.Intensity {
+					return nil, fmt.Errorf("only intensities can be blurred, not %s", word)
+				}
+				p, err := m.image(plate, view, l, order, blurred)
+				if err != nil {
+					return nil, err
+				}
+				note := l.title
+				if l.word == "intensity" {
+					note = p.name
+				}
+				if blurred {
+					b := m.Scene.Telescope.Beam
+					note = fmt.Sprintf("the same through a beam of %.4g × %.4g µas FWHM", b[0], b[1])
+				}
+				if order != "total" {
+					note += ", image order " + order
+				} else if l.layer != raytrace.Intensity {
+					note += ", image order 0"
+				}
+				if nu := view.Frequencies(); len(m.frequencies()) > 1 && len(nu) > frequency {
+					note += fmt.Sprintf(", %.4g GHz", nu[frequency]/1e9)
+				}
+				m.notes = append(m.notes, note)
+				all = append(all, p)
+			}
+		}
+	}
+	return all, nil
+}
+
+func (m *maker) image(plate *raytrace.Plate, view *raytrace.View, l shown, order string, blurred bool) (*imagePanel, error) {
+	p := &imagePanel{scene: m.Scene, field: view.Field, name: l.title}
+	values := plate.Total
+	n := -1
+	if order != "total" {
+		n, _ = strconv.Atoi(order) // a word of the key's table
+		values = plate.Layer(raytrace.Intensity, n)
+	}
+	if l.layer != raytrace.Intensity {
+		n = max(n, 0)
+		values = plate.Layer(l.layer, n)
+	}
+	convert := func(x float64) float64 { return x / l.perUnit }
+	switch {
+	case l.word == "temperature":
+		if !slices.ContainsFunc(m.Scene.Emitters, func(e scenes.Emitter) bool { return e.Kind == "disk" && e.Light == "blackbody" }) {
+			return nil, fmt.Errorf("layer temperature needs a disk with light = \"blackbody\"")
+		}
+		convert = view.TemperatureAt
+	case l.layer == raytrace.Intensity:
+		var err error
+		if convert, p.name, err = m.unit(view); err != nil {
+			return nil, err
+		}
+	}
+	if blurred {
+		img, err := measure.NewImage(view.Field, values)
+		if err != nil {
+			return nil, err
+		}
+		theta, _ := m.Scene.ThetaG()
+		b := m.Scene.Telescope.Beam
+		img, err = img.Blurred(m.ctx, measure.Beam{Major: b[0] / theta, Minor: b[1] / theta,
+			Angle: math.Pi/2 + (b[2]-m.Scene.Observer.PositionAngle)*math.Pi/180})
+		if err != nil {
+			return nil, err
+		}
+		values = make([]float32, len(img.Pixels))
+		for k, v := range img.Pixels {
+			values[k] = float32(max(v, 0)) // rounding of the transform
+		}
+	}
+	p.values = make([]float32, len(values))
+	for k, v := range values {
+		p.values[k] = float32(convert(float64(v)))
+	}
+	name := m.Figure.Map
+	if name == "" {
+		name = l.colours
+	}
+	p.colours, _ = assets.Lookup(name) // a word of the key's table
+	t := tone.Tone{Curve: l.curve, FromZero: l.layer == raytrace.Intensity, Centre: l.centre}
+	if blurred { // smooth: nothing that a thousandth of the pixels could spoil
+		t.HighPercent = 100
+	}
+	if m.Figure.Curve != "" {
+		t.Curve, _ = tone.ParseCurve(m.Figure.Curve)
+	}
+	if t.Curve != tone.Linear {
+		t.Centre = 0
+	}
+	if l.word == "phi" {
+		p.turn = true
+		t.Low, t.High = fullTurn(p.values)
+	}
+	if limits := m.Figure.Limits; len(limits) == 2 {
+		t = tone.Tone{Curve: t.Curve, Low: limits[0], High: limits[1]}
+	}
+	if err := t.Check(); err != nil {
+		return nil, err
+	}
+	p.tone = t.Fixed(p.values)
+	return p, m.overlays(p, plate, n)
+}
+
+// fullTurn returns the turn in which azimuths lie: of 360 deg, from a multiple
+// of 180.
+func fullTurn(values []float32) (lo, hi float64) {
+	least := math.Inf(1)
+	for _, v := range values {
+		if v == v {
+			least = min(least, float64(v))
+		}
+	}
+	if math.IsInf(least, 1) {
+		return 0, 360
+	}
+	lo = 180 * math.Floor(least/180+1e-6)
+	return lo, lo + 360
+}
+
+// share gives all images of one quantity the same limits.
+func (m *maker) share(panels []panel) {
+	if !m.Figure.SharedScale {
+		return
+	}
+	type range2 struct{ lo, hi float64 }
+	limits := map[string]range2{}
+	for _, p := range panels {
+		if p, ok := p.(*imagePanel); ok {
+			lo, hi := p.tone.Limits(p.values)
+			if old, some := limits[p.name]; some {
+				lo, hi = min(lo, old.lo), max(hi, old.hi)
+			}
+			limits[p.name] = range2{lo, hi}
+		}
+	}
+	for _, p := range panels {
+		if p, ok := p.(*imagePanel); ok {
+			p.tone.Low, p.tone.High = limits[p.name].lo, limits[p.name].hi
+		}
+	}
+}
+
+// overlays puts over an image what the figure asks for; order is -1 for the
+// total.
+func (m *maker) overlays(p *imagePanel, plate *raytrace.Plate, order int) error {
+	say := func(text string) {
+		if !slices.Contains(m.over, text) {
+			m.over = append(m.over, text)
+		}
+	}
+	for _, word := range m.Figure.Draw {
+		switch word {
+		case "critical":
+			points, name, err := curves.Critical(m.Scene, p.field)
+			if err != nil {
+				return err
+			}
+			p.lines = append(p.lines, overLine{points: closed(points), dash: []float64{1.1, 0.35, 0.3, 0.35}})
+			say("dash-dotted: " + name)
+		case "edges":
+			if !curves.HasRims(m.Scene) {
+				return fmt.Errorf("draw edges: the images of rims have a closed form only for a static observer outside an uncharged object")
+			}
+			for _, r := range curves.Rims(m.Scene) {
+				if order >= 0 && r.Order != order {
+					continue
+				}
+				points, err := r.On(p.field, m.Scene)
+				if err != nil {
+					return err
+				}
+				k := min(r.Order, 2)
+				p.lines = append(p.lines, overLine{points: closed(points), dash: dashes[k], thin: true})
+				say([]string{"solid: edges of order 0", "dashed: of order 1", "dotted: of higher orders"}[k])
+			}
+		case "ring":
+			theta, _ := m.Scene.ThetaG()
+			b := m.Scene.Measured.RingDiameter.Value / theta / 2
+			var points [][2]float64
+			const smooth = 180
+			for k := range smooth + 1 {
+				sin, cos := math.Sincos(2 * math.Pi * float64(k) / smooth)
+				points = append(points, [2]float64{b * cos, b * sin})
+			}
+			p.lines = append(p.lines, overLine{points: points, dash: []float64{0.6, 0.4}})
+			say(fmt.Sprintf("short dashes: the measured diameter, %.3g µas", m.Scene.Measured.RingDiameter.Value))
+		case "beam":
+			theta, ok := angular(m.Scene, p.field)
+			if !ok {
+				return fmt.Errorf("draw beam: needs the angular scale and the observer at infinity")
+			}
+			p.beam = curves.Beam(m.Scene, theta)
+			say("grey ellipse: the beam at half power")
+		case "scale":
+			p.scale = true
+		case "north":
+			p.north = true
+		}
+	}
+	if m.Figure.Contours == "" {
+		return nil
+	}
+	l := layerOf(m.Figure.Contours)
+	values := plate.Layer(l.layer, max(order, 0))
+	if l.layer == raytrace.Intensity && order < 0 {
+		values = plate.Total
+	}
+	levels, unit := m.levels(l, values)
+	left, _, bottom, _ := edges(p.field)
+	across, up := p.field.Pitches()
+	var words []string
+	for _, level := range levels {
+		of, at := values, level*unit
+		if l.word == "phi" {
+			of, at = about(values, at), 0
+		}
+		for _, line := range curves.Isolines(of, plate.Columns, plate.Rows, at) {
+			points := make([][2]float64, len(line))
+			for k, q := range line {
+				points[k] = [2]float64{left + (q[0]+0.5)*across, bottom + (q[1]+0.5)*up}
+			}
+			p.lines = append(p.lines, overLine{points: points, thin: true})
+		}
+		words = append(words, strconv.FormatFloat(level, 'g', 4, 64))
+	}
+	say("thin lines: " + strings.TrimSuffix(l.title, ")") + strings.Repeat(")", strings.Count(l.title, "(")) + " = " + strings.Join(words, ", "))
+	return nil
+}
+
+// about returns azimuths, radians, from one of them on, and nothing beyond a
+// quarter turn: where they jump by a turn no line lies.
+func about(values []float32, zero float64) []float32 {
+	all := make([]float32, len(values))
+	for k, v := range values {
+		x := math.Remainder(float64(v)-zero, 2*math.Pi)
+		if math.Abs(x) > math.Pi/2 {
+			x = math.NaN()
+		}
+		all[k] = float32(x)
+	}
+	return all
+}
+
+func closed(points [][2]float64) [][2]float64 { return append(points, points[0]) }
+
+// levels returns those of contours and what one is in the plate's values.
+func (m *maker) levels(l shown, values []float32) (levels []float64, unit float64) {
+	unit = l.perUnit
+	if l.layer == raytrace.Intensity {
+		peak := 0.
+		for _, v := range values {
+			peak = max(peak, float64(v))
+		}
+		unit = peak
+	}
+	if len(m.Figure.Levels) > 0 {
+		return m.Figure.Levels, unit
+	}
+	switch l.word { // taste
+	case "intensity":
+		return []float64{0.1, 0.3, 0.5, 0.7, 0.9}, unit
+	case "g":
+		return []float64{0.2, 0.4, 0.6, 0.8, 1, 1.2, 1.4}, unit
+	case "r":
+		return []float64{3, 4, 6, 10, 20, 50, 100, 200, 500}, unit
+	case "phi":
+		return []float64{-150, -90, -30, 30, 90, 150, 210, 270, 330}, unit
+	case "mu":
+		return []float64{0.2, 0.4, 0.6, 0.8}, unit
+	}
+	return []float64{-20, -10, 0, 10, 20, 50}, unit
+}
+
+// Provenance is what a figure's files say about where it comes from.
+func (m *Made) Provenance(d *scenes.Document, version string) output.Provenance {
+	return output.NewProvenance(d, version, m.Plate)
+}
