@@ -3,6 +3,8 @@ module annulet
 go 1.26.0
 
 require (
+	codeberg.org/go-fonts/dejavu v0.4.0
+	codeberg.org/go-pdf/fpdf v0.11.1
 	codeberg.org/sbinet/npyio v0.14.0
 	fyne.io/fyne/v2 v2.8.1
 	github.com/pelletier/go-toml/v2 v2.4.3
@@ -16,8 +18,6 @@ require (
 )
 
 require (
-	codeberg.org/go-fonts/dejavu v0.4.0 // indirect
-	codeberg.org/go-pdf/fpdf v0.11.1 // indirect
 	fyne.io/systray v1.12.3-0.20260810170012-af4e8e793ec4 // indirect
 	github.com/BurntSushi/toml v1.6.0 // indirect
 	github.com/FyshOS/fancyfs v0.0.1 // indirect
