@@ -66,7 +66,7 @@ func drawFigure(cmd *cobra.Command, s streams, o drawing, scenePath string) erro
 	if err := checkWorkers(o.workers); err != nil {
 		return err
 	}
-	document, err := loadScene(scenePath, o.set)
+	document, err := s.loadScene(scenePath, o.set)
 	if err != nil {
 		return err
 	}
