@@ -43,6 +43,7 @@ type commands struct {
 	measures   *imaging.Latest[measuring, measured]
 	wanted     measuring // the latest of measures
 	measured   *measured
+	held       []held
 
 	frameShown time.Duration  // from the order to the picture
 	keeping    bool           // unsaved work will soon be kept

@@ -95,7 +95,7 @@ func (v *view) logPlaces(l *log) {
 			l.line("place say=%q word=%s", w.label, place(w))
 		}
 	}
-	for _, w := range []*word{v.top.whole, v.tones.automatic} {
+	for _, w := range []*word{v.top.whole, v.tones.automatic, v.side.hold} {
 		l.line("place say=%q word=%s", w.label, place(w))
 	}
 	l.line("place stations=%s", place(v.side.radii))

@@ -85,6 +85,9 @@ func (c *commands) actions() []action {
 		all = append(all, action{menu: "Window", label: "Graph: " + name, do: func() { c.showGraph(state.Graph(k)) }, gap: k == 0,
 			checked: func() bool { return look().Graph == state.Graph(k) }})
 	}
+	all = append(all,
+		action{menu: "Window", label: "Hold the graph's curve", do: c.holdCurve, gap: true},
+		action{menu: "Window", label: "Drop the curves held", do: c.dropCurves})
 	for k, path := range c.home.settings.Recent {
 		all = append(all, action{menu: "File", label: "Open " + path, do: func() { c.openKept(path) }, gap: k == 0})
 	}

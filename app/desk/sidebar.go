@@ -26,6 +26,7 @@ type sidebar struct {
 	graphs   *segments
 	graph    *graphView
 	why      *widget.Label // where there is no graph
+	hold     *word
 	reading  *canvas.Text
 	tables   fyne.CanvasObject // all that is shown of a table
 	file     *widget.Entry     // the scene's text
@@ -79,7 +80,8 @@ func newSidebar(h hands) *sidebar {
 	measured := b.graphs.split(int(state.GraphLine))
 	b.graph = newGraphView(func(text string) { setText(b.reading, text) })
 	b.reading.TextSize = choiceTextSize
-	saved := hbox(2, newAction("save CSV…", h.saveGraphCSV), newAction("save PNG…", h.saveGraphPNG))
+	b.hold = newAction("hold", h.holdCurve)
+	saved := hbox(2, newAction("save CSV…", h.saveGraphCSV), newAction("save PNG…", h.saveGraphPNG), b.hold, newAction("drop", h.dropCurves))
 	lower := container.NewBorder(
 		container.NewVBox(widget.NewSeparator(), row(container.NewVBox(b.graphs.row, measured))),
 		container.NewVBox(container.New(layout.NewCustomPaddedLayout(0, 0, 10, 6), container.NewStack(spacer(16), b.reading)), row(saved)),

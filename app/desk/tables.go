@@ -133,8 +133,10 @@ func (c *commands) copied(text string) {
 	c.log.line("copied bytes=%d", len(text))
 }
 
-// graph returns the graph that is shown; nil for none.
-func (c *commands) graph() *graph.Graph {
+// graph returns the graph that is shown, with the curves held; nil for none.
+func (c *commands) graph() *graph.Graph { return c.withHeld(c.bareGraph()) }
+
+func (c *commands) bareGraph() *graph.Graph {
 	switch c.state.Look.Graph {
 	case state.GraphOrders:
 		if c.frame != nil && c.frame.Coarsening == 1 {

@@ -47,6 +47,8 @@ type hands interface {
 	copyCSV()
 	saveGraphCSV()
 	saveGraphPNG()
+	holdCurve()
+	dropCurves()
 
 	help(text string)
 	dismiss()

@@ -338,6 +338,22 @@ func isAnInstrument(t *testing.T, program string) {
 		}
 		s.shot("18-graph-" + strings.ToLower(strings.ReplaceAll(graph, " ", "-")))
 	}
+	// A curve is held beside that of another inclination.
+	press("Line")
+	log.wait(t, "the line again", word("measured"))
+	press("hold")
+	if n := log.wait(t, "a curve held", word("held")).number(t, "curves"); n != 1 {
+		t.Errorf("%g curves are held", n)
+	}
+	log.now()
+	s.do("key", "ctrl+k")
+	s.do("type", "inclination observer")
+	s.do("key", "Return")
+	log.wait(t, "the key found", word("found"))
+	s.do("type", "70deg")
+	s.do("key", "Return")
+	log.wait(t, "the line at 70 deg", word("measured"))
+	s.shot("18-graph-held")
 	press("Path")
 
 	// Everything is undone, one change after another, and done again.
