@@ -47,7 +47,9 @@ fuzz: ## half a minute of every fuzz target
 
 shots: build ## the README's picture
 	mkdir -p assets/readme
-	bin/annulet-batch render @first-light -o assets/readme/first-light.png
+	bin/annulet-batch figure @first-light --set 'figure.panels=["image", "blurred", "line", "visibility"]' \
+	  --set 'figure.draw=["ring", "scale"]' --set figure.columns=2 --set field.width=24M \
+	  --set figure.resolution=150 -o assets/readme/first-light.png
 
 clean:
 	rm -rf bin out testdata/failed

@@ -143,7 +143,16 @@ const (
 	lineStep  = 1.25 // of two lines of words
 )
 
-func ticksAlong(length, em float64) int { return max(2, int(length/(4.2*em))) }
+// ticksAlong is how many numbers have room along an axis: they stand one over
+// another along an upright one.
+func ticksAlong(length, em float64, horizontal bool) int {
+	const most = 8 // taste
+	room := 2.8 * em
+	if horizontal {
+		room = 4.2 * em
+	}
+	return min(max(2, int(length/room)), most)
+}
 
 // room returns how much the frame needs around a box of that size, mm.
 func (f frame) room(st style, width, height float64) (l, t, r, b float64) {
@@ -151,7 +160,7 @@ func (f frame) room(st style, width, height float64) (l, t, r, b float64) {
 		if a.Bare {
 			return 0.6 * st.em
 		}
-		major, _, _ := a.ticks(ticksAlong(height, st.em))
+		major, _, _ := a.ticks(ticksAlong(height, st.em, false))
 		widest := 0.
 		for _, m := range major {
 			widest = max(widest, textWidth(m.label, st.em))
@@ -191,7 +200,7 @@ func (f frame) draw(sheet *Sheet, box rect, st style, tickColour *overTicks) {
 		if !horizontal {
 			length = box.height()
 		}
-		major, minor, power := a.ticks(ticksAlong(length, st.em))
+		major, minor, power := a.ticks(ticksAlong(length, st.em, horizontal))
 		mark := func(at, size float64) {
 			from, to := point{box.Left + at*box.width(), box.Bottom}, point{box.Left + at*box.width(), box.Bottom - size*st.em}
 			if far {

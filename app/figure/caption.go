@@ -48,7 +48,14 @@ func (m *maker) caption(letters bool) string {
 		if p == nil {
 			continue
 		}
-		line("%d × %d pixels, %d paths; bounds: %.1e relative on radii, %.1e rad on swept angles.", p.Columns, p.Rows, p.Paths, p.WorstBound, p.WorstAngle)
+		text := fmt.Sprintf("%d × %d pixels, %d paths", p.Columns, p.Rows, p.Paths)
+		if p.WorstBound > 0 {
+			text += fmt.Sprintf("; bound on radii %.1e, relative", p.WorstBound)
+		}
+		if p.WorstAngle > 0 {
+			text += fmt.Sprintf("; bound on swept angles %.1e rad", p.WorstAngle)
+		}
+		line("%s.", text)
 		if flux, bound := p.WholeFlux(); flux > 0 {
 			line("Flux of the field %.6g (bound %.1e) in units of intensity times M² or sr.", flux, bound)
 		}

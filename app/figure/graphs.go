@@ -10,7 +10,7 @@ import (
 	"annulet/scenes"
 )
 
-func (m *maker) options() measure.Options { return measure.Options{Workers: m.Workers} }
+func (m *maker) options() measure.Options { return measure.Options{Workers: m.Workers, Report: m.Measured} }
 
 func (m *maker) note(format string, args ...any) {
 	m.notes = append(m.notes, fmt.Sprintf(format, args...))
@@ -31,7 +31,7 @@ func (m *maker) line() (panel, error) {
 	}
 	total, _ := l.Totals()
 	if !(total > 0) {
-		return nil, fmt.Errorf("the line has no flux")
+		return nil, refuse("the line has no flux")
 	}
 	highest := 0.
 	steps := func(bins []float64) []point {
@@ -127,16 +127,16 @@ func logAxis(highest float64, all []curve, title string) axis {
 // visibilitySteps is how many baselines a curve has.
 const visibilitySteps = 300
 
-// visibility is the amplitude along baselines to the east and to the north,
-// of what images show at the first frequency.
+// visibility is the amplitude along baselines to the east and to the north at
+// the first frequency: of the whole images of disks where nothing else shines,
+// with the part of order 1; else of the field's pixels.
 func (m *maker) visibility() (panel, error) {
-	plate, view, err := m.plate(m.frequencies()[0])
-	if err != nil {
-		return nil, err
-	}
-	img, err := measure.NewImage(view.Field, plate.Total)
-	if err != nil {
-		return nil, err
+	view := m.view
+	if k := m.frequencies()[0]; k > 0 {
+		var err error
+		if view, err = m.view.WithFrequency(k); err != nil {
+			return nil, err
+		}
 	}
 	theta, _ := m.Scene.ThetaG()
 	perGlambda := 1e9 * theta / scenes.MicroarcsecondsPerRadian // cycles per M
@@ -145,31 +145,78 @@ func (m *maker) visibility() (panel, error) {
 		return nil, err
 	}
 	const lobes = 5 // of the critical curve's diameter
-	most := min(lobes/(2*object.CriticalImpact()), img.Nyquist()/2)
-	flux := cmplx.Abs(img.Visibility(0, 0))
-	sin, cos := math.Sincos(m.Scene.Observer.PositionAngle * math.Pi / 180)
-	p := &graphPanel{}
-	for k, to := range []struct {
-		name     string
-		alpha, b float64 // of the screen, a unit vector
-	}{{"east–west", -cos, sin}, {"north–south", sin, cos}} {
-		var at [][2]float64
-		for n := range visibilitySteps + 1 {
-			x := most * float64(n) / visibilitySteps
-			at = append(at, [2]float64{x * to.alpha, x * to.b})
-		}
-		found, err := img.Visibilities(m.ctx, at)
+	most := lobes / (2 * object.CriticalImpact())
+	whole := view.Field.IsParallel()
+	for _, e := range m.Scene.Emitters {
+		whole = whole && e.Kind == "disk"
+	}
+	transform := func(at [][2]float64) ([][]measure.Visibility, error) {
+		return measure.DiskVisibilities(m.ctx, view, at, m.options())
+	}
+	if !whole {
+		plate, _, err := m.plate(m.frequencies()[0])
 		if err != nil {
 			return nil, err
 		}
-		c := curve{name: to.name, order: k - 1, dash: dashes[k]}
-		for n, v := range found {
-			c.points = append(c.points, point{most * float64(n) / visibilitySteps / perGlambda, cmplx.Abs(v.Value) / flux})
+		img, err := measure.NewImage(view.Field, plate.Total)
+		if err != nil {
+			return nil, err
 		}
-		p.curves = append(p.curves, c)
+		most = min(most, img.Nyquist()/2)
+		transform = func(at [][2]float64) ([][]measure.Visibility, error) {
+			all, err := img.Visibilities(m.ctx, at)
+			return [][]measure.Visibility{all}, err
+		}
+	}
+	sin, cos := math.Sincos(m.Scene.Observer.PositionAngle * math.Pi / 180)
+	ways := []struct {
+		name        string
+		alpha, beta float64 // of the screen, a unit vector
+	}{{"east–west", -cos, sin}, {"north–south", sin, cos}}
+	const steps = visibilitySteps + 1
+	var at [][2]float64
+	for _, to := range ways {
+		for n := range steps {
+			x := most * float64(n) / visibilitySteps
+			at = append(at, [2]float64{x * to.alpha, x * to.beta})
+		}
+	}
+	orders, err := transform(at)
+	if err != nil {
+		return nil, err
+	}
+	sum := make([]complex128, len(at))
+	for _, o := range orders {
+		for k, v := range o {
+			sum[k] += v.Value
+		}
+	}
+	flux := cmplx.Abs(sum[0])
+	if !(flux > 0) {
+		return nil, refuse("the image is dark")
+	}
+	along := func(of func(k int) complex128) (all []point) {
+		for n := range steps {
+			all = append(all, point{most * float64(n) / visibilitySteps / perGlambda, cmplx.Abs(of(n)) / flux})
+		}
+		return all
+	}
+	p := &graphPanel{}
+	for w, to := range ways {
+		p.curves = append(p.curves, curve{name: to.name, order: w - 1, dash: dashes[w],
+			points: along(func(k int) complex128 { return sum[w*steps+k] })})
+	}
+	of := "the field's pixels"
+	if whole {
+		of = "the whole image"
+	}
+	if whole && len(orders) > 1 {
+		p.curves = append(p.curves, curve{name: "n = 1, east–west", order: 1, dash: dashes[2],
+			points: along(func(k int) complex128 { return orders[1][k].Value })})
+		of += ", and of its order 1"
 	}
 	p.f = frame{X: axis{Lo: 0, Hi: most / perGlambda, Title: "baseline (Gλ)"}, Y: logAxis(1, p.curves, "visibility amplitude")}
-	m.note("visibility amplitude of the field, relative to its flux, against the baseline")
+	m.note("visibility amplitude of %s, relative to the flux, against the baseline", of)
 	return p, nil
 }
 
@@ -273,7 +320,7 @@ func (m *maker) cut() (panel, error) {
 // paths are light paths in their plane, the observer to the right.
 func (m *maker) paths() (panel, error) {
 	if !m.view.Field.IsParallel() {
-		return nil, fmt.Errorf("paths are told by their impact parameters, which a %s field has not", m.Scene.Field.Projection)
+		return nil, refuse("paths are told by their impact parameters, which a %s field has not", m.Scene.Field.Projection)
 	}
 	object, err := raytrace.NewObject(m.Scene.Object)
 	if err != nil {

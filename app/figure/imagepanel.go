@@ -4,7 +4,6 @@ import (
 	"image"
 	"image/color"
 	"math"
-	"strconv"
 
 	"annulet/app/ink"
 	"annulet/app/tone"
@@ -28,6 +27,7 @@ type imagePanel struct {
 	tone    tone.Tone // with fixed limits
 	colours *assets.Map
 	name    string // of the quantity, with its unit
+	which   string // order, frequency or beam, told in the title where there is room
 	turn    bool   // values are degrees of a full turn
 	second  bool   // axes in M on the opposite sides
 	lines   []overLine
@@ -84,6 +84,9 @@ func (p *imagePanel) axes() frame {
 		x, y := "α (deg)", "β (deg)"
 		if p.field.Projection == raytrace.AllSky {
 			x, y = "longitude (deg)", "latitude (deg)"
+		}
+		if p.field.Projection == raytrace.AllSky {
+			return frame{X: axis{Lo: l * deg, Hi: r * deg, Title: x, Step: 60}, Y: axis{Lo: b * deg, Hi: t * deg, Title: y, Step: 30}}
 		}
 		return frame{X: axis{Lo: l * deg, Hi: r * deg, Title: x}, Y: axis{Lo: b * deg, Hi: t * deg, Title: y}}
 	}
@@ -172,7 +175,7 @@ func (p *imagePanel) bar(sheet *Sheet, box rect, st style) {
 	if p.turn {
 		a.Step = 90
 	}
-	major, _, power := a.ticks(max(3, int(box.width()/(3*st.em))))
+	major, _, power := a.ticks(min(max(3, int(box.width()/(3*st.em))), 6))
 	last := math.Inf(-1)
 	for _, m := range major {
 		x := m.at
@@ -189,7 +192,11 @@ func (p *imagePanel) bar(sheet *Sheet, box rect, st style) {
 		sheet.write(words{At: point{px, box.Top - (labelGap+0.1)*st.em}, Text: m.label, Size: st.em, Colour: st.ink, Align: centre})
 	}
 	sheet.stroke(pen{Width: thinLine, Colour: st.ink}, box.corners())
-	sheet.write(words{At: point{(box.Left + box.Right) / 2, box.Top - (labelGap+lineStep)*st.em}, Text: a.title(power), Size: st.em, Colour: st.ink, Align: centre})
+	title := a.title(power)
+	if p.which != "" && textWidth(title+", "+p.which, st.em) <= box.width() {
+		title += ", " + p.which
+	}
+	sheet.write(words{At: point{(box.Left + box.Right) / 2, box.Top - (labelGap+lineStep)*st.em}, Text: title, Size: st.em, Colour: st.ink, Align: centre})
 }
 
 // marks draws beam, scale bar and directions in the picture's corners, each
@@ -233,13 +240,19 @@ func (p *imagePanel) scaleBar(sheet *Sheet, inside rect, st style, plate func(re
 	}
 	length := ink.Round((r - l) * share / unit / 2) // at most twice that
 	wide := length * unit / (r - l) * (inside.width() + 1.8*st.em)
-	label := strconv.FormatFloat(length, 'g', -1, 64) + " " + name
+	label := roundLabel(length) + " " + name
 	widest := max(wide, textWidth(label, st.em))
 	pad := 0.4 * st.em
 	low, x := inside.Bottom-pad, inside.Right-pad-widest/2
 	plate(rect{inside.Right - widest - 2*pad, low - 1.75*st.em, inside.Right, inside.Bottom})
 	sheet.stroke(pen{Width: 0.5, Colour: overInk}, []point{{x - wide/2, low - 0.2*st.em}, {x + wide/2, low - 0.2*st.em}})
 	sheet.write(words{At: point{x, low - 0.65*st.em}, Text: label, Size: st.em, Colour: overInk, Align: centre})
+}
+
+// roundLabel writes 1, 2 or 5 times a power of ten.
+func roundLabel(x float64) string {
+	e := int(math.Floor(math.Log10(x) + 1e-9))
+	return logLabel(int(math.Round(x/math.Pow(10, float64(e)))), e, e >= -2 && e <= 3)
 }
 
 // directions draws north and east at the upper right: the position angle of

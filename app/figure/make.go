@@ -2,6 +2,7 @@ package figure
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -23,8 +24,22 @@ type Request struct {
 	Folder  string // from which paths in the scene are taken
 	Figure  scenes.Figure
 	Workers int
-	Report  func(raytrace.Progress)
+	// Begin is told of each image that is rendered, and returns what its
+	// progress is told to and what ends it; nil for none.
+	Begin func(columns, rows int) (report func(raytrace.Progress), end func())
+	// Measured is told how far a measurement is; nil for none.
+	Measured func(done, all int)
 }
+
+// ErrRefused marks what a scene or its figure asks for and cannot have.
+var ErrRefused = errors.New("refused")
+
+// refusal is an error of that kind which says no more than its reason.
+type refusal struct{ error }
+
+func (refusal) Is(target error) bool { return target == ErrRefused }
+
+func refuse(format string, args ...any) error { return refusal{fmt.Errorf(format, args...)} }
 
 // Made is a figure.
 type Made struct {
@@ -123,7 +138,7 @@ func (m *maker) panels(word string) ([]panel, error) {
 	case "cut":
 		return one(m.cut())
 	}
-	return nil, fmt.Errorf("unknown panel %q", word)
+	return nil, refuse("unknown panel %q", word)
 }
 
 // shown is how a layer is drawn.
@@ -180,12 +195,22 @@ func (m *maker) plate(frequency int) (*raytrace.Plate, *raytrace.View, error) {
 	if m.Figure.Contours != "" {
 		add(layerOf(m.Figure.Contours).layer)
 	}
-	p, err := view.Render(m.ctx, raytrace.Options{Workers: m.Workers, Report: m.Report, Layers: need})
+	p, err := m.render(view, need)
 	if err != nil {
 		return nil, nil, err
 	}
 	m.plates[frequency] = p
 	return p, view, nil
+}
+
+func (m *maker) render(view *raytrace.View, need []raytrace.Layer) (*raytrace.Plate, error) {
+	o := raytrace.Options{Workers: m.Workers, Layers: need}
+	if m.Begin != nil {
+		report, end := m.Begin(view.Field.Columns, view.Field.Rows)
+		o.Report = report
+		defer end()
+	}
+	return view.Render(m.ctx, o)
 }
 
 // unit returns the conversion of intensities and how they are called.
@@ -194,7 +219,7 @@ func (m *maker) unit(view *raytrace.View) (func(float64) float64, string, error)
 	u := raytrace.Unit(m.Figure.Unit)
 	convert, err := r.In(u)
 	if err != nil {
-		return nil, "", err
+		return nil, "", refusal{err}
 	}
 	pretty := strings.NewReplacer("m-2", "m⁻²", "Hz-1", "Hz⁻¹", "sr-1", "sr⁻¹", "uas2", "µas²", "/m2", " m⁻²")
 	switch u {
@@ -202,7 +227,7 @@ func (m *maker) unit(view *raytrace.View) (func(float64) float64, string, error)
 		if r.Radiance == scenes.PerHertz || r.Radiance == scenes.Bolometric {
 			return convert, "intensity (" + pretty.Replace(r.Plate()) + ")", nil
 		}
-		return convert, "relative intensity", nil
+		return convert, relative, nil
 	case raytrace.PlanckKelvin:
 		return convert, "Planck temperature (K)", nil
 	case raytrace.RayleighJeansKelvin:
@@ -214,6 +239,9 @@ func (m *maker) unit(view *raytrace.View) (func(float64) float64, string, error)
 	}
 	return convert, "intensity (" + pretty.Replace(string(u)) + ")", nil
 }
+
+// relative is what intensities are called whose scene tells no physical unit.
+const relative = "relative intensity"
 
 // images makes a panel for each frequency, layer and order.
 func (m *maker) images(blurred bool) ([]panel, error) {
@@ -227,7 +255,7 @@ func (m *maker) images(blurred bool) ([]panel, error) {
 			for _, order := range m.Figure.Orders {
 				l := layerOf(word)
 				if blurred && l.layer != raytrace.Intensity {
-					return nil, fmt.Errorf("only intensities can be blurred, not %s", word)
+					return nil, refuse("only intensities can be blurred, not %s", word)
 				}
 				p, err := m.image(plate, view, l, order, blurred)
 				if err != nil {
@@ -236,11 +264,25 @@ func (m *maker) images(blurred bool) ([]panel, error) {
 				note := l.title
 				if l.word == "intensity" {
 					note = p.name
+					if note == relative {
+						note += " (" + view.Radiometry().Plate() + ")"
+					}
 				}
 				if blurred {
 					b := m.Scene.Telescope.Beam
 					note = fmt.Sprintf("the same through a beam of %.4g × %.4g µas FWHM", b[0], b[1])
 				}
+				var which []string
+				if order != "total" {
+					which = append(which, ordersName(max(0, orderOf(order))))
+				}
+				if nu := view.Frequencies(); len(m.frequencies()) > 1 && len(nu) > frequency {
+					which = append(which, fmt.Sprintf("%.4g GHz", nu[frequency]/1e9))
+				}
+				if blurred {
+					which = append(which, "blurred")
+				}
+				p.which = strings.Join(which, ", ")
 				if order != "total" {
 					note += ", image order " + order
 				} else if l.layer != raytrace.Intensity {
@@ -260,9 +302,8 @@ func (m *maker) images(blurred bool) ([]panel, error) {
 func (m *maker) image(plate *raytrace.Plate, view *raytrace.View, l shown, order string, blurred bool) (*imagePanel, error) {
 	p := &imagePanel{scene: m.Scene, field: view.Field, name: l.title}
 	values := plate.Total
-	n := -1
-	if order != "total" {
-		n, _ = strconv.Atoi(order) // a word of the key's table
+	n := orderOf(order)
+	if n >= 0 {
 		values = plate.Layer(raytrace.Intensity, n)
 	}
 	if l.layer != raytrace.Intensity {
@@ -273,7 +314,7 @@ func (m *maker) image(plate *raytrace.Plate, view *raytrace.View, l shown, order
 	switch {
 	case l.word == "temperature":
 		if !slices.ContainsFunc(m.Scene.Emitters, func(e scenes.Emitter) bool { return e.Kind == "disk" && e.Light == "blackbody" }) {
-			return nil, fmt.Errorf("layer temperature needs a disk with light = \"blackbody\"")
+			return nil, refuse("layer temperature needs a disk with light = \"blackbody\"")
 		}
 		convert = view.TemperatureAt
 	case l.layer == raytrace.Intensity:
@@ -283,20 +324,9 @@ func (m *maker) image(plate *raytrace.Plate, view *raytrace.View, l shown, order
 		}
 	}
 	if blurred {
-		img, err := measure.NewImage(view.Field, values)
-		if err != nil {
+		var err error
+		if values, err = m.blur(view, values, n); err != nil {
 			return nil, err
-		}
-		theta, _ := m.Scene.ThetaG()
-		b := m.Scene.Telescope.Beam
-		img, err = img.Blurred(m.ctx, measure.Beam{Major: b[0] / theta, Minor: b[1] / theta,
-			Angle: math.Pi/2 + (b[2]-m.Scene.Observer.PositionAngle)*math.Pi/180})
-		if err != nil {
-			return nil, err
-		}
-		values = make([]float32, len(img.Pixels))
-		for k, v := range img.Pixels {
-			values[k] = float32(max(v, 0)) // rounding of the transform
 		}
 	}
 	p.values = make([]float32, len(values))
@@ -326,10 +356,74 @@ func (m *maker) image(plate *raytrace.Plate, view *raytrace.View, l shown, order
 		t = tone.Tone{Curve: t.Curve, Low: limits[0], High: limits[1]}
 	}
 	if err := t.Check(); err != nil {
-		return nil, err
+		return nil, refusal{err}
 	}
 	p.tone = t.Fixed(p.values)
 	return p, m.overlays(p, plate, n)
+}
+
+// beamReach is how far beyond the field light is looked for that the beam
+// brings into it, FWHM: 1.5 of a Gaussian leave 4e-4 of a straight edge's light.
+const beamReach = 1.5
+
+// blur returns intensities as the scene's telescope sees them. Where the field
+// does not hold all that shines, a wider one is rendered first.
+func (m *maker) blur(view *raytrace.View, values []float32, order int) ([]float32, error) {
+	theta, ok := angular(m.Scene, view.Field)
+	if !ok {
+		return nil, refuse("a beam needs a parallel field and the observer at infinity")
+	}
+	b := m.Scene.Telescope.Beam
+	beam := measure.Beam{Major: b[0] / theta, Minor: b[1] / theta,
+		Angle: math.Pi/2 + (b[2]-m.Scene.Observer.PositionAngle)*math.Pi/180}
+	field, pad := view.Field, 0
+	if !m.Scene.Field.AutoWidth {
+		pad = int(math.Ceil(beamReach * beam.Major / field.Pitch()))
+		const most = 3 // times the field's width
+		if most*max(field.Columns, field.Rows) < 2*pad {
+			return nil, refuse("the beam is wider than the field")
+		}
+		wide := *view
+		wide.Field.Columns, wide.Field.Rows = field.Columns+2*pad, field.Rows+2*pad
+		wide.Field.Width = field.Pitch() * float64(wide.Field.Columns)
+		need := []raytrace.Layer{}
+		if order >= 0 {
+			need = append(need, raytrace.Intensity)
+		}
+		plate, err := m.render(&wide, need)
+		if err != nil {
+			return nil, err
+		}
+		if field, values = wide.Field, plate.Total; order >= 0 {
+			values = plate.Layer(raytrace.Intensity, order)
+		}
+	}
+	img, err := measure.NewImage(field, values)
+	if err != nil {
+		return nil, err
+	}
+	if img, err = img.Blurred(m.ctx, beam); err != nil {
+		return nil, err
+	}
+	columns, rows := view.Field.Columns, view.Field.Rows
+	values = make([]float32, 0, columns*rows)
+	for row := range rows {
+		from := (row+pad)*field.Columns + pad
+		for _, v := range img.Pixels[from : from+columns] {
+			values = append(values, float32(max(v, 0))) // rounding of the transform
+		}
+	}
+	return values, nil
+}
+
+// orderOf returns the image order that a word of the scene's means, -1 for the
+// total.
+func orderOf(word string) int {
+	n, err := strconv.Atoi(word)
+	if err != nil {
+		return -1
+	}
+	return n
 }
 
 // fullTurn returns the turn in which azimuths lie: of 360 deg, from a multiple
@@ -384,13 +478,13 @@ func (m *maker) overlays(p *imagePanel, plate *raytrace.Plate, order int) error 
 		case "critical":
 			points, name, err := curves.Critical(m.Scene, p.field)
 			if err != nil {
-				return err
+				return refusal{err}
 			}
 			p.lines = append(p.lines, overLine{points: closed(points), dash: []float64{1.1, 0.35, 0.3, 0.35}})
 			say("dash-dotted: " + name)
 		case "edges":
 			if !curves.HasRims(m.Scene) {
-				return fmt.Errorf("draw edges: the images of rims have a closed form only for a static observer outside an uncharged object")
+				return refuse("draw edges: the images of rims have a closed form only for a static observer outside an uncharged object")
 			}
 			for _, r := range curves.Rims(m.Scene) {
 				if order >= 0 && r.Order != order {
@@ -418,7 +512,7 @@ func (m *maker) overlays(p *imagePanel, plate *raytrace.Plate, order int) error 
 		case "beam":
 			theta, ok := angular(m.Scene, p.field)
 			if !ok {
-				return fmt.Errorf("draw beam: needs the angular scale and the observer at infinity")
+				return refuse("draw beam: needs the angular scale and the observer at infinity")
 			}
 			p.beam = curves.Beam(m.Scene, theta)
 			say("grey ellipse: the beam at half power")

@@ -1,9 +1,6 @@
 package figure
 
-import (
-	"fmt"
-	"math"
-)
+import "math"
 
 // panel is one of a figure's drawings: a box with what stands around it.
 type panel interface {
@@ -40,7 +37,7 @@ func arrange(panels []panel, across int, width float64, st style) (*Sheet, error
 		}
 		boxWidth = (width - sum) / float64(across)
 		if boxWidth < 8*st.em {
-			return nil, fmt.Errorf("%d panels side by side do not fit in %.1f mm at %.2g points: the boxes would be %.1f mm wide", across, width, st.em/mmPerPoint, boxWidth)
+			return nil, refuse("%d panels side by side do not fit in %.1f mm at %.2g points: the boxes would be %.1f mm wide", across, width, st.em/mmPerPoint, boxWidth)
 		}
 		for k := range heights {
 			heights[k] = 0

@@ -1,6 +1,7 @@
 package verbs
 
 import (
+	"errors"
 	"io"
 	"path/filepath"
 	"slices"
@@ -103,7 +104,17 @@ func drawFigure(cmd *cobra.Command, s streams, o drawing, scenePath string) erro
 	if _, err := raytrace.NewViewIn(scene, document.Dir()); err != nil {
 		return usage{err}
 	}
-	made, err := figure.Make(cmd.Context(), figure.Request{Scene: scene, Folder: document.Dir(), Figure: described, Workers: o.workers})
+	made, err := figure.Make(cmd.Context(), figure.Request{
+		Scene: scene, Folder: document.Dir(), Figure: described, Workers: o.workers, Measured: reporter(s),
+		Begin: func(columns, rows int) (func(raytrace.Progress), func()) {
+			shown := newProgress(s.err)
+			shown.begin(columns, rows)
+			return shown.report, shown.end
+		},
+	})
+	if errors.Is(err, figure.ErrRefused) {
+		return usage{err}
+	}
 	if err != nil {
 		return err
 	}
