@@ -10,7 +10,9 @@ import (
 	"annulet/scenes"
 )
 
-func (m *maker) options() measure.Options { return measure.Options{Workers: m.Workers, Report: m.Measured} }
+func (m *maker) options() measure.Options {
+	return measure.Options{Workers: m.Workers, Report: m.Measured}
+}
 
 func (m *maker) note(format string, args ...any) {
 	m.notes = append(m.notes, fmt.Sprintf(format, args...))
