@@ -33,6 +33,8 @@ func (c *commands) actions() []action {
 		{menu: "File", label: "Go back to saved", do: c.revert},
 		{menu: "File", label: "Recover unsaved work", do: c.recoverLost},
 		{menu: "File", label: "Save image…", do: c.saveImage, shortcut: control(fyne.KeyE), gap: true},
+		{menu: "File", label: "Save a figure of the image…", do: c.saveImageFigure},
+		{menu: "File", label: "Save a figure of the graph…", do: c.saveGraphFigure},
 		{menu: "File", label: "Save the graph's values as CSV…", do: c.saveGraphCSV},
 		{menu: "File", label: "Save the graph as PNG…", do: c.saveGraphPNG},
 		{menu: "Edit", label: "Undo", do: c.undo, shortcut: &fyne.ShortcutUndo{}},

@@ -31,6 +31,9 @@ type Provenance struct {
 	Scene       string    `json:"-"`               // the text of the file
 }
 
+// Version is that of the programs.
+const Version = "0.1.0"
+
 // NotIncluded is what the model leaves out.
 var NotIncluded = []string{"returning radiation", "self-occultation by thickness", "scattering"}
 

@@ -1,6 +1,7 @@
 package verbs
 
 import (
+	"annulet/app/output"
 	"context"
 	"errors"
 	"fmt"
@@ -18,7 +19,7 @@ import (
 )
 
 // Version is that of the programs.
-const Version = "0.1.0"
+const Version = output.Version
 
 // Exit codes.
 const (

@@ -169,6 +169,12 @@ func followsTheHand(t *testing.T, program string) {
 func (s *screen) save(keys, path string) {
 	s.t.Helper()
 	s.do("key", keys)
+	s.typePath(path)
+}
+
+// typePath fills in where to save.
+func (s *screen) typePath(path string) {
+	s.t.Helper()
 	s.do("key", "ctrl+a")
 	s.do("type", path)
 	s.do("key", "Return")
@@ -354,6 +360,23 @@ func isAnInstrument(t *testing.T, program string) {
 	s.do("key", "Return")
 	log.wait(t, "the line at 70 deg", word("measured"))
 	s.shot("18-graph-held")
+
+	// Figures of the graph and of the image go where a paper is written.
+	folder := t.TempDir()
+	for what, file := range map[string]string{"save figure graph": "line.pdf", "save figure image": "image.svg"} {
+		log.now()
+		s.do("key", "ctrl+k")
+		s.do("type", what)
+		s.do("key", "Return")
+		s.typePath(filepath.Join(folder, file))
+		log.wait(t, "a saved figure", word("saved"))
+		if caption := readFile(t, filepath.Join(folder, strings.TrimSuffix(file, filepath.Ext(file))+".caption.txt")); !strings.Contains(caption, "inclination 70 deg") {
+			t.Errorf("the caption of %s: %s", file, caption)
+		}
+	}
+	if drawn := readFile(t, filepath.Join(folder, "line.pdf")); !strings.HasPrefix(drawn, "%PDF") {
+		t.Errorf("the figure of the line is %.20q", drawn)
+	}
 	press("Path")
 
 	// Everything is undone, one change after another, and done again.
