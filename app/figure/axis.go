@@ -21,8 +21,12 @@ type axis struct {
 	Step   float64 // between major ticks; 0 for a round one
 }
 
-// at returns where a value lies, 0 at Lo and 1 at Hi.
+// at returns where a value lies, 0 at Lo and 1 at Hi. On an axis of one value,
+// of a cut where nothing shines, say, all lies at Lo.
 func (a axis) at(v float64) float64 {
+	if a.Hi == a.Lo {
+		return 0
+	}
 	if a.Log {
 		return math.Log(v/a.Lo) / math.Log(a.Hi/a.Lo)
 	}

@@ -314,3 +314,19 @@ func (e *extents) fill(color.RGBA, []point)      {}
 func (e *extents) picture(*image.Paletted, rect) {}
 func (e *extents) clip(rect)                     {}
 func (e *extents) unclip()                       {}
+
+// TestNothingShines: a graph of zeros is drawn, with numbers.
+func TestNothingShines(t *testing.T) {
+	m := drawn(t, load(t, "@late-twin", "figure.panels", `["cut"]`, "field.pixels", "[40, 40]"))
+	var pdf bytes.Buffer
+	if err := m.Write(&pdf, "cut.pdf", output.Provenance{}); err != nil {
+		t.Fatal(err)
+	}
+	var svg bytes.Buffer
+	if err := m.Write(&svg, "cut.svg", output.Provenance{}); err != nil {
+		t.Fatal(err)
+	}
+	if strings.Contains(svg.String(), "NaN") {
+		t.Error("the drawing has places that are no numbers")
+	}
+}
