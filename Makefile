@@ -4,8 +4,11 @@ GO = go
 TAGS = migrated_fynedo
 
 PEERS = ../shared/peers
+SLURM = ../shared/slurm
+FUZZTIME = 30s
+SOAK = env CGO_ENABLED=0 $(GO) test -tags ci,$(TAGS) -count=1 -timeout 2h -v
 
-.PHONY: build deb fast run test bench peers large fuzz shots clean
+.PHONY: build deb fast run test bench peers large fuzz soak cluster shots clean
 
 build: ## bin/annulet (desk and verbs) and bin/annulet-batch (verbs, static)
 	CGO_ENABLED=0 $(GO) build -trimpath -buildvcs=false -o bin/annulet-batch ./app/annulet-batch
@@ -39,10 +42,21 @@ large: build ## nanoseconds a pixel from 1 to 64 megapixels; time and memory of 
 bench: ## benchmarks of the pure packages
 	CGO_ENABLED=0 $(GO) test -run '^$$' -bench . -benchmem ./geodesic/... ./raytrace/... ./scenes/...
 
-fuzz: ## half a minute of every fuzz target
+soak: ## the long forms: 50 kills, 5000 random scenes, memory, minutes of fuzzing, a cluster
+	ANNULET_KILLS=50 $(SOAK) -run Killed ./app/sweep
+	ANNULET_SOAK=1 $(SOAK) -run SweepMemory ./app/verbs
+	ANNULET_SEED=$(or $(SEED),2) ANNULET_SCENES=5000 $(SOAK) -run RandomScenes ./raytrace
+	$(MAKE) cluster
+	$(MAKE) fuzz FUZZTIME=3m
+
+cluster: ## sweeps on a Slurm of one node, as root: SLURM=folder with up.sh and down.sh, which start and stop it
+	@S=$$(mktemp -d); export S; bash $(SLURM)/up.sh && \
+	  { SLURM_CONF=$$S/slurm.conf ANNULET_SLURM=1 $(SOAK) -run TestSlurm ./app/verbs; rc=$$?; bash $(SLURM)/down.sh; exit $$rc; }
+
+fuzz: ## half a minute of every fuzz target, or FUZZTIME
 	@for d in $$(grep -rl --include='*_test.go' '^func Fuzz' . | xargs -n1 dirname | sort -u); do \
 	  for f in $$(grep -ho '^func Fuzz[A-Za-z0-9_]*' $$d/*_test.go | cut -c6-); do \
-	    echo "$$d $$f"; $(GO) test -run '^$$' -fuzz "^$$f\$$" -fuzztime 30s -fuzzminimizetime 50x $$d || exit 1; \
+	    echo "$$d $$f"; $(GO) test -run '^$$' -fuzz "^$$f\$$" -fuzztime $(FUZZTIME) -fuzzminimizetime 50x $$d || exit 1; \
 	  done; done
 
 shots: build ## the README's picture
