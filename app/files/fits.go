@@ -38,6 +38,30 @@ type HDU struct {
 	// that FITS headers cannot hold. Not together with an image.
 	Bytes  []byte
 	Column string // its name
+	// Fields makes Bytes the rows of a table with these columns, one after
+	// another, big-endian; Column is not used then.
+	Fields []FITSField
+}
+
+// FITSField is one column of a table.
+type FITSField struct {
+	Name string
+	Form string // of TFORM: "D", "K", "12A"
+	Size int    // bytes in a row
+	Unit string // "" for none
+	Text string // what it is, for people
+}
+
+// rowBytes is the length of a row of the table.
+func (u HDU) rowBytes() int {
+	if u.Fields == nil {
+		return len(u.Bytes)
+	}
+	n := 0
+	for _, f := range u.Fields {
+		n += f.Size
+	}
+	return n
 }
 
 // FITS writes a file whose headers are known before its data, so that images
@@ -64,6 +88,8 @@ type fitsUnit struct {
 }
 
 const (
+	mostFields = 999 // what TFIELDS may be
+
 	fitsBlock = 2880
 	fitsCard  = 80
 	fitsWord  = 4 // bytes of a float32, and of the words that checksums add
@@ -77,8 +103,10 @@ func NewFITS(w io.WriterAt, units ...HDU) (*FITS, error) {
 		u := &fitsUnit{HDU: unit, at: f.size, bytes: int64(len(unit.Bytes))}
 		if unit.Bytes == nil {
 			u.bytes = fitsWord * int64(unit.Columns) * int64(unit.Rows)
-		} else if k == 0 || unit.Columns != 0 || unit.Column == "" {
+		} else if k == 0 || unit.Columns != 0 || unit.Column == "" && unit.Fields == nil {
 			return nil, fmt.Errorf("unit %d: a table must be an extension of its own with a named column: %w", k+1, ErrFITS)
+		} else if n := unit.rowBytes(); unit.Fields != nil && (n == 0 || len(unit.Bytes)%n != 0 || len(unit.Fields) > mostFields) {
+			return nil, fmt.Errorf("unit %d: %d bytes in rows of %d, %d columns: %w", k+1, len(unit.Bytes), n, len(unit.Fields), ErrFITS)
 		}
 		if err := u.lay(k == 0, len(units) > 1); err != nil {
 			return nil, fmt.Errorf("unit %d %s: %w", k+1, unit.Name, err)
@@ -114,8 +142,8 @@ func (u *fitsUnit) lay(primary, extended bool) error {
 	case u.Bytes != nil:
 		add("BITPIX", 8, "bytes")
 		add("NAXIS", 2, "")
-		add("NAXIS1", len(u.Bytes), "bytes in the row")
-		add("NAXIS2", 1, "rows")
+		add("NAXIS1", u.rowBytes(), "bytes in the row")
+		add("NAXIS2", len(u.Bytes)/max(1, u.rowBytes()), "rows")
 	case u.Columns > 0:
 		add("BITPIX", -32, "IEEE float32")
 		add("NAXIS", 2, "")
@@ -133,7 +161,17 @@ func (u *fitsUnit) lay(primary, extended bool) error {
 		add("PCOUNT", 0, "")
 		add("GCOUNT", 1, "")
 	}
-	if u.Bytes != nil {
+	if u.Fields != nil {
+		add("TFIELDS", len(u.Fields), "")
+		for k, f := range u.Fields {
+			n := strconv.Itoa(k + 1)
+			add("TTYPE"+n, f.Name, f.Text)
+			add("TFORM"+n, f.Form, "")
+			if f.Unit != "" {
+				add("TUNIT"+n, f.Unit, "")
+			}
+		}
+	} else if u.Bytes != nil {
 		add("TFIELDS", 1, "")
 		add("TTYPE1", u.Column, "UTF-8 text")
 		add("TFORM1", strconv.Itoa(len(u.Bytes))+"B", "")
@@ -284,6 +322,9 @@ func cut(text string, n int) []string {
 	}
 	return append(parts, text)
 }
+
+// ASCII is a text as FITS headers and tables hold it.
+func ASCII(text string) string { return ascii(text) }
 
 // ascii folds what FITS headers may not hold.
 func ascii(text string) string {

@@ -114,7 +114,7 @@ func (m *Manifest) writeTable(ctx context.Context, dir string, records []Record)
 			return err
 		}
 	}
-	return nil
+	return files.WriteAt(ctx, filepath.Join(dir, "table.fits"), 0o666, func(w io.WriterAt) error { return t.WriteFITS(w, p) })
 }
 
 // sweepUp removes the temporary files that killed processes left and, last,

@@ -165,7 +165,7 @@ func undisturbed(t *testing.T) map[string]string {
 		t.Fatal(err)
 	}
 	all := contents(t, dir)
-	if len(all) != 24*2+3 {
+	if len(all) != 24*2+4 {
 		t.Fatalf("%d files", len(all))
 	}
 	return all

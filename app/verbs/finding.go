@@ -12,6 +12,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"annulet/app/output"
+	"annulet/app/sweep"
 	"annulet/raytrace"
 	"annulet/raytrace/measure"
 	"annulet/scenes"
@@ -36,6 +37,10 @@ type measuring struct {
 	set, out []string
 	json     bool
 	workers  int
+
+	// of a case of a sweep, whose product the table is; nil for a verb
+	job     *sweep.Job
+	product string
 }
 
 const tableFormats = ".csv, .ecsv, .json"
@@ -71,8 +76,10 @@ func (m measuring) open(s streams, scenePath string) (*measured, error) {
 	if err != nil {
 		return nil, err
 	}
-	d, err := s.loadScene(scenePath, m.set)
-	if err != nil {
+	var d *scenes.Document
+	if m.job != nil {
+		d = m.job.Document
+	} else if d, err = s.loadScene(scenePath, m.set); err != nil {
 		return nil, err
 	}
 	scene := d.Scene()
@@ -100,6 +107,9 @@ func reporter(s streams) func(done, all int) {
 // deliver writes the files, then prints.
 func (m measuring) deliver(cmd *cobra.Command, s streams, of *measured, f finding) error {
 	p := output.NewProvenance(of.document, Version, nil)
+	if m.job != nil {
+		return m.job.Write(cmd.Context(), m.product, ".ecsv", func(w io.Writer) error { return f.table.WriteECSV(w, p) })
+	}
 	document := func(w io.Writer) error { return writeJSON(w, f.document(p)) }
 	for _, path := range m.out {
 		var err error

@@ -14,7 +14,7 @@ import (
 func newLine(s streams) *cobra.Command {
 	var m measuring
 	var o lineOptions
-	bin := quantity{value: 0.02, shown: "0.02", name: "width", parse: parseBin}
+	bin := quantity{value: defaultBin, shown: number(defaultBin).csv(), name: "width", parse: parseBin}
 	cmd := &cobra.Command{
 		Use:   "line SCENE",
 		Short: "integrate the profile of a line that is narrow in the gas frame",
@@ -36,6 +36,9 @@ func newLine(s streams) *cobra.Command {
 	cmd.Flags().StringVar(&o.continuum, "continuum", "", "`LEVEL,INDEX` of a continuum: photons per keV at the rest energy over the line's photons, and photon index; JSON tells the equivalent width")
 	return cmd
 }
+
+// defaultBin is the width of bins of g. Taste.
+const defaultBin = 0.02
 
 // parseBin reads the width of a bin.
 func parseBin(text string) (float64, error) {

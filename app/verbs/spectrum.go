@@ -15,7 +15,7 @@ import (
 func newSpectrum(s streams) *cobra.Command {
 	var m measuring
 	from, to := "", ""
-	points := 100
+	points := defaultPoints
 	cmd := &cobra.Command{
 		Use:   "spectrum SCENE --from NU --to NU",
 		Short: "integrate the spectrum of a scene's disks",
@@ -43,6 +43,9 @@ func newSpectrum(s streams) *cobra.Command {
 	cmd.Flags().IntVar(&points, "points", points, "how many frequencies")
 	return cmd
 }
+
+// defaultPoints is how many frequencies a spectrum has. Taste.
+const defaultPoints = 100
 
 // frequencyRange reads two frequencies in any unit of the scene file.
 func frequencyRange(from, to string) (lo, hi float64, err error) {

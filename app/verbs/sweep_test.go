@@ -13,6 +13,7 @@ import (
 	"codeberg.org/sbinet/npyio/npz"
 
 	"annulet/app/files"
+	"annulet/app/files/foreign"
 	"annulet/raytrace"
 	"annulet/scenes"
 )
@@ -182,4 +183,73 @@ func TestSweepRings(t *testing.T) {
 	if got, s := sweepOf(t, "@slow-room", "--set", "field.pixels=[16,8]", "--vary", "observer.azimuth=0,10", "--out", "b"); got.code != exitDone || s.Done != 2 {
 		t.Errorf("%+v", got)
 	}
+}
+
+// A sweep's lines, spectra and visibilities are those of the verbs, to the
+// byte; its FITS table is astropy's, number by number, and that of the ECSV.
+func TestSweepTables(t *testing.T) {
+	folder(t)
+	scene := smallScene + "light = \"monochromatic\"\nspectral_index = -0.7\n[object]\ntheta_g = \"3.8 uas\"\n"
+	scene += "[trace]\nmax_order = 1\n"
+	scene = strings.Replace(scene, "[field]\n", "[field]\nfrequency = [\"86 GHz\", \"345 GHz\"]\n", 1)
+	write(t, "s.toml", strings.Replace(scene, "[16, 12]", "[48, 40]", 1))
+	got, s := sweepOf(t, "s.toml", "--vary", "observer.inclination=20,60", "--vary", "emitter.outer=15 M,horizon", "--out", "a",
+		"--product", "spectrum", "--product", "visibility", "--product", "line", "--product", "rings")
+	if got.code != exitCouldNot || s.Done != 2 || s.Failed != 2 { // no disk ends at the horizon
+		t.Fatalf("%+v", got)
+	}
+	const set = "--set|observer.inclination=60|--set|emitter.outer=15 M|--workers|1"
+	for product, args := range map[string]string{
+		"line": "line|s.toml|-o|line.ecsv", "spectrum": "spectrum|s.toml|--from|86 GHz|--to|345 GHz|-o|spectrum.ecsv", "visibility": "visibility|s.toml|--orders|-o|visibility.ecsv",
+	} {
+		if got := do(t, "", strings.Split(args+"|"+set, "|")...); got.code != exitDone {
+			t.Fatalf("%+v", got)
+		}
+		want, err := os.ReadFile(product + ".ecsv")
+		if err != nil {
+			t.Fatal(err)
+		}
+		paths, err := filepath.Glob("a/" + product + "/0002_*.ecsv")
+		if err != nil || len(paths) != 1 {
+			t.Fatalf("%s: %v, %v", product, paths, err)
+		}
+		if found, err := os.ReadFile(paths[0]); err != nil || !bytes.Equal(rowsBelow(found), rowsBelow(want)) || len(rowsBelow(want)) < 100 {
+			t.Errorf("%s is not what the verb writes (%v)", product, err)
+		}
+	}
+	if out := foreign.Run(t, "fitsverify", "-q", "a/table.fits"); !strings.Contains(out, "verification OK") {
+		t.Error(out)
+	}
+	out := foreign.Python(t, "astropy", `
+import re, sys
+import numpy as np
+from astropy.io import fits
+from astropy.table import Table
+with fits.open(sys.argv[1], checksum=True) as f:
+    f.verify("exception")
+    scene = bytes(f["SCENE"].data["TEXT"][0]).decode()
+t, e = Table.read(sys.argv[1], hdu="TABLE"), Table.read(sys.argv[2])
+assert [re.sub(r"\W", "_", c) for c in e.colnames] == t.colnames, (e.colnames, t.colnames)
+for c, d in zip(e.colnames, t.colnames):
+    if e[c].dtype.kind == "f":
+        a, b = np.ma.filled(e[c].astype(float), np.nan), np.ma.filled(t[d].astype(float), np.nan)
+        assert np.array_equal(a, b, equal_nan=True), c
+    else:
+        assert [str(x) for x in e[c]] == [x.decode() if isinstance(x, bytes) else str(x) for x in t[d]], (c, list(e[c]), list(t[d]))
+print(len(t), sum(t["state"].astype(str) == "done"), t["inner_diameter_horizontal_0"][2], "theta_g" in scene)
+`, "a/table.fits", "a/table.ecsv")
+	// physics reference: r = 6 M at 60 deg
+	if !strings.HasPrefix(out, "4 2 14.3411378") || !strings.HasSuffix(strings.TrimSpace(out), "True") {
+		t.Errorf("astropy reads %s", out)
+	}
+	if got := do(t, "", "scene", "recover", "a/table.fits"); got.code != exitDone || !strings.Contains(got.out, "theta_g") {
+		t.Errorf("%+v", got)
+	}
+}
+
+// rowsBelow leaves out the head of comments, which tells the scene as it was
+// set.
+func rowsBelow(text []byte) []byte {
+	at := bytes.Index(text, []byte("# schema: astropy-2.0"))
+	return text[max(at, 0):]
 }

@@ -7,9 +7,12 @@ import (
 	"io"
 	"math"
 	"slices"
+	"strconv"
 	"strings"
 	"sync"
 	"time"
+
+	"github.com/spf13/cobra"
 
 	"annulet/app/files"
 	"annulet/app/output"
@@ -32,6 +35,9 @@ var sweepProducts = []sweepProduct{
 	{"layers", otherLayers, writeCaseLayers},
 	{"picture", []raytrace.Layer{}, writeCasePicture},
 	{"rings", []raytrace.Layer{}, writeCaseRings},
+	{"line", []raytrace.Layer{}, writeCaseLine},
+	{"spectrum", []raytrace.Layer{}, writeCaseSpectrum},
+	{"visibility", []raytrace.Layer{}, writeCaseVisibility},
 }
 
 var defaultProducts = []string{"image", "rings"}
@@ -204,6 +210,34 @@ func writeCaseRings(ctx context.Context, job *sweep.Job, view *raytrace.View, _ 
 		}
 	}
 	return nil
+}
+
+// measuringCase makes the product of a case as the verb of that name does.
+func measuringCase(ctx context.Context, job *sweep.Job, product string) (*cobra.Command, streams, measuring) {
+	cmd := new(cobra.Command)
+	cmd.SetContext(ctx)
+	return cmd, streams{err: io.Discard}, measuring{workers: 1, job: job, product: product}
+}
+
+func writeCaseLine(ctx context.Context, job *sweep.Job, _ *raytrace.View, _ *raytrace.Plate) error {
+	cmd, s, m := measuringCase(ctx, job, "line")
+	return line(cmd, s, m, lineOptions{bin: defaultBin}, "")
+}
+
+// writeCaseSpectrum spans the scene's frequencies.
+func writeCaseSpectrum(ctx context.Context, job *sweep.Job, _ *raytrace.View, _ *raytrace.Plate) error {
+	f := job.Document.Scene().Field.Frequency
+	if len(f) < 2 {
+		return refuse("a sweep's spectra go from the lowest to the highest of field.frequency: allowed: two or more, as in [\"0.1 keV\", \"20 keV\"]")
+	}
+	hertz := func(nu float64) string { return strconv.FormatFloat(nu, 'g', -1, 64) + " Hz" }
+	cmd, s, m := measuringCase(ctx, job, "spectrum")
+	return spectrum(cmd, s, m, hertz(slices.Min(f)), hertz(slices.Max(f)), defaultPoints, "")
+}
+
+func writeCaseVisibility(ctx context.Context, job *sweep.Job, _ *raytrace.View, _ *raytrace.Plate) error {
+	cmd, s, m := measuringCase(ctx, job, "visibility")
+	return visibility(cmd, s, looking{measuring: m, steps: defaultSteps, orders: true}, "")
 }
 
 // The grid of a case's rings. Method: its fluxes are right to about 1e-4.

@@ -28,7 +28,7 @@ type looking struct {
 }
 
 func newVisibility(s streams) *cobra.Command {
-	o := looking{angle: quantity{shown: "0", name: "deg", parse: parseFinite}, to: quantity{shown: "five times 1/(the critical curve's diameter)", name: "Glambda", parse: parsePositive}, steps: 200}
+	o := looking{angle: quantity{shown: "0", name: "deg", parse: parseFinite}, to: quantity{shown: "five times 1/(the critical curve's diameter)", name: "Glambda", parse: parsePositive}, steps: defaultSteps}
 	cmd := &cobra.Command{
 		Use:   "visibility SCENE",
 		Short: "Fourier transform a scene's image, as an interferometer sees it",
@@ -56,6 +56,9 @@ func newVisibility(s streams) *cobra.Command {
 	f.BoolVar(&o.exact, "exact", false, "integrate the disks' whole images instead of the field's pixels; baselines may be long")
 	return cmd
 }
+
+// defaultSteps is how many lie between no baseline and the longest. Taste.
+const defaultSteps = 200
 
 // parsePositive reads a number above 0.
 func parsePositive(text string) (float64, error) {
