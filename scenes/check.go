@@ -139,7 +139,7 @@ func read(k Key, v value) (reading, *fault) {
 		}
 		r.word = v.text
 		return r, readChoice(k, v)
-	case ChoiceList:
+	case ChoiceList, TextList:
 		if v.kind != kindList {
 			return r, wrongType
 		}
@@ -147,7 +147,7 @@ func read(k Key, v value) (reading, *fault) {
 			if item.kind != kindText {
 				return r, &fault{at: item.span, problem: "wrong type, " + item.kind.String(), allowed: k.Allowed()}
 			}
-			if f := readChoice(k, item); f != nil {
+			if f := readChoice(k, item); f != nil && k.Type == ChoiceList {
 				return r, f
 			}
 			r.words = append(r.words, item.text)
@@ -236,6 +236,8 @@ func (k Key) Allowed() string {
 		}
 	case ChoiceList:
 		options = append(options, "a list of "+strings.Join(k.Choices, ", "))
+	case TextList:
+		options = append(options, "a list of texts")
 	case TableList:
 		options = append(options, "a list of {"+strings.Join(k.fieldNames(), ", ")+"}")
 	default:

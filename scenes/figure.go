@@ -1,14 +1,17 @@
 package scenes
 
 import (
+	"errors"
 	"slices"
 	"strconv"
+	"strings"
 )
 
 // Figure is one figure for a paper.
 type Figure struct {
 	Panels      []string  // what is drawn, a panel each: see the key figure.panels
 	Journal     string    // "aa", "aas" or "mnras"
+	Vary        []string  // KEY=VALUE; KEY=VALUE of the scenes beside one another; none for the scene alone
 	Columns     int       // of the journal that the figure spans
 	Width       float64   // mm; 0 for the journal's
 	Across      int       // panels side by side; 0 for as many as look well
@@ -47,6 +50,8 @@ var figureKeys = []Key{
 	{Section: figureSection, Name: "panels", Type: ChoiceList,
 		Choices: []string{"image", "blurred", "line", "spectrum", "visibility", "light-curve", "path", "cut"},
 		Default: `["image"]`, Text: "what is drawn, a panel each; blurred: the image through the telescope's beam; path: light paths in their plane; cut: intensity along beta = 0"},
+	{Section: figureSection, Name: "vary", Type: TextList, Default: `[]`,
+		Text: "the panels are repeated for scenes that differ in some keys, \"observer.inclination = 60 deg\", more keys after ; and \"\" for the scene as it is"},
 	{Section: figureSection, Name: "journal", Type: Choice, Choices: []string{"aa", "aas", "mnras"},
 		Default: `"aa"`, Text: "whose columns the width is taken from: 88 and 180 mm, 86.2 and 180.3 mm, 85.8 and 178.5 mm"},
 	{Section: figureSection, Name: "columns", Type: Integer, Range: between(1, 2), Default: `1`, Text: "of the journal that the figure spans"},
@@ -89,7 +94,7 @@ func (b *builder) figure(index int) {
 	}
 	number := func(key string) float64 { return b.number(get(key), 0) }
 	f := Figure{
-		Panels: get("panels").words, Journal: get("journal").word, Columns: int(number("columns")), Across: int(number("across")),
+		Panels: get("panels").words, Vary: get("vary").words, Journal: get("journal").word, Columns: int(number("columns")), Across: int(number("across")),
 		Layers: get("layer").words, Orders: get("order").words, Unit: get("unit").word, Curve: get("curve").word,
 		Limits: list(get("limits")), Map: get("map").word, SharedScale: get("scale").word == "shared",
 		Draw: get("draw").words, Contours: get("contours").word, Levels: list(get("levels")), Bin: number("bin"),
@@ -101,6 +106,19 @@ func (b *builder) figure(index int) {
 	for _, name := range []string{"panels", "layer", "order"} {
 		if r := get(name); len(r.words) == 0 {
 			b.failAt(r, Error{Problem: "an empty list", Allowed: r.key.Allowed()})
+		}
+	}
+	for _, text := range f.Vary {
+		all, err := ParseAssignments(text)
+		if err != nil {
+			b.failAt(get("vary"), Error{Problem: err.Error(), Allowed: "KEY = VALUE; KEY = VALUE"})
+		}
+		for _, a := range all {
+			if target, wrong := parsePath(a.Path); wrong != nil || target.section == figureSection {
+				b.failAt(get("vary"), Error{Problem: "not a key that can vary: " + a.Path, Allowed: "the keys of all tables but figure"})
+			} else if _, known := findKey(target.section, target.key); !known {
+				b.failAt(get("vary"), *unknownPath(target))
+			}
 		}
 	}
 	if r := get("limits"); len(f.Limits) != 0 && (len(f.Limits) != 2 || f.Limits[0] >= f.Limits[1]) {
@@ -136,10 +154,28 @@ func (b *builder) figure(index int) {
 	b.scene.Figures = append(b.scene.Figures, f)
 }
 
+// ParseAssignments reads KEY = VALUE, several with semicolons between; the
+// empty text has none.
+func ParseAssignments(text string) ([]Assignment, error) {
+	var all []Assignment
+	for part := range strings.SplitSeq(text, ";") {
+		if strings.TrimSpace(part) == "" {
+			continue
+		}
+		key, value, ok := strings.Cut(part, "=")
+		if !ok {
+			return nil, errors.New("no KEY = VALUE: " + strconv.Quote(strings.TrimSpace(part)))
+		}
+		all = append(all, Assignment{Path: strings.TrimSpace(key), Value: strings.TrimSpace(value)})
+	}
+	return all, nil
+}
+
 // figure writes what differs from the default.
 func (w writer) figure(f Figure) {
 	w.header("[[figure]]")
 	w.list("panels", f.Panels)
+	w.list("vary", f.Vary)
 	w.key("journal", quote(f.Journal))
 	w.key("columns", strconv.Itoa(f.Columns))
 	if f.Width > 0 {

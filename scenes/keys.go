@@ -12,6 +12,7 @@ const (
 	Text         Type = iota // any text
 	Choice                   // one of Choices
 	ChoiceList               // a list of Choices
+	TextList                 // a list of any texts
 	Number                   // a number without a unit
 	NumberList               // a number, or a list of any length
 	Integer                  // a whole number

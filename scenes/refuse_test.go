@@ -160,6 +160,8 @@ var refusals = []struct {
 	{"uv without scale", "[telescope]\nuv = \"uv.csv\"", 4, 6, "telescope.uv", []string{"needs object.mass"}},
 	{"resolution", "[telescope]\nresolution = \"-5 eV\"", 4, 14, "telescope.resolution", []string{"out of range"}},
 	{"figure", "[[figure]]\nlayer = [\"heat\"]", 4, 10, "figure.layer", []string{"unknown choice", "intensity"}},
+	{"figure vary", "[[figure]]\nvary = [\"observer.incline = 3\"]", 4, 8, "figure.vary", []string{"unknown key", "inclination"}},
+	{"figure varies figures", "[[figure]]\nvary = [\"figure.unit = K\"]", 4, 8, "figure.vary", []string{"not a key that can vary"}},
 	{"figure limits", "[[figure]]\nlimits = [2, 1]", 4, 10, "figure.limits", []string{"low below high"}},
 }
 

@@ -48,7 +48,7 @@ func drawn(t *testing.T, d *scenes.Document) *Made {
 	if len(s.Figures) > 0 {
 		f = s.Figures[0]
 	}
-	m, err := Make(context.Background(), Request{Scene: s, Figure: f})
+	m, err := Make(context.Background(), Request{Document: d, Figure: f})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -126,6 +126,24 @@ func TestScenesComeBack(t *testing.T) {
 			if scene, err := output.Recover(path); err == nil && !bytes.Equal(scene, d.Text()) {
 				t.Errorf("%s, a %dth of it, gives another scene", name, part)
 			}
+		}
+	}
+}
+
+// Pictures of one size come in one order, run for run.
+func TestSeveralPicturesAreTheSameBytes(t *testing.T) {
+	d := load(t, "@first-light", "field.pixels", "[40, 40]", "figure.order", `["total", "0", "1"]`, "figure.columns", "2")
+	m := drawn(t, d)
+	var first bytes.Buffer
+	for run := range 10 {
+		var b bytes.Buffer
+		if err := m.WritePDF(&b, m.Provenance(d, "test")); err != nil {
+			t.Fatal(err)
+		}
+		if run == 0 {
+			first = b
+		} else if !bytes.Equal(first.Bytes(), b.Bytes()) {
+			t.Fatalf("run %d gives other bytes", run)
 		}
 	}
 }
@@ -261,7 +279,9 @@ func TestEveryPanelHasItsRoom(t *testing.T) {
 			"figure.columns", "2", "figure.draw", `["critical", "edges", "beam", "scale", "north", "ring"]`, "figure.contours", "r"),
 		"layers": load(t, "@broad-line", "field.pixels", "[60, 60]", "figure.layer", `["g", "r", "phi", "delay", "mu", "intensity"]`,
 			"figure.order", `["0"]`, "figure.columns", "2", "figure.theme", "dark"),
-		"column":      load(t, "@first-light", "field.pixels", "[60, 60]", "observer.position_angle", "30 deg", "figure.unit", "plate"),
+		"column": load(t, "@first-light", "field.pixels", "[60, 60]", "observer.position_angle", "30 deg", "figure.unit", "plate"),
+		"scenes": load(t, "@first-light", "field.pixels", "[60, 60]", "figure.columns", "2", "figure.scale", "shared",
+			"figure.vary", `["", "observer.inclination = 60 deg", "observer.inclination=80deg; trace.max_order=1"]`),
 		"light curve": load(t, "@late-twin", "figure.panels", `["light-curve"]`, "time.end", "0.5 orbit", "time.step", "0.05 orbit"),
 		"spectrum":    load(t, "@first-light", "field.frequency", `["86 GHz", "230 GHz", "345 GHz"]`, "figure.panels", `["spectrum"]`),
 	} {

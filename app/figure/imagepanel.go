@@ -4,6 +4,7 @@ import (
 	"image"
 	"image/color"
 	"math"
+	"strings"
 
 	"annulet/app/ink"
 	"annulet/app/tone"
@@ -193,8 +194,8 @@ func (p *imagePanel) bar(sheet *Sheet, box rect, st style) {
 	}
 	sheet.stroke(pen{Width: thinLine, Colour: st.ink}, box.corners())
 	title := a.title(power)
-	if p.which != "" && textWidth(title+", "+p.which, st.em) <= box.width() {
-		title += ", " + p.which
+	if whole := title + ", " + p.which; p.which != "" && fits(whole, box, st) {
+		title = whole
 	}
 	sheet.write(words{At: point{(box.Left + box.Right) / 2, box.Top - (labelGap+lineStep)*st.em}, Text: title, Size: st.em, Colour: st.ink, Align: centre})
 }
@@ -210,6 +211,11 @@ func (p *imagePanel) marks(sheet *Sheet, box rect, st style) {
 	}
 	if p.north {
 		p.directions(sheet, point{box.Right - inset, box.Top + inset}, st, plate)
+	}
+	lo, hi := p.tone.Limits(p.values)
+	_, _, power := axis{Lo: lo, Hi: hi, Log: p.tone.Curve == tone.Logarithmic}.ticks(3)
+	if title := (axis{Title: p.name}).title(power) + ", " + p.which; p.which != "" && !fits(title, box, st) {
+		p.label(sheet, point{box.Left + inset, box.Top + inset}, box.width()-2*inset, em, plate)
 	}
 	if p.beam != nil {
 		l, r, _, _ := edges(p.field)
@@ -247,6 +253,26 @@ func (p *imagePanel) scaleBar(sheet *Sheet, inside rect, st style, plate func(re
 	plate(rect{inside.Right - widest - 2*pad, low - 1.75*st.em, inside.Right, inside.Bottom})
 	sheet.stroke(pen{Width: 0.5, Colour: overInk}, []point{{x - wide/2, low - 0.2*st.em}, {x + wide/2, low - 0.2*st.em}})
 	sheet.write(words{At: point{x, low - 0.65*st.em}, Text: label, Size: st.em, Colour: overInk, Align: centre})
+}
+
+// fits says whether a title has room above a box.
+func fits(title string, box rect, st style) bool { return textWidth(title, st.em) <= box.width() }
+
+// label tells in a corner which image this is, a line each; what has no room
+// is left to the caption.
+func (p *imagePanel) label(sheet *Sheet, corner point, most, em float64, plate func(rect)) {
+	pad, widest := 0.4*em, 0.
+	lines := strings.Split(p.which, ", ")
+	for _, line := range lines {
+		widest = max(widest, textWidth(line, em)+2*pad)
+	}
+	if widest > most {
+		return
+	}
+	plate(rect{corner.X, corner.Y, corner.X + widest, corner.Y + (capHeight+lineStep*float64(len(lines)-1))*em + 2.4*pad})
+	for k, line := range lines {
+		sheet.write(words{At: point{corner.X + pad, corner.Y + pad + (capHeight+lineStep*float64(k))*em}, Text: line, Size: em, Colour: overInk})
+	}
 }
 
 // roundLabel writes 1, 2 or 5 times a power of ten.

@@ -20,10 +20,9 @@ import (
 
 // Request asks for a figure.
 type Request struct {
-	Scene   scenes.Scene
-	Folder  string // from which paths in the scene are taken
-	Figure  scenes.Figure
-	Workers int
+	Document *scenes.Document
+	Figure   scenes.Figure
+	Workers  int
 	// Begin is told of each image that is rendered, and returns what its
 	// progress is told to and what ends it; nil for none.
 	Begin func(columns, rows int) (report func(raytrace.Progress), end func())
@@ -52,9 +51,11 @@ type Made struct {
 // maker is a figure in the making.
 type maker struct {
 	Request
+	Scene  scenes.Scene
 	ctx    context.Context
 	view   *raytrace.View
 	plates map[int]*raytrace.Plate // by frequency
+	which  string                  // of the scenes beside one another
 	notes  []string                // of the caption, a panel each
 	over   []string                // of the caption: what lies over images
 }
@@ -62,18 +63,35 @@ type maker struct {
 // Make traces what a figure needs and draws it. It stops within a tile when
 // ctx ends.
 func Make(ctx context.Context, r Request) (*Made, error) {
-	view, err := raytrace.NewViewIn(r.Scene, r.Folder)
-	if err != nil {
+	vary := r.Figure.Vary
+	if len(vary) == 0 {
+		vary = []string{""}
+	}
+	var panels []panel
+	var makers []*maker
+	for _, text := range vary {
+		m, err := newMaker(ctx, r, text)
+		if err != nil {
+			return nil, err
+		}
+		for _, word := range r.Figure.Panels {
+			made, err := m.panels(word)
+			if err != nil {
+				return nil, fmt.Errorf("figure: panel %s: %w", word, err)
+			}
+			panels = append(panels, made...)
+		}
+		makers = append(makers, m)
+	}
+	m := makers[0]
+	if err := ctx.Err(); err != nil {
 		return nil, err
 	}
-	m := &maker{Request: r, ctx: ctx, view: view, plates: map[int]*raytrace.Plate{}}
-	var panels []panel
-	for _, word := range r.Figure.Panels {
-		made, err := m.panels(word)
-		if err != nil {
-			return nil, fmt.Errorf("figure: panel %s: %w", word, err)
+	for _, other := range makers[1:] {
+		m.notes = append(m.notes, other.notes...)
+		for _, text := range other.over {
+			m.say(text)
 		}
-		panels = append(panels, made...)
 	}
 	m.share(panels)
 	across := r.Figure.Across
@@ -106,6 +124,59 @@ func Make(ctx context.Context, r Request) (*Made, error) {
 	}
 	made.Caption = m.caption(len(panels) > 1)
 	return made, nil
+}
+
+// newMaker makes ready the request's scene with some keys changed.
+func newMaker(ctx context.Context, r Request, vary string) (*maker, error) {
+	d := r.Document
+	changes, err := scenes.ParseAssignments(vary)
+	if err != nil {
+		return nil, refusal{err}
+	}
+	if len(changes) > 0 {
+		if d, err = scenes.Parse(d.Name(), d.Text()); err == nil {
+			err = d.SetAll(changes...)
+		}
+		if err != nil {
+			return nil, refuse("figure.vary %q: %v", vary, err)
+		}
+	}
+	view, err := raytrace.NewViewIn(d.Scene(), d.Dir())
+	if err != nil {
+		return nil, refusal{err}
+	}
+	m := &maker{Request: r, Scene: d.Scene(), ctx: ctx, view: view, plates: map[int]*raytrace.Plate{}}
+	var which []string
+	for _, c := range changes {
+		which = append(which, strings.ReplaceAll(c.Path[strings.LastIndex(c.Path, ".")+1:], "_", " ")+" "+spaced(strings.Trim(c.Value, `"`)))
+	}
+	m.which = strings.Join(which, ", ")
+	return m, nil
+}
+
+// spaced puts a space between a number and its unit.
+func spaced(value string) string {
+	k := strings.LastIndexAny(value, "0123456789")
+	if k < 0 || k == len(value)-1 || value[k+1] == ' ' {
+		return value
+	}
+	return value[:k+1] + " " + value[k+1:]
+}
+
+// note says in the caption what a panel is.
+func (m *maker) note(format string, args ...any) {
+	text := fmt.Sprintf(format, args...)
+	if m.which != "" {
+		text += "; " + m.which
+	}
+	m.notes = append(m.notes, text)
+}
+
+// say says once what lies over images.
+func (m *maker) say(text string) {
+	if !slices.Contains(m.over, text) {
+		m.over = append(m.over, text)
+	}
 }
 
 // frequencies are the scene's that images show, counted from 0.
@@ -273,6 +344,9 @@ func (m *maker) images(blurred bool) ([]panel, error) {
 					note = fmt.Sprintf("the same through a beam of %.4g × %.4g µas FWHM", b[0], b[1])
 				}
 				var which []string
+				if m.which != "" {
+					which = append(which, m.which)
+				}
 				if order != "total" {
 					which = append(which, ordersName(max(0, orderOf(order))))
 				}
@@ -291,7 +365,7 @@ func (m *maker) images(blurred bool) ([]panel, error) {
 				if nu := view.Frequencies(); len(m.frequencies()) > 1 && len(nu) > frequency {
 					note += fmt.Sprintf(", %.4g GHz", nu[frequency]/1e9)
 				}
-				m.notes = append(m.notes, note)
+				m.note("%s", note)
 				all = append(all, p)
 			}
 		}
@@ -468,11 +542,7 @@ func (m *maker) share(panels []panel) {
 // overlays puts over an image what the figure asks for; order is -1 for the
 // total.
 func (m *maker) overlays(p *imagePanel, plate *raytrace.Plate, order int) error {
-	say := func(text string) {
-		if !slices.Contains(m.over, text) {
-			m.over = append(m.over, text)
-		}
-	}
+	say := m.say
 	for _, word := range m.Figure.Draw {
 		switch word {
 		case "critical":

@@ -32,14 +32,14 @@ func (s *Sheet) WritePDF(w io.Writer, p output.Provenance) error {
 	f.AddUTF8FontFromBytes(fontName, "", fontFile)
 	f.AddPage()
 	f.SetLineJoinStyle("round")
-	s.play(&pdfCanvas{f: f})
+	s.play(&pdfCanvas{f: f, widths: map[int]bool{}})
 	return f.Output(w)
 }
 
 // pdfCanvas draws with fpdf.
 type pdfCanvas struct {
-	f        *fpdf.Fpdf
-	pictures int
+	f      *fpdf.Fpdf
+	widths map[int]bool // of the pictures so far, pixels
 }
 
 func (c *pdfCanvas) stroke(p pen, line []point) {
@@ -67,16 +67,44 @@ func (c *pdfCanvas) fill(colour color.RGBA, outline []point) {
 }
 
 func (c *pdfCanvas) picture(img *image.Paletted, at rect) {
+	// The library writes pictures in the order of their widths in pixels, and
+	// those of one width in any order: so none has that of another, and what it
+	// has too much is clipped away.
+	columns := img.Rect.Dx()
+	for c.widths[columns] {
+		columns++
+	}
+	c.widths[columns] = true
+	if extra := columns - img.Rect.Dx(); extra > 0 {
+		img = widened(img, extra)
+		c.clip(at)
+		defer c.unclip()
+		at.Right += at.width() * float64(extra) / float64(columns-extra)
+	}
 	var file bytes.Buffer
 	if err := encodePicture(&file, img); err != nil {
 		c.f.SetError(err)
 		return
 	}
-	c.pictures++
-	name := fmt.Sprintf("picture %d", c.pictures)
+	name := fmt.Sprintf("picture %d", columns)
 	o := fpdf.ImageOptions{ImageType: "PNG"}
 	c.f.RegisterImageOptionsReader(name, o, &file)
 	c.f.ImageOptions(name, at.Left, at.Top, at.width(), at.height(), false, o, 0, "")
+}
+
+// widened repeats the last column.
+func widened(img *image.Paletted, extra int) *image.Paletted {
+	columns, rows := img.Rect.Dx(), img.Rect.Dy()
+	wide := image.NewPaletted(image.Rect(0, 0, columns+extra, rows), img.Palette)
+	for row := range rows {
+		from := img.Pix[row*img.Stride : row*img.Stride+columns]
+		to := wide.Pix[row*wide.Stride : (row+1)*wide.Stride]
+		copy(to, from)
+		for k := range extra {
+			to[columns+k] = from[columns-1]
+		}
+	}
+	return wide
 }
 
 // encodePicture writes the pixels as PNG.
