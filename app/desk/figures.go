@@ -94,7 +94,7 @@ func (c *commands) saveFigureTo(path string, f scenes.Figure) {
 	waiting := dialog.NewCustom("Drawing "+filepath.Base(path), "Stop", widget.NewProgressBarInfinite(), c.window)
 	waiting.SetOnClosed(cancel)
 	waiting.Show()
-	request := figure.Request{Scene: document.Scene(), Folder: c.state.Folder(), Figure: f, Workers: measureWorkers().Workers}
+	request := figure.Request{Document: document, Figure: f, Workers: measureWorkers().Workers}
 	go func() {
 		made, err := figure.Make(ctx, request)
 		if err == nil {

@@ -26,6 +26,8 @@ type Request struct {
 	// Begin is told of each image that is rendered, and returns what its
 	// progress is told to and what ends it; nil for none.
 	Begin func(columns, rows int) (report func(raytrace.Progress), end func())
+	// Allow judges the scenes that the figure's vary makes; nil allows all.
+	Allow func(d *scenes.Document, changes ...scenes.Assignment) error
 	// Measured is told how far a measurement is; nil for none.
 	Measured func(done, all int)
 }
@@ -136,6 +138,9 @@ func newMaker(ctx context.Context, r Request, vary string) (*maker, error) {
 	if len(changes) > 0 {
 		if d, err = scenes.Parse(d.Name(), d.Text()); err == nil {
 			err = d.SetAll(changes...)
+		}
+		if err == nil && r.Allow != nil {
+			err = r.Allow(d, changes...)
 		}
 		if err != nil {
 			return nil, refuse("figure.vary %q: %v", vary, err)

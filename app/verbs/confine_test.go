@@ -79,6 +79,10 @@ func TestOnlyBelow(t *testing.T) {
 		t.Errorf("set outside: %+v", got)
 	}
 	// a case of a sweep that leads out fails alone
+	got = do(t, "", "figure", "in/s.toml", "-o", "a.pdf", "--only-below", "in", "--set", `figure.vary=["emitter.table = link.csv"]`)
+	if got.code != exitUsage || !strings.Contains(got.errors, "emitter.table") {
+		t.Errorf("figure.vary: exit %d: %s", got.code, got.errors)
+	}
 	got, s := sweepOf(t, "in/s.toml", "--vary", "emitter.table=good.csv,link.csv", "--out", "swept", "--only-below", "in", "--product", "picture")
 	if got.code != exitCouldNot || s.Done != 1 || s.Failed != 1 || !strings.Contains(s.Reasons[0].Text, "outside the folder") {
 		t.Errorf("%+v", got)

@@ -105,7 +105,7 @@ func drawFigure(cmd *cobra.Command, s streams, o drawing, scenePath string) erro
 		return usage{err}
 	}
 	made, err := figure.Make(cmd.Context(), figure.Request{
-		Document: document, Figure: described, Workers: o.workers, Measured: reporter(s),
+		Document: document, Figure: described, Workers: o.workers, Measured: reporter(s), Allow: s.confine,
 		Begin: func(columns, rows int) (func(raytrace.Progress), func()) {
 			shown := newProgress(s.err)
 			shown.begin(columns, rows)
