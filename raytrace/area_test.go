@@ -64,6 +64,9 @@ spectral_index = %g
 // computed there from the elliptic integrals); g³ is integrated here over b,
 // with the closed form of r(b) and gonum's quadrature.
 func TestAnnulus(t *testing.T) {
+	if testing.Short() {
+		t.Skip("millions of pixels")
+	}
 	between := func(power float64) float64 {
 		from, to := geodesic.RimImpact(0, math.Pi/2, 6), geodesic.RimImpact(0, math.Pi/2, 10)
 		return quad.Fixed(func(b float64) float64 {
@@ -97,6 +100,9 @@ func TestAnnulus(t *testing.T) {
 // TestLensedOrdersStable: orders 1 and 2 of a thin disk do not depend on the
 // pixels, however much wider these are than the images.
 func TestLensedOrdersStable(t *testing.T) {
+	if testing.Short() {
+		t.Skip("millions of pixels")
+	}
 	text := func(pixels int) string {
 		return fmt.Sprintf("[observer]\ninclination = \"60 deg\"\n[field]\npixels = [%d, %d]\n[[emitter]]\nkind = \"disk\"\ninner = \"horizon\"\nouter = \"20 M\"\n", pixels, pixels)
 	}
@@ -129,6 +135,9 @@ func TestFluxBounds(t *testing.T) {
 	count := 10
 	if os.Getenv("ANNULET_SOAK") != "" {
 		count = 100
+	}
+	if testing.Short() {
+		t.Skip("many images")
 	}
 	rng := rand.New(rand.NewPCG(1, 2))
 	var wide [3][]float64

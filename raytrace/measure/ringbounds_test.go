@@ -21,6 +21,9 @@ func TestRingBounds(t *testing.T) {
 	if os.Getenv("ANNULET_SOAK") != "" {
 		count = 100
 	}
+	if testing.Short() {
+		t.Skip("many images")
+	}
 	rng := rand.New(rand.NewPCG(3, 4))
 	var wide []float64
 	missed := 0
