@@ -26,6 +26,8 @@ func FuzzParse(f *testing.F) {
 		text, _, _ := c.place()
 		f.Add([]byte(text))
 	}
+	f.Add([]byte("schema = 1\nfield.frequency = [86, 230]\n[[figure]]\npanels = [\"image\", \"spectrum\"]\nvary = [\"\", \"observer.inclination = 3; trace.max_order = 1\"]\n" +
+		"width = \"120 mm\"\nacross = 2\norder = [\"total\", \"1\"]\nfrequency = 2\nlimits = [0, 1e-3]\nlevels = 4\nimpact = [2, 5.2]\ncontours = \"r\"\n[[figure]]\ntheme = \"dark\""))
 	f.Fuzz(func(t *testing.T, text []byte) {
 		first, err := Parse("fuzz.toml", text)
 		if err != nil {

@@ -10,6 +10,7 @@ import (
 	"os"
 	"path/filepath"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -243,6 +244,39 @@ func TestEdgesWhereTheyBelong(t *testing.T) {
 	svg := file(t, m, d, "a.svg")
 	foreign.Run(t, "rsvg-convert", "-d", at, "-p", at, "-o", svg+".png", svg)
 	check("librsvg", open(svg+".png"))
+}
+
+// The words of the scene's keys are those of the packages that carry them out.
+func TestWordsOfKeys(t *testing.T) {
+	var units []string
+	for _, u := range raytrace.Units {
+		units = append(units, string(u))
+	}
+	var shownLayers []string
+	for _, l := range layers {
+		shownLayers = append(shownLayers, l.word)
+	}
+	want := map[string][]string{"unit": units, "layer": shownLayers, "contours": shownLayers[:6], "map": assets.Names(), "curve": tone.CurveWords()}
+	found := 0
+	for _, k := range scenes.Keys() {
+		if words, some := want[k.Name]; some && k.Section == "figure" {
+			found++
+			a, b := slices.Clone(k.Choices), slices.Clone(words)
+			slices.Sort(a)
+			slices.Sort(b)
+			if !slices.Equal(a, b) {
+				t.Errorf("figure.%s allows %q, want %q", k.Name, a, b)
+			}
+		}
+	}
+	if found != len(want) {
+		t.Errorf("%d keys compared, want %d", found, len(want))
+	}
+	for _, journal := range []string{"aa", "aas", "mnras"} {
+		if w := journals[journal]; !(w[0] > 80 && w[1] > 2*w[0]) {
+			t.Errorf("%s has widths %v", journal, w)
+		}
+	}
 }
 
 func TestTicks(t *testing.T) {

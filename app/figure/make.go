@@ -69,6 +69,10 @@ func Make(ctx context.Context, r Request) (*Made, error) {
 	if len(vary) == 0 {
 		vary = []string{""}
 	}
+	const letters = 26 // a to z name the panels
+	if n := count(r.Figure) * len(vary); n > letters {
+		return nil, refuse("the figure would have %d panels; allowed: %d", n, letters)
+	}
 	var panels []panel
 	var makers []*maker
 	for _, text := range vary {
@@ -126,6 +130,19 @@ func Make(ctx context.Context, r Request) (*Made, error) {
 	}
 	made.Caption = m.caption(len(panels) > 1)
 	return made, nil
+}
+
+// count is how many panels a figure has for one scene.
+func count(f scenes.Figure) int {
+	n := 0
+	for _, word := range f.Panels {
+		if word == "image" || word == "blurred" {
+			n += len(f.Layers) * len(f.Orders) * max(1, len(f.Frequencies))
+		} else {
+			n++
+		}
+	}
+	return n
 }
 
 // newMaker makes ready the request's scene with some keys changed.

@@ -169,6 +169,7 @@ var refusals = []struct {
 	{what: "figure of a layer", args: "figure|small.toml|-o|a.pdf|--set|figure.layer=[\"heat\"]", says: "intensity"},
 	{what: "figure without a beam", args: "figure|small.toml|-o|a.pdf|--set|figure.panels=[\"blurred\"]", says: "telescope.beam"},
 	{what: "figure without a unit", args: "figure|small.toml|-o|a.pdf|--set|figure.unit=K-planck", says: "needs"},
+	{what: "figure of many panels", args: "figure|small.toml|-o|a.pdf|--set|figure.layer=[\"g\",\"r\",\"mu\"]|--set|figure.vary=[\"\",\"\",\"\",\"\",\"\",\"\",\"\",\"\",\"\"]", says: "27 panels"},
 	{what: "figure too crowded", args: "figure|small.toml|-o|a.pdf|--set|figure.across=8|--set|figure.panels=[\"path\",\"path\",\"path\",\"path\",\"path\"]", says: "do not fit"},
 	{what: "depth", args: "render|small.toml|-o|a.png|--depth|12", says: "8, 16"},
 	{what: "curve", args: "render|small.toml|-o|a.png|--curve|cubic", says: "logarithmic"},
