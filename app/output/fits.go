@@ -1,6 +1,7 @@
 package output
 
 import (
+	"cmp"
 	"io"
 	"math"
 	"slices"
@@ -13,10 +14,12 @@ import (
 
 // FITS writes plates, whole or in strips, as one file: the total in the
 // primary unit; an extension for every layer and image order, EXTNAME the
-// layer and EXTVER the order plus one; and the scene, a table of one cell.
+// layer and EXTVER the order plus one; where the scene has several frequencies,
+// the total at each; and the scene, a table of one cell.
 type FITS struct {
-	file   *files.FITS
-	images []fitsImage
+	file       *files.FITS
+	images     []fitsImage
+	firstTotal int // unit of the first frequency's total; 0 without several
 }
 
 // fitsImage is what a unit shows.
@@ -25,8 +28,20 @@ type fitsImage struct {
 	order int // -1 for the total
 }
 
-// sceneUnit is the name of the extension with the scene.
-const sceneUnit = "SCENE"
+// sceneUnit is the name of the extension with the scene, totalUnit that of
+// the totals at several frequencies, EXTVER the number of the frequency.
+const (
+	sceneUnit = "SCENE"
+	totalUnit = "TOTAL"
+)
+
+// severalFrequencies are those of the scene if there is more than one.
+func severalFrequencies(v *raytrace.View) []float64 {
+	if all := v.Frequencies(); len(all) > 1 {
+		return all
+	}
+	return nil
+}
 
 // NewFITS lays the file out.
 func NewFITS(w io.WriterAt, v *raytrace.View, s scenes.Scene, layers []raytrace.Layer, p Provenance) (*FITS, error) {
@@ -41,9 +56,8 @@ func NewFITS(w io.WriterAt, v *raytrace.View, s scenes.Scene, layers []raytrace.
 			cards := slices.Clone(wcs)
 			if l.Layer == raytrace.Intensity {
 				cards = append(cards, brightness(light, s)...)
-			}
-			if l.Unit != "" {
-				cards = append(cards, files.Card{Key: "BUNIT", Value: l.Unit})
+			} else {
+				cards = append(cards, files.Card{Key: "BUNIT", Value: l.Unit, Comment: l.Text})
 			}
 			cards = append(cards,
 				files.Card{Key: "LAYER", Value: l.Name, Comment: l.Text},
@@ -51,6 +65,19 @@ func NewFITS(w io.WriterAt, v *raytrace.View, s scenes.Scene, layers []raytrace.
 			units = append(units, files.HDU{Name: strings.ToUpper(l.Name), Version: order + 1, Columns: columns, Rows: rows, Cards: cards})
 			f.images = append(f.images, fitsImage{l.Layer, order})
 		}
+	}
+	for k, frequency := range severalFrequencies(v) {
+		tuned, err := v.WithFrequency(k)
+		if err != nil {
+			return nil, err
+		}
+		cards := slices.Concat(brightness(tuned.Radiometry(), s), wcs, []files.Card{
+			{Key: "FREQ", Value: frequency, Comment: "[Hz] observed"},
+			{Key: "FLUX", Value: notIntegrated, Comment: "over the field, BUNIT times M2 or sr"},
+			{Key: "FLUXBND", Value: notIntegrated, Comment: "bound on FLUX"},
+		}, calibration(tuned.Radiometry()))
+		f.firstTotal = cmp.Or(f.firstTotal, len(units))
+		units = append(units, files.HDU{Name: totalUnit, Version: k + 1, Columns: columns, Rows: rows, Cards: cards})
 	}
 	units = append(units, files.HDU{Name: sceneUnit, Column: "TEXT", Bytes: []byte(p.Scene)})
 	var err error
@@ -72,6 +99,20 @@ func (f *FITS) Put(plate *raytrace.Plate, firstRow int) error {
 	return nil
 }
 
+// PutFrequency writes the total at the kth of several frequencies.
+func (f *FITS) PutFrequency(k int, plate *raytrace.Plate) error {
+	unit := f.firstTotal + k
+	if plate.Flux != nil {
+		flux, bound := plate.WholeFlux()
+		for _, c := range []files.Card{{Key: "FLUX", Value: flux, Comment: "over the field, BUNIT times M2 or sr"}, {Key: "FLUXBND", Value: bound, Comment: "bound on FLUX"}} {
+			if err := f.file.Set(unit, c); err != nil {
+				return err
+			}
+		}
+	}
+	return f.file.Rows(unit, 0, plate.Total)
+}
+
 // Close writes the headers, with the bounds as they are known in the end.
 func (f *FITS) Close(p Provenance) error {
 	for _, c := range boundCards(p) {
@@ -82,11 +123,11 @@ func (f *FITS) Close(p Provenance) error {
 	return f.file.Close()
 }
 
-// brightness is the unit of intensities, where they are absolute; relative
-// ones have none. Units as in section 4.3 of the FITS standard.
+// brightness is the unit of intensities; relative ones are pure numbers, whose
+// unit is blank. Units as in section 4.3 of the FITS standard.
 func brightness(r raytrace.Radiometry, s scenes.Scene) []files.Card {
 	if s.Radiance() == scenes.Relative {
-		return nil
+		return []files.Card{{Key: "BUNIT", Value: "", Comment: "a ratio, see INTENSIT"}}
 	}
 	return []files.Card{{Key: "BUNIT", Value: r.Plate(), Comment: "specific or bolometric intensity, observed"}}
 }
@@ -167,6 +208,12 @@ func sceneCards(s scenes.Scene) []files.Card {
 		cards = append(cards, files.Card{Key: "OBSRAD", Value: "infinity", Comment: "the observer's radius"})
 	} else {
 		cards = append(cards, files.Card{Key: "OBSRAD", Value: s.Observer.Radius, Comment: "[GM/c2] the observer's radius"})
+	}
+	if metres, ok := s.MetresPerM(); ok {
+		seconds, _ := s.SecondsPerM()
+		cards = append(cards,
+			files.Card{Key: "MLENGTH", Value: metres / 1000, Comment: "[km] GM/c2, the M of lengths"},
+			files.Card{Key: "MTIME", Value: seconds, Comment: "[s] GM/c3, the M of times, without redshift"})
 	}
 	if s.Title != "" {
 		cards = append(cards, files.Card{Key: "TITLE", Value: s.Title})

@@ -12,7 +12,7 @@ import (
 type layerInfo struct {
 	Layer raytrace.Layer
 	Name  string // in NPZ and on the command line; FITS takes it in capitals
-	Unit  string // FITS unit; "" for a pure number
+	Unit  string // FITS unit; "" for a pure number, which lengths in GM/c2 are
 	Text  string
 }
 

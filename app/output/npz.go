@@ -10,8 +10,11 @@ import (
 // WriteNPZ writes a plate for NumPy: total (rows, columns), every layer asked
 // for (orders, rows, columns), row 0 at the bottom; alpha and beta, the screen
 // coordinates of columns and rows, in M on a parallel field and else as
-// tangents or radians; scene and numerics as UTF-8 bytes.
-func WriteNPZ(w io.Writer, plate *raytrace.Plate, field raytrace.Field, layers []raytrace.Layer, p Provenance) error {
+// tangents or radians; scene and numerics as UTF-8 bytes. Where the scene has
+// several frequencies there are frequency, Hz, and totals (frequencies, rows,
+// columns): spectrum has the plate of each.
+func WriteNPZ(w io.Writer, plate *raytrace.Plate, v *raytrace.View, spectrum []*raytrace.Plate, layers []raytrace.Layer, p Provenance) error {
+	field := v.Field
 	n := files.NewNPZ(w)
 	if err := n.Float32("total", plate.Total, plate.Rows, plate.Columns); err != nil {
 		return err
@@ -37,6 +40,18 @@ func WriteNPZ(w io.Writer, plate *raytrace.Plate, field raytrace.Field, layers [
 	}
 	if err := n.Float64("beta", beta, len(beta)); err != nil {
 		return err
+	}
+	if len(spectrum) > 0 {
+		totals := make([]float32, 0, len(spectrum)*len(plate.Total))
+		for _, at := range spectrum {
+			totals = append(totals, at.Total...)
+		}
+		if err := n.Float64("frequency", v.Frequencies(), len(spectrum)); err != nil {
+			return err
+		}
+		if err := n.Float32("totals", totals, len(spectrum), plate.Rows, plate.Columns); err != nil {
+			return err
+		}
 	}
 	if err := n.Text("numerics", p.JSON()); err != nil {
 		return err

@@ -86,7 +86,7 @@ func writeAll(t testing.TB, dir string) (map[string]string, *raytrace.Plate) {
 			t.Fatal(err)
 		}
 	}
-	put("npz", func(w io.Writer) error { return WriteNPZ(w, plate, v.Field, layers, p) })
+	put("npz", func(w io.Writer) error { return WriteNPZ(w, plate, v, nil, layers, p) })
 	put("png", func(w io.Writer) error { return files.EncodePNG(w, img, p.PNGTexts()) })
 	put("tiff", func(w io.Writer) error { return WriteTIFF(w, img, p) })
 	put("csv", func(w io.Writer) error { return table.WriteCSV(w, p) })

@@ -15,14 +15,12 @@ func newMan(s streams) *cobra.Command {
 	return &cobra.Command{
 		Use:   "man DIR",
 		Short: "write the manual pages into a directory",
-		Long:  "Writes one manual page a verb into DIR, which must exist.",
+		Long:  "Writes one manual page a verb into DIR, which is made if it is not there.",
 		Args:  takes(1, "one directory"),
 		RunE: func(cmd *cobra.Command, args []string) error {
 			dir := args[0]
-			if info, err := os.Stat(dir); err != nil {
+			if err := os.MkdirAll(dir, 0o777); err != nil {
 				return usage{err}
-			} else if !info.IsDir() {
-				return refuse("%s is not a directory", dir)
 			}
 			pages := manPages(cmd.Root())
 			for _, c := range pages {

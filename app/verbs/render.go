@@ -100,7 +100,8 @@ func newRender(s streams) *cobra.Command {
 			"phi (deg), delay (M), mu, temperature (K: the effective one of a\n" +
 			"blackbody disk); --limits are in these units. --unit converts the intensity of a\n" +
 			"picture, if the scene says how bright it is. Images too large for the memory go to\n" +
-			"PNG and FITS in strips.\n\n" +
+			"PNG and FITS in strips. Pictures show the first field.frequency; of several, FITS\n" +
+			"and NPZ hold the total at each.\n\n" +
 			"A name with %04d in it writes a file for every time of the scene (time.start to\n" +
 			"time.end), numbered from 0, each with the scene of its own time; the colours have\n" +
 			"the same limits in all. A movie is then made with\n" +

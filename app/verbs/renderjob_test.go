@@ -5,6 +5,8 @@ import (
 	"context"
 	"image"
 	"io"
+	"os"
+	"strings"
 	"testing"
 
 	"annulet/raytrace"
@@ -50,6 +52,30 @@ func TestStripsArePicture(t *testing.T) {
 		if !bytes.Equal(whole, strips) {
 			t.Errorf("%+v: strips differ from the whole", o)
 		}
+	}
+}
+
+// Several frequencies are not written in strips, and the refusal says so.
+func TestSeveralFrequenciesNeedMemory(t *testing.T) {
+	folder(t)
+	d, err := scenes.Parse("x.toml", []byte(blackbodyScene))
+	if err != nil {
+		t.Fatal(err)
+	}
+	view, err := raytrace.NewView(d.Scene())
+	if err != nil {
+		t.Fatal(err)
+	}
+	p, err := rendering{layer: "intensity", depth: 8}.choose()
+	if err != nil {
+		t.Fatal(err)
+	}
+	j := renderJob{s: streams{err: io.Discard}, view: view, picture: p, document: d, hold: 0}
+	if _, err := j.write(context.Background(), []string{"a.fits"}); err == nil || !strings.Contains(err.Error(), "3 frequencies") {
+		t.Errorf("%v", err)
+	}
+	if _, err := os.Stat("a.fits"); err == nil {
+		t.Error("a file was left")
 	}
 }
 

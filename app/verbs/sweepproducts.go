@@ -156,7 +156,7 @@ var otherLayers = []raytrace.Layer{raytrace.Redshift, raytrace.Radius, raytrace.
 
 func writeCaseNPZ(ctx context.Context, job *sweep.Job, view *raytrace.View, plate *raytrace.Plate, product string, layers []raytrace.Layer) error {
 	return job.Write(ctx, product, ".npz", func(w io.Writer) error {
-		return output.WriteNPZ(w, plate, view.Field, layers, output.NewProvenance(job.Document, Version, plate))
+		return output.WriteNPZ(w, plate, view, nil, layers, output.NewProvenance(job.Document, Version, plate))
 	})
 }
 

@@ -287,7 +287,7 @@ func TestCompletion(t *testing.T) {
 }
 
 func TestManPages(t *testing.T) {
-	dir := t.TempDir()
+	dir := filepath.Join(t.TempDir(), "man", "man1") // is made
 	got := do(t, "", "man", dir)
 	if got.code != exitDone {
 		t.Fatalf("%+v", got)
