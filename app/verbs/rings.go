@@ -179,7 +179,7 @@ func ringTable(t *measure.Rings, of *measured) output.Table {
 		{Name: "emitter", Kind: output.Int, Text: "number in the scene, from 1"}, {Name: "order", Kind: output.Int},
 		{Name: "flux", Unit: area, Text: "integral of the intensity"}, {Name: "flux_bound", Unit: area}, {Name: "flux_fraction"}, {Name: "flux_outside_field", Unit: area}, {Name: "flux_outside_field_bound", Unit: area},
 		{Name: "area", Unit: area}, {Name: "area_bound", Unit: area}, {Name: "int_g3", Unit: area}, {Name: "int_g3_bound", Unit: area}, {Name: "int_g4", Unit: area}, {Name: "int_g4_bound", Unit: area},
-		{Name: "mean_delay", Unit: "M", Text: "flux-weighted"}, {Name: "width", Unit: "M", Text: "at screen angle 0"}, {Name: "width_ratio"}, {Name: "flux_ratio"},
+		{Name: "mean_delay", Unit: "M", Text: "flux-weighted"}, {Name: "mean_delay_bound", Unit: "M"}, {Name: "width", Unit: "M", Text: "at screen angle 0"}, {Name: "width_ratio"}, {Name: "flux_ratio"},
 	}
 	theta, angular := of.scene.ThetaG()
 	angular = angular && of.view.Field.IsParallel() && math.IsInf(of.view.Observer.Radius, 1)
@@ -195,7 +195,7 @@ func ringTable(t *measure.Rings, of *measured) output.Table {
 	for _, r := range t.Rings {
 		row := []any{
 			r.Emitter + 1, r.Order, r.Flux, r.FluxBound, r.Fraction, r.Outside, r.OutsideBound, r.Area, r.AreaBound, r.IntG3, r.IntG3Bound, r.IntG4, r.IntG4Bound,
-			r.MeanDelay, r.Width, r.WidthRatio, r.FluxRatio,
+			r.MeanDelay, r.DelayBound, r.Width, r.WidthRatio, r.FluxRatio,
 		}
 		for _, o := range []measure.Outline{r.Inner, r.Outer} {
 			row = append(row, o.Horizontal, o.Vertical, o.MeanRadius, o.Offset,

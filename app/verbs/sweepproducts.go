@@ -201,6 +201,7 @@ func writeCaseRings(ctx context.Context, job *sweep.Job, view *raytrace.View, _ 
 		add("flux_bound"+of, area, r.FluxBound)
 		add("width"+of, "M", r.Width)
 		add("mean_delay"+of, "M", r.MeanDelay)
+		add("mean_delay_bound"+of, "M", r.DelayBound)
 		for _, rim := range []struct {
 			name string
 			o    measure.Outline

@@ -37,6 +37,8 @@ type Ring struct {
 
 	Fraction  float64 // of the flux of all disks and orders
 	MeanDelay float64 // flux-weighted t_obs - t_em - r*(r_obs), M; NaN if dark
+	// DelayBound bounds MeanDelay, M.
+	DelayBound float64
 
 	// WidthRatio and FluxRatio are those to the order before; NaN for 0.
 	WidthRatio, FluxRatio float64
@@ -85,7 +87,7 @@ func NewRings(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, o Op
 			report(done, steps)
 		}
 	}
-	fine, err := newSampler(ctx, v, false, o)
+	fine, err := newSampler(ctx, v, true, o)
 	if err != nil {
 		return nil, err
 	}
@@ -112,7 +114,7 @@ func NewRings(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, o Op
 			}
 			step()
 			rough.integrate(lines, v)
-			ring.MeanDelay = rough.MeanDelay
+			ring.DelayBound = samplingBound(ring.MeanDelay, rough.MeanDelay) + pathDelay
 			ring.AreaBound = samplingBound(ring.Area, rough.Area)
 			ring.IntG3Bound = samplingBound(ring.IntG3, rough.IntG3)
 			ring.IntG4Bound = samplingBound(ring.IntG4, rough.IntG4)
@@ -141,6 +143,10 @@ func NewRings(ctx context.Context, v *raytrace.View, plate *raytrace.Plate, o Op
 	}
 	return t, nil
 }
+
+// pathDelay is a bound on the delay of a path at the tolerance of the sampler,
+// M. Method: geodesic's tests hold shared delays to it.
+const pathDelay = 1e-5
 
 // samplingBound bounds the error of a sum over patches by its difference from
 // one over patches twice as long and twice as wide: midpoints make that three
