@@ -198,7 +198,7 @@ var refusals = []struct {
 	{what: "check", args: "scene|check|unknown.toml", says: "unknown.toml:3:1"},
 	{what: "list of something", args: "scene|list|x", says: "no argument"},
 	{what: "completion", args: "completion|csh", says: "zsh"},
-	{what: "man nowhere", args: "man|none", says: "none"},
+	{what: "man below a file", args: "man|small.toml/man", says: "not a directory"},
 	{what: "man into a file", args: "man|small.toml", says: "not a directory"},
 }
 
