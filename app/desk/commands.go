@@ -3,6 +3,7 @@ package desk
 import (
 	"context"
 	"image"
+	"math"
 	"time"
 
 	"fyne.io/fyne/v2"
@@ -134,8 +135,11 @@ func layersOf(l state.Look) []raytrace.Layer {
 // coloursOf returns the colour map of a layer.
 func coloursOf(l raytrace.Layer) *assets.Map {
 	name := "ember"
-	if l == raytrace.Redshift {
+	switch l {
+	case raytrace.Redshift:
 		name = "shift"
+	case raytrace.Azimuth:
+		name = "wheel"
 	}
 	m, ok := assets.Lookup(name)
 	if !ok {
@@ -154,6 +158,9 @@ func toneOf(l state.Look) tone.Tone {
 	}
 	if l.Layer == raytrace.Redshift && set.Curve == tone.Linear {
 		t.Centre = 1
+	}
+	if l.Layer == raytrace.Azimuth && set.Curve == tone.Linear {
+		t.Low, t.High, t.Centre = -math.Pi, math.Pi, 0 // once round the wheel
 	}
 	if set.Fixed {
 		t.Low, t.High, t.Centre = set.Low, set.High, 0

@@ -37,7 +37,7 @@ var layerKinds = []layerKind{
 	{"intensity", raytrace.Intensity, "", 1, "ember", tone.SquareRoot, 0},
 	{"g", raytrace.Redshift, "1", 1, "shift", tone.Linear, 1},
 	{"r", raytrace.Radius, "M", 1, "ember", tone.Linear, 0},
-	{"phi", raytrace.Azimuth, "deg", math.Pi / 180, "ember", tone.Linear, 0},
+	{"phi", raytrace.Azimuth, "deg", math.Pi / 180, "wheel", tone.Linear, 0},
 	{"delay", raytrace.Delay, "M", 1, "ember", tone.Linear, 0},
 	{"mu", raytrace.Mu, "1", 1, "ember", tone.Linear, 0},
 	{temperatureLayer, raytrace.Radius, "K", 1, "ember", tone.Linear, 0}, // that of the gas at r
@@ -160,8 +160,12 @@ func (o rendering) choose() (p picture, err error) {
 	if p.tone.Curve == tone.Linear && o.limits == "" {
 		p.tone.Centre = p.kind.centre
 	}
-	if o.limits != "" {
-		if err := p.tone.SetLimits(o.limits); err != nil {
+	limits := o.limits
+	if limits == "" && p.kind.layer == raytrace.Azimuth {
+		limits = "-180:180" // once round the wheel
+	}
+	if limits != "" {
+		if err := p.tone.SetLimits(limits); err != nil {
 			return p, refuse("--limits: %w", err)
 		}
 	}
