@@ -83,7 +83,7 @@ func spotCurve(ctx context.Context, v *raytrace.View, times []float64, size floa
 			x := fine[n][k]
 			i.Orders = append(i.Orders, x.flux)
 			i.Flux += x.flux
-			i.Bound += math.Abs(x.flux - coarse[n][k].flux)
+			i.Bound += samplingBound(x.flux, coarse[n][k].flux)
 			alpha += x.alpha
 			beta += x.beta
 		}

@@ -81,7 +81,7 @@ func NewLine(ctx context.Context, v *raytrace.View, bin float64, o Options) (*Li
 	}
 	l.Energy, l.Photon, l.Orders = fine.energy, fine.photon, fine.orders
 	for k, x := range fine.energy {
-		l.Bound = max(l.Bound, math.Abs(x-coarse.energy[k]))
+		l.Bound = max(l.Bound, samplingBound(x, coarse.energy[k]))
 	}
 	l.Edge = Range{math.Inf(1), math.Inf(-1)}
 	for n, edge := range l.Edges { // an opaque disk may hide an order

@@ -72,3 +72,23 @@ func TestRingBounds(t *testing.T) {
 		t.Errorf("%d of %d bounds missed, %.3g times too wide", missed, len(wide), median)
 	}
 }
+
+// The bound on a line's bins on a coarse grid covers those of a finer one.
+func TestLineBound(t *testing.T) {
+	for _, inclination := range []float64{5, 35, 70, 85} {
+		v, _ := viewOf(t, fmt.Sprintf("[observer]\ninclination = %g\n[[emitter]]\nkind = \"disk\"\nouter = 30\nlight = \"line\"\n", inclination))
+		fine, err := NewLine(context.Background(), v, 0.02, Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		coarse, err := NewLine(context.Background(), v, 0.02, Options{Lines: defaultLines / 3, Cells: defaultCells / 3})
+		if err != nil {
+			t.Fatal(err)
+		}
+		peak := slices.Max(fine.Energy)
+		for k, x := range fine.Energy {
+			near(t, fmt.Sprintf("bin %d at %g deg", k, inclination), coarse.Energy[k], x, coarse.Bound)
+		}
+		near(t, "bound of the usual grid", fine.Bound, 0, 0.005*peak) // what a line is wanted to
+	}
+}

@@ -2,7 +2,6 @@ package measure
 
 import (
 	"context"
-	"math"
 
 	"annulet/raytrace"
 	"annulet/raytrace/emit"
@@ -58,7 +57,7 @@ func NewSpectrum(ctx context.Context, v *raytrace.View, from int, o Options) (*S
 		for k, x := range fine[n] {
 			order[k] = x.flux
 			s.Flux[k] += x.flux
-			s.Bound[k] += math.Abs(x.flux - coarse[n][k].flux)
+			s.Bound[k] += samplingBound(x.flux, coarse[n][k].flux)
 		}
 		s.Orders = append(s.Orders, order)
 	}
