@@ -35,6 +35,10 @@ const (
 	faintOrder = 1e-4
 	// orderRatio: see areas.allowed. Taste.
 	orderRatio = 10
+	// coarseOrder is the first order that is cut along only one in coarseMarks
+	// of the radii between rims: it may be off by more, and its paths, so near
+	// the critical curve, are integrated one by one. Method.
+	coarseOrder, coarseMarks = 3, 4
 	// curvesOff is the largest relative error of an impact parameter of
 	// rims' images that pixels are cut along. Method: as the areas.
 	curvesOff = 1e-6
@@ -131,8 +135,10 @@ func (a *areas) cut(ctx context.Context) error {
 			a.kinks[n] = append(a.kinks[n], c.kinks...)
 			a.marks[n] = append(a.marks[n], c.rims...)
 			a.marks[n] = append(a.marks[n], c.kinks...)
-			if n > 0 {
-				a.marks[n] = append(a.marks[n], c.between...)
+			for k, r := range c.between {
+				if n > 0 && (n < coarseOrder || k%coarseMarks == 1) {
+					a.marks[n] = append(a.marks[n], r)
+				}
 			}
 		}
 		for _, r := range [...]*[]float64{&a.rims[n], &a.kinks[n], &a.marks[n]} {

@@ -295,3 +295,22 @@ func TestPixelsAreAreas(t *testing.T) {
 		}
 	}
 }
+
+// TestFaintOrders: orders that are much narrower than pixels have the flux
+// integrated on the disk, at a cost that stays in bounds.
+func TestFaintOrders(t *testing.T) {
+	v := viewOf(t, "[observer]\ninclination = \"35 deg\"\n[field]\npixels = [60, 60]\n[[emitter]]\nkind = \"disk\"\nouter = \"15 M\"\n[trace]\nmax_order = 4\n")
+	p := rendered(t, v, Options{Layers: []Layer{}})
+	whole, _, err := v.DiskFlux(v.Emitters[0].(*emit.Disk))
+	if err != nil {
+		t.Fatal(err)
+	}
+	for n, flux := range whole {
+		if off := math.Abs(p.Flux[n] - flux); off > p.FluxBound[n]+1e-4*flux || off > 0.05*flux {
+			t.Errorf("order %d: %.6g ± %.1e from pixels, %.6g from the disk", n, p.Flux[n], p.FluxBound[n], flux)
+		}
+	}
+	if each := float64(p.Paths) / 3600; each > 60 {
+		t.Errorf("%.1f paths a pixel", each)
+	}
+}

@@ -262,7 +262,7 @@ func (t *cutter) find(m *mosaic, i int) (along int) {
 			continue
 		}
 		t.base[n] = 0
-		c.bent = !t.across(m, n, from, along, m.tolerance*bentShare*max(c.half[0], c.half[1])) || c.bent
+		c.bent = !t.across(m, n, from, along, m.allowed(n)*bentShare*max(c.half[0], c.half[1])) || c.bent
 	}
 	if m.dims && t.meet() {
 		c.bent = true

@@ -253,6 +253,11 @@ func (m *mosaic) refine() error {
 // Method.
 const squareShare, shareOfRest = 0.5, 0.1
 
+// faintShare is what an order may be off in a pixel where others outshine it,
+// in units of the tolerance and of all the light there. Taste: orders 3 and
+// more are narrower than their paths are known.
+const faintShare = 0.1
+
 // leastBlind is how often pixels with edges that are not known are quartered
 // at least. Method: a few samples may all miss what lies in a corner.
 const leastBlind = 2
@@ -274,12 +279,17 @@ func (m *mosaic) judge(c *cell) {
 		}
 	}
 	known := !c.bent
+	whole := 0.0
+	for n := range m.marks {
+		whole += max(p.scale[n], sum[n])
+	}
 	for n := range m.marks {
 		if c.depth == 0 {
 			p.scale[n] = max(p.scale[n], sum[n])
 		}
 		// quarters may be off by half of what the whole may
-		known = known && off[n] <= m.allowed(n)*math.Ldexp(p.scale[n], -c.depth)
+		most := m.allowed(n)*p.scale[n] + faintShare*m.tolerance*whole
+		known = known && off[n] <= math.Ldexp(most, -c.depth)
 	}
 	if c.blind && (c.hides || c.depth < leastBlind) {
 		known = false
