@@ -11,6 +11,9 @@ import (
 // the other, and the process's highest resident memory (VmHWM, proc(5)) stays
 // below. What wait tells would count that of the process that started it.
 func TestSweepMemory(t *testing.T) {
+	if testing.Short() {
+		t.Skip("the race detector needs memory of its own")
+	}
 	folder(t)
 	const limit = 260 // MiB
 	args := []string{"sweep", "small.toml", "--set", "field.pixels=[1000, 1000]", "--vary", "observer.inclination=20:40:10",

@@ -70,7 +70,9 @@ func newScreen(t *testing.T) *screen {
 		t.Fatal(err)
 	}
 	defer r.Close()
-	x := exec.Command("Xvfb", "-displayfd", "3", "-screen", "0", "1280x800x24", "-nolisten", "tcp")
+	// -noreset: a server whose only client hangs up refuses others for a moment,
+	// and the desk knocks before it comes in
+	x := exec.Command("Xvfb", "-displayfd", "3", "-screen", "0", "1280x800x24", "-nolisten", "tcp", "-noreset")
 	x.ExtraFiles = []*os.File{w}
 	startUntilEnd(t, x)
 	w.Close()
