@@ -42,8 +42,9 @@ const (
 	// curvesOff is the largest relative error of an impact parameter of
 	// rims' images that pixels are cut along. Method: as the areas.
 	curvesOff = 1e-6
-	// markRatio and mostMarks say how finely lensed orders are cut in r, in
-	// which they change over a small part of a pixel. Method.
+	// innerRatio, outerRatio and spotMarks say how finely lensed orders are cut
+	// in r within the ISCO, beyond it and across a spot: they change over a
+	// small part of a pixel. Method.
 	innerRatio, outerRatio = 1.25, 1.8
 	spotMarks              = 7
 )
@@ -113,6 +114,16 @@ func (v *View) newAreas(ctx context.Context, o Options) (*areas, error) {
 	a.pilot = plate.Paths
 	a.tolerance, a.deepest = v.FluxTolerance, quarterings
 	return a, nil
+}
+
+// conclude sums the fluxes of a plate whose tiles are all done, and counts the
+// pilot's paths; nil areas leave it without.
+func (a *areas) conclude(plate *Plate) error {
+	if a == nil {
+		return nil
+	}
+	plate.Paths += a.pilot
+	return plate.sum(plate.rows, a.view.Plan.Tolerance)
 }
 
 // cut finds the radii to cut along, and their images.

@@ -90,11 +90,10 @@ func (v *View) render(ctx context.Context, o Options, a *areas, plate *Plate) er
 	err := v.onTiles(ctx, o, want, a, tiles, func(b *bench, k int) (tileReport, error) {
 		return b.renderTile(tiles[k], want, plate)
 	}, plate)
-	if err == nil && a != nil {
-		plate.Paths += a.pilot
-		err = plate.sum(plate.rows, v.Plan.Tolerance)
+	if err != nil {
+		return err
 	}
-	return err
+	return a.conclude(plate)
 }
 
 func (o Options) tileSide() int {

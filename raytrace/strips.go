@@ -97,11 +97,8 @@ func (v *View) Strips(ctx context.Context, o Options, topDown bool, take func(St
 	if err := group.Wait(); err != nil {
 		return nil, err
 	}
-	if a != nil {
-		whole.Paths += a.pilot
-		if err := whole.sum(whole.rows, v.Plan.Tolerance); err != nil {
-			return nil, err
-		}
+	if err := a.conclude(whole); err != nil {
+		return nil, err
 	}
 	return whole, nil
 }

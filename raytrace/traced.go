@@ -78,11 +78,8 @@ func (t *Traced) Shade(ctx context.Context, v *View, o Options) (*Plate, error) 
 		return nil, err
 	}
 	plate.Integrated = t.direct
-	if a != nil {
-		plate.Paths += a.pilot
-		if err := plate.sum(plate.rows, v.Plan.Tolerance); err != nil {
-			return nil, err
-		}
+	if err := a.conclude(plate); err != nil {
+		return nil, err
 	}
 	return plate, nil
 }

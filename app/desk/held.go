@@ -1,6 +1,8 @@
 package desk
 
 import (
+	"slices"
+
 	"annulet/app/desk/graph"
 	"annulet/app/desk/state"
 )
@@ -27,17 +29,17 @@ func (c *commands) holdCurve() {
 		return
 	}
 	h := held{of: c.state.Look.Graph, axes: axesOf(g), scene: c.state.Text(), curve: g.Curves[0]}
-	kept := c.held[:0:0]
 	same := 0
-	for k := len(c.held) - 1; k >= 0; k-- {
-		if c.held[k].of == h.of {
-			if same++; same >= mostHeld {
-				continue
-			}
+	for _, old := range c.held {
+		if old.of == h.of {
+			same++
 		}
-		kept = append([]held{c.held[k]}, kept...)
 	}
-	c.held = append(kept, h)
+	if same == mostHeld {
+		oldest := slices.IndexFunc(c.held, func(old held) bool { return old.of == h.of })
+		c.held = slices.Delete(c.held, oldest, oldest+1)
+	}
+	c.held = append(c.held, h)
 	c.showGraphNow()
 	c.view.setPicked("curve held")
 	c.log.line("held curves=%d", len(c.held))
@@ -50,13 +52,7 @@ func (c *commands) graphIsNew() bool {
 
 // dropCurves forgets the curves held by the graph shown.
 func (c *commands) dropCurves() {
-	kept := c.held[:0:0]
-	for _, h := range c.held {
-		if h.of != c.state.Look.Graph {
-			kept = append(kept, h)
-		}
-	}
-	c.held = kept
+	c.held = slices.DeleteFunc(c.held, func(h held) bool { return h.of == c.state.Look.Graph })
 	c.showGraphNow()
 	c.log.line("held curves=%d", len(c.held))
 }

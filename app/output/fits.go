@@ -73,9 +73,7 @@ func NewFITS(w io.WriterAt, v *raytrace.View, s scenes.Scene, layers []raytrace.
 		}
 		cards := slices.Concat(brightness(tuned.Radiometry(), s), wcs, []files.Card{
 			{Key: "FREQ", Value: frequency, Comment: "[Hz] observed"},
-			{Key: "FLUX", Value: notIntegrated, Comment: "over the field, BUNIT times M2 or sr"},
-			{Key: "FLUXBND", Value: notIntegrated, Comment: "bound on FLUX"},
-		}, calibration(tuned.Radiometry()))
+		}, fluxCards(notIntegrated, notIntegrated), calibration(tuned.Radiometry()))
 		f.firstTotal = cmp.Or(f.firstTotal, len(units))
 		units = append(units, files.HDU{Name: totalUnit, Version: k + 1, Columns: columns, Rows: rows, Cards: cards})
 	}
@@ -104,7 +102,7 @@ func (f *FITS) PutFrequency(k int, plate *raytrace.Plate) error {
 	unit := f.firstTotal + k
 	if plate.Flux != nil {
 		flux, bound := plate.WholeFlux()
-		for _, c := range []files.Card{{Key: "FLUX", Value: flux, Comment: "over the field, BUNIT times M2 or sr"}, {Key: "FLUXBND", Value: bound, Comment: "bound on FLUX"}} {
+		for _, c := range fluxCards(flux, bound) {
 			if err := f.file.Set(unit, c); err != nil {
 				return err
 			}
@@ -249,10 +247,16 @@ func boundCards(p Provenance) []files.Card {
 	if p.Flux != nil {
 		flux, bound = p.WholeFlux()
 	}
-	return []files.Card{
+	return append([]files.Card{
 		{Key: "RBOUND", Value: p.WorstBound, Comment: "worst bound on r, relative"},
 		{Key: "PSIBOUND", Value: p.WorstAngle, Comment: "[rad] worst bound on a swept angle"},
 		{Key: "PATHS", Value: p.Paths, Comment: "light paths"},
+	}, fluxCards(flux, bound)...)
+}
+
+// fluxCards tell a flux and its bound, numbers or notIntegrated.
+func fluxCards(flux, bound any) []files.Card {
+	return []files.Card{
 		{Key: "FLUX", Value: flux, Comment: "over the field, BUNIT times M2 or sr"},
 		{Key: "FLUXBND", Value: bound, Comment: "bound on FLUX"},
 	}

@@ -68,10 +68,7 @@ const (
 
 // WholeFlux is the sum over orders, and its bound.
 func (p Provenance) WholeFlux() (flux, bound float64) {
-	for n := range p.Flux {
-		flux, bound = flux+p.Flux[n], bound+p.FluxBound[n]
-	}
-	return flux, bound
+	return (&raytrace.Plate{Flux: p.Flux, FluxBound: p.FluxBound}).WholeFlux()
 }
 
 // JSON is all of it but the scene, on one line.
