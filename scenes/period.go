@@ -15,3 +15,18 @@ func (s Scene) Period() float64 {
 	}
 	return 0
 }
+
+// Times returns those of the scene's frames; where it has one only and
+// something moves, so many parts of a period from there on, both ends counted.
+func (s Scene) Times(parts int) []float64 {
+	times := s.Time.Frames()
+	period := s.Period()
+	if len(times) > 1 || period == 0 {
+		return times
+	}
+	times = times[:0]
+	for k := range parts + 1 {
+		times = append(times, s.Time.Start+period*float64(k)/float64(parts))
+	}
+	return times
+}

@@ -127,10 +127,8 @@ func spectrumGraph(ctx context.Context, v *raytrace.View, s scenes.Scene) (*grap
 	if len(s.Field.Frequency) == 0 {
 		return nil, fmt.Errorf("%w because the scene has no frequency (field.frequency)", measure.ErrCannot)
 	}
-	for k, e := range s.Emitters {
-		if e.Light != "blackbody" && e.Light != "monochromatic" {
-			return nil, fmt.Errorf("%w because emitter %d has light = %q, which has no spectrum", measure.ErrCannot, k+1, e.Light)
-		}
+	if err := measure.CheckSpectrum(s); err != nil {
+		return nil, err
 	}
 	found, err := measure.NewSpectrum(ctx, v, 1, measureWorkers())
 	if err != nil {
@@ -206,16 +204,9 @@ const lightPixels = 160
 const lightTimes = 60
 
 func lightGraph(ctx context.Context, v *raytrace.View, s scenes.Scene) (*graph.Graph, error) {
-	period := s.Period()
-	times := s.Time.Frames()
+	times := s.Times(lightTimes)
 	if len(times) == 1 {
-		if period == 0 {
-			return nil, fmt.Errorf("%w because nothing moves: there is neither a spot nor a turning star", measure.ErrCannot)
-		}
-		times = times[:0]
-		for k := range lightTimes + 1 {
-			times = append(times, s.Time.Start+period*float64(k)/lightTimes)
-		}
+		return nil, fmt.Errorf("%w because nothing moves: there is neither a spot nor a turning star", measure.ErrCannot)
 	}
 	curve, err := measure.LightCurve(ctx, v, times, measureWorkers())
 	if err != nil {

@@ -36,14 +36,8 @@ func lightcurve(cmd *cobra.Command, s streams, m measuring, scenePath string) er
 		return err
 	}
 	period := of.scene.Period()
-	times := of.scene.Time.Frames()
-	if len(times) == 1 && period > 0 {
-		const samples = 100
-		times = times[:0]
-		for k := range samples + 1 {
-			times = append(times, of.scene.Time.Start+period*float64(k)/samples)
-		}
-	}
+	const samples = 100 // of a period
+	times := of.scene.Times(samples)
 	curve, err := measure.LightCurve(cmd.Context(), of.view, times, of.options)
 	if err != nil {
 		return err

@@ -71,10 +71,8 @@ func spectrum(cmd *cobra.Command, s streams, m measuring, from, to string, point
 		return err
 	}
 	scene := of.scene
-	for k, e := range scene.Emitters {
-		if e.Light != "blackbody" && e.Light != "monochromatic" {
-			return fmt.Errorf("%w because emitter %d has light = %q, which has no spectrum", measure.ErrCannot, k+1, e.Light)
-		}
+	if err := measure.CheckSpectrum(scene); err != nil {
+		return err
 	}
 	// the scene's own first frequency is what fluxes are scaled at
 	own := len(scene.Field.Frequency[:min(1, len(scene.Field.Frequency))])

@@ -5,6 +5,7 @@ import (
 
 	"annulet/raytrace"
 	"annulet/raytrace/emit"
+	"annulet/scenes"
 )
 
 // Spectrum is the flux of a scene at some of its frequencies.
@@ -15,6 +16,16 @@ type Spectrum struct {
 	Flux   []float64
 	Orders [][]float64
 	Bound  []float64 // on Flux
+}
+
+// CheckSpectrum refuses scenes with light that has no spectrum.
+func CheckSpectrum(s scenes.Scene) error {
+	for k, e := range s.Emitters {
+		if e.Light != "blackbody" && e.Light != "monochromatic" {
+			return cannot("emitter %d has light = %q, which has no spectrum", k+1, e.Light)
+		}
+	}
+	return nil
 }
 
 // NewSpectrum integrates the disks of a view at every frequency of its scene
